@@ -1,0 +1,2 @@
+//! The syntax.
+pub mod tree;
