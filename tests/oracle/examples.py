@@ -7,13 +7,17 @@ import os
 import sys
 
 import sympy as sp
+from sympy.core.function import AppliedUndef
 
-from kernel import Motion, add, applied, rayleigh, t
+import plain
+import program
+import sheets
+from kernel import Motion, add, coordinates, rayleigh, t
+from random_lagrangians import evaluate
 
 EXAMPLES = os.path.join(os.path.dirname(os.path.abspath(__file__)), "..", "..", "grammar", "examples")
 half = sp.Rational(1, 2)
 S = sp.Symbol
-HOLDS, BROKEN = True, False
 
 
 def sym(text):
@@ -22,7 +26,6 @@ def sym(text):
 
 def motion(names, build):
     """build(q, v) gives (L, Q) or L."""
-    from kernel import coordinates
     c = coordinates(names)
     r = build(c[0], c[1])
     L, Q = r if isinstance(r, tuple) else (r, None)
@@ -178,16 +181,81 @@ def by_hand(build):
         yield f"{name} is conserved", zero(M.on_motion(formula))
 
 
-def main():
-    bad = good = 0
+def numbers(e):
+    """Signals and their derivatives become symbols, U the fixed smooth function."""
+    e = sp.sympify(e).replace(sp.Function("U"), lambda s: plain.smooth_value("U", (0,), (s,), sp)).doit()
+    for f in sorted(e.atoms(sp.Function), key=str):
+        if f.args == (t,) and isinstance(f, AppliedUndef):
+            name = f.func.__name__
+            e = e.subs(sp.diff(f, t, 2), S(name + "''")).subs(sp.diff(f, t), S(name + "'")).subs(f, S(name))
+    return e
+
+
+def against(program_, build):
+    """The program's sheet of one example against the same by hand."""
+    name = build.__name__
+    report = sheets.Report(name)
+    M, symmetries, conserved = build()
+    try:
+        sheet = program_.sheet(os.path.join(EXAMPLES, name + ".least"))
+    except program.NoSheet as x:
+        report.check(False, "sheet", x)
+        return report
+    loud = [f["message"] for f in sheet.get("findings", []) if f.get("severity") in ("error", "warning")]
+    report.check(not loud, "no warning", loud[:3])
+    names = [str(q) for q in M.q]
+    signals = sorted({f.func.__name__ for e in [M.L] + M.Q for f in sp.sympify(e).atoms(AppliedUndef) if f.args == (t,)})
+    parts = dict(momentum=M.momenta(), force=M.slopes(), equation=M.equations(), lagrangian=[M.L], energy=[M.energy()],
+                 energy_rate=[M.energy_rate()], mass=[x for row in M.mass_matrix() for x in row])
+    parts = {k: [numbers(e) for e in group] for k, group in parts.items()}
+    points = [sheets.Point(f"{name}/{k}", {"h": (2, 3), "p": (0.5, 1)}) for k in range(3)]
+    want = evaluate(M, parts, points)
+    rows = program.by_name(sheet.get("coordinates"))
+    if not report.check(list(rows) == names, "coordinates", f"{list(rows)} instead of {names}"):
+        return report
+    for i, n in enumerate(names):
+        for field in ("momentum", "force", "equation"):
+            report.same(f"{field} of {n}", rows[n].get(field), [w[field][i] for w in want], points)
+        for j in range(len(names)):
+            report.same(f"mass matrix {i + 1},{j + 1}", sheets.dense(sheet)[i][j], [w["mass"][i * len(names) + j] for w in want], points)
+    report.same("lagrangian", sheet["lagrangian"], [w["lagrangian"][0] for w in want], points)
+    report.same("energy function", sheet["energy"]["formula"], [w["energy"][0] for w in want], points)
+    report.same("energy rate", sheet["energy"].get("rate"), [w["energy_rate"][0] for w in want], points)
+    claims, held = program.by_name(sheet["symmetries"]), program.by_name(sheet["conserved"])
+    moving = all(sheets.on_motion(sheet, p) for p in points)
+    for key, (_, _, status, *gauge) in symmetries.items():
+        s = claims.get(key, {})
+        report.check(s.get("status") == (status if isinstance(status, str) else "broken"), f"symmetry {key} status", s.get("status"))
+        blamed = sorted(b["term"] for b in s.get("broken_by") or [])
+        report.check(blamed == (sorted(status) if isinstance(status, list) else []), f"symmetry {key} broken_by", blamed)
+        if gauge:
+            gauges = evaluate(M, {"gauge": [numbers(gauge[0])]}, points)
+            got = sheets.Formula.of(s["gauge"]) if s.get("gauge") else None
+            off = [got(p) - g["gauge"][0] for p, g in zip(points, gauges)] if got else [0, 1]
+            report.check(all(sheets.close(x, off[0]) for x in off), f"symmetry {key} gauge", s.get("gauge"))
+        if moving and s:
+            sheets.noether(report, sheet, s, points, signals)
+    for key in conserved:
+        report.check(held.get(key, {}).get("holds") is True, f"conserved {key}", held.get(key))
+    return report
+
+
+def main(arguments=None):
+    arguments = sys.argv[1:] if arguments is None else arguments
+    good = bad = 0
     for build in ALL:
+        if arguments:
+            report = against(program.Program(arguments[0]), build)
+            good, bad = good + report.passed, bad + report.failed
+            print("\n".join(report.lines), end="\n" if report.lines else "")
+            continue
         for what, ok in by_hand(build):
             good, bad = good + ok, bad + (not ok)
             if not ok:
                 print(f"FAIL {build.__name__}: {what}")
-    print(f"{good} passed, {bad} failed")
-    return 1 if bad else 0
+    print(f"{len(ALL)} examples: {good} passed, {bad} failed")
+    return good, bad
 
 
 if __name__ == "__main__":
-    sys.exit(main())
+    sys.exit(1 if main()[1] else 0)
