@@ -149,7 +149,7 @@ pub struct Arena {
 /// Results of derivations, kept as long as the arena.
 #[derive(Default)]
 pub(crate) struct Memo {
-    pub partial: HashMap<(Expr, Expr), Expr>,
+    pub partial: HashMap<Expr, HashMap<Expr, Expr>>,
     pub total: HashMap<Expr, Expr>,
     pub expand: HashMap<Expr, Expr>,
 }

@@ -304,7 +304,8 @@ impl Arena {
 
     /// *Collect* for products; radicals of integers that became whole go to the coefficient.
     fn collect_factors(&mut self, factors: &mut Factors, coefficient: &mut Rational) {
-        loop {
+        // Each round removes a factor that can flatten; a content too large to be taken out would come back forever.
+        for _ in 0..16 {
             if factors.len() > 1 {
                 factors.sort_by(|a, b| self.order(a.0, b.0));
                 let mut kept = 0;
@@ -325,9 +326,16 @@ impl Arena {
             }
             // A base whose exponent became an integer by collecting may flatten further.
             let again = factors.iter().position(|(b, e)| match self.node(*b) {
-                Node::Number(_) => *e < Rational::ZERO || *e >= Rational::ONE,
+                Node::Number(r) => {
+                    let whole = e.floor().unwrap_or(i64::MAX);
+                    whole != 0 && r.pow(whole, MAX_BITS).is_some() && r.small().is_some()
+                }
                 Node::Product(_) => e.is_integer(),
-                Node::Sum(..) => e.is_integer() && !(self.meta(*b).primitive) && (factors.len() > 1 || !e.is_one()),
+                Node::Sum(k, terms) => {
+                    (k.is_zero() && terms.len() == 1 || !self.meta(*b).primitive)
+                        && (factors.len() > 1 || !e.is_one())
+                        && e.to_i64().is_some_and(|n| n.unsigned_abs() < 64)
+                }
                 _ => false,
             });
             let Some(i) = again else { return };
@@ -386,7 +394,9 @@ impl Arena {
                     self.push_factor(inner, exponent, coefficient, factors, powers, zero, level + 1);
                     return;
                 }
-                if self.meta(base).primitive {
+                if self.meta(base).primitive && !single
+                    || exponent.to_i64().is_some_and(|n| n.unsigned_abs() >= 64)
+                {
                     factors.push((base, exponent.clone()));
                     return;
                 }

@@ -1,10 +1,18 @@
 //! Exact expressions: hash-consed, differentiated, tested for zero, printed. This crate knows no physics.
 
 mod arena;
+mod budget;
 mod build;
+mod calculus;
+mod call;
+mod display;
 mod function;
 mod rational;
 
 pub use arena::{Arena, Expr, Node, Role, Symbol, SymbolInfo};
+pub use budget::{Budget, MAX_DEPTH, Stopped};
+pub use build::MAX_BITS;
+pub use calculus::Derivation;
+pub use display::{DisplayOptions, Layout, Printed, verbatim};
 pub use function::Function;
 pub use rational::Rational;
