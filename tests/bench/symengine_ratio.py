@@ -20,6 +20,7 @@ from problems import problems
 
 SKIP_ABOVE = 1000          # coordinates: SymEngine's time grows with the square
 BASE = 20                  # runs of the empty model
+SMALLEST = 1e-4            # seconds: below, the difference to the empty model is noise
 
 
 # ---------------------------------------------------------------- SymEngine
@@ -144,6 +145,15 @@ def program_time(words, command, path, reps):
     return None if None in runs else statistics.median(runs)
 
 
+def verdicts_right(words, path, statuses):
+    """Whether the sheet's claims are what they must be; untimed."""
+    p = subprocess.run(words + ["sheet", path, "--as", "json"], stdout=subprocess.PIPE, stderr=subprocess.DEVNULL)
+    try:
+        return {s["name"]: s["status"] for s in json.loads(p.stdout)["symmetries"]} == statuses
+    except (ValueError, KeyError, TypeError):
+        return False
+
+
 def milliseconds(x):
     return "failed" if x is None else f"{1000 * x:.2f}"
 
@@ -163,6 +173,7 @@ def main():
     words = [os.path.abspath(w) if os.path.exists(w) else w for w in o.program.split()]
     print(f"| problem | SymEngine, derived (ms) | with verdicts (ms) | leastwise {o.command} (ms) | SymEngine : leastwise |")
     print("|---|---|---|---|---|")
+    wrong = 0
     with tempfile.TemporaryDirectory() as folder:
         empty = os.path.join(folder, "empty.least")
         with open(empty, "w", encoding="utf-8") as f:
@@ -178,11 +189,15 @@ def main():
             ours = None if ours is None or start is None else max(ours - start, 1e-6)
             theirs = library_times(library, p, o.reps if len(p.coordinates) < 100 else 1) if len(p.coordinates) <= SKIP_ABOVE else ()
             derived, whole = (None, None) if theirs is None else theirs or ("—", "—")
-            ratio = f"{whole / ours:.1f}" if isinstance(whole, float) and ours else "—"
+            ratio = "—"
+            if isinstance(whole, float) and ours:
+                ratio = f"{whole / ours:.1f}" if ours > SMALLEST else f"> {whole / SMALLEST:.0f}"
+            if not verdicts_right(words, path, p.statuses):
+                ratio, wrong = "wrong verdicts", wrong + 1
             cells = [x if isinstance(x, str) else milliseconds(x) for x in (derived, whole)]
             print(f"| {p.name} | {cells[0]} | {cells[1]} | {milliseconds(ours)} | {ratio} |", flush=True)
     print(f"\nleastwise starts in {milliseconds(start)} ms of CPU time; it is taken off.")
-    return 0
+    return 1 if wrong else 0
 
 
 if __name__ == "__main__":
