@@ -1,1 +1,3 @@
-//! mechanics.
+//! Lagrangian mechanics over exact expressions. Knows no text.
+
+pub mod model;
