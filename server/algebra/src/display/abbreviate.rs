@@ -110,7 +110,8 @@ pub(crate) fn names(arena: &Arena, root: Expr, count: usize, options: &DisplayOp
         used.insert(arena.info(s).name.to_string());
     });
     let numbered = (1..).map(|n: usize| {
-        let digits: String = n.to_string().chars().filter_map(|c| char::from_u32('₀' as u32 + c.to_digit(10)?)).collect();
+        let digits: String =
+            n.to_string().chars().filter_map(|c| char::from_u32('₀' as u32 + c.to_digit(10)?)).collect();
         format!("A{digits}")
     });
     let single = options.abbreviation_names.iter().cloned();

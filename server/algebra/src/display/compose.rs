@@ -47,16 +47,6 @@ impl<'a> Composer<'a> {
         form.signed(negative)
     }
 
-    /// The tree of an expression even where it has an abbreviation.
-    pub fn spelled_out(&mut self, e: Expr) -> Form {
-        let own = self.abbreviations.remove(&e);
-        let form = self.compose(e);
-        if let Some(k) = own {
-            self.abbreviations.insert(e, k);
-        }
-        form
-    }
-
     /// Sign and tree.
     fn signed(&mut self, e: Expr) -> (bool, Form) {
         if let Some(k) = self.abbreviations.get(&e) {
@@ -460,7 +450,8 @@ fn letters(arena: &Arena, roots: &[Expr], options: &DisplayOptions) -> Vec<Arc<s
         });
     }
     let candidates = options.index_names.iter().map(|n| Arc::from(n.as_str())).chain((1..).map(|n: usize| {
-        let digits: String = n.to_string().chars().filter_map(|c| char::from_u32('₀' as u32 + c.to_digit(10)?)).collect();
+        let digits: String =
+            n.to_string().chars().filter_map(|c| char::from_u32('₀' as u32 + c.to_digit(10)?)).collect();
         Arc::from(format!("i{digits}"))
     }));
     candidates.filter(|c: &Arc<str>| !used.contains(c)).take(depth).collect()

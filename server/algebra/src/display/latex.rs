@@ -71,7 +71,7 @@ impl Latex<'_> {
                     self.open(place == Place::Base, |p| {
                         p.function(*f);
                         let _ = write!(p.out, "^{{{exponent}}}");
-                        p.argument(args);
+                        p.argument(*f, args);
                     });
                 }
                 (Form::Name(n), _) => {
@@ -103,9 +103,9 @@ impl Latex<'_> {
                 self.list(args);
                 self.out.push_str("\\right|");
             }
-            Form::Call(f, args) => self.open(place == Place::Base && short(args), |p| {
+            Form::Call(f, args) => self.open(place == Place::Base && short(*f, args), |p| {
                 p.function(*f);
-                p.argument(args);
+                p.argument(*f, args);
             }),
             Form::Unspecified { name, member, orders, args, .. } => {
                 let (primes, partial) = match orders.as_ref() {
@@ -218,8 +218,8 @@ impl Latex<'_> {
         self.out.push_str(name);
     }
 
-    fn argument(&mut self, args: &[Form]) {
-        if short(args) {
+    fn argument(&mut self, f: Function, args: &[Form]) {
+        if short(f, args) {
             self.out.push(' ');
             self.form(&args[0], Place::Base);
         } else {
@@ -363,9 +363,10 @@ fn greek(c: char) -> Option<&'static str> {
     })
 }
 
-/// Whether the argument is one name.
-fn short(args: &[Form]) -> bool {
-    matches!(args, [Form::Name(_)])
+/// Whether the argument is one name that the function takes without parentheses.
+fn short(f: Function, args: &[Form]) -> bool {
+    use Function::*;
+    !matches!(f, Exp | Abs | Sign | Min | Max) && matches!(args, [Form::Name(_)])
 }
 
 #[cfg(test)]

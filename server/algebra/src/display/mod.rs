@@ -8,6 +8,11 @@ mod order;
 mod plain;
 mod text;
 
+#[cfg(test)]
+mod reader;
+#[cfg(test)]
+mod tests;
+
 use crate::arena::{Arena, Expr};
 use crate::budget::Stopped;
 use compose::Composer;
@@ -54,7 +59,7 @@ impl Default for DisplayOptions {
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub struct Layout {
     form: Form,
-    /// The parts written apart, `where A = …`. Later ones are used by earlier ones and by the formula.
+    /// The parts written apart, `where A = …`. Each may use those before it.
     pub abbreviations: Vec<(String, Layout)>,
 }
 

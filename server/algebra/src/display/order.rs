@@ -158,8 +158,8 @@ impl Keys {
     fn atom(&mut self, arena: &Arena, s: Symbol, order: u16, structure: u64) -> FactorKey {
         let name = self.name(arena, s);
         let class = match (arena.info(s).role, order) {
-            (Role::Parameter | Role::Formal | Role::Multiplier | Role::Index | Role::Epsilon, 0) => class::PARAMETER,
-            (Role::Time | Role::Input, 0) => class::TIME,
+            (Role::Parameter | Role::Formal | Role::Multiplier | Role::Epsilon, 0) => class::PARAMETER,
+            (Role::Time | Role::Input | Role::Index, 0) => class::TIME,
             (Role::Function, _) => class::FUNCTION,
             (_, 0) => class::COORDINATE,
             (_, 1) => class::VELOCITY,
@@ -183,7 +183,7 @@ impl Keys {
             function: 0,
             structure,
         };
-        let mut join = |keys: &mut Keys, parts: &mut dyn Iterator<Item = Expr>| {
+        let join = |keys: &mut Keys, parts: &mut dyn Iterator<Item = Expr>| {
             let mut out: Option<FactorKey> = None;
             for p in parts {
                 let k = keys.factor(arena, p);
@@ -211,7 +211,16 @@ impl Keys {
             Node::Pi => FactorKey { class: class::NUMBER + 1, ..plain(class::NUMBER) },
             Node::Symbol(s) => self.atom(arena, *s, 0, structure),
             Node::Jet(s, order) => self.atom(arena, *s, *order, structure),
-            Node::Member { family, order, .. } => self.atom(arena, *family, *order, structure),
+            Node::Member { family, index, order } => {
+                let mut k = self.atom(arena, *family, *order, structure);
+                // x[i] before x[i + 1].
+                let offset = match arena.node(*index) {
+                    Node::Sum(c, _) => c.to_i64().unwrap_or(0),
+                    _ => 0,
+                };
+                k.name = Arc::new(NameKey { member: offset, ..(*k.name).clone() });
+                k
+            }
             Node::Sum(_, list) => {
                 let single = list.len() == 1;
                 let mut k = join(self, &mut list.iter().map(|t| t.0));

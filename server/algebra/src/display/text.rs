@@ -5,6 +5,7 @@
 use crate::display::form::{Form, Member, Name};
 use crate::display::order::digit;
 use crate::display::plain::derivative_marks;
+use crate::function::Function;
 use crate::rational::Rational;
 use std::fmt::Write;
 
@@ -67,7 +68,7 @@ impl Text<'_> {
                     self.open(place == Place::Base, |p| {
                         p.out.push_str(f.name());
                         p.superscript(exponent);
-                        p.argument(args);
+                        p.argument(*f, args);
                     });
                 }
                 _ => self.open(place == Place::Base, |p| {
@@ -89,9 +90,9 @@ impl Text<'_> {
                 self.form(base, Place::Sum);
                 self.out.push(')');
             }
-            Form::Call(f, args) => self.open(place == Place::Base && short(args), |p| {
+            Form::Call(f, args) => self.open(place == Place::Base && short(*f, args), |p| {
                 p.out.push_str(f.name());
-                p.argument(args);
+                p.argument(*f, args);
             }),
             Form::Unspecified { name, member, orders, args, .. } => {
                 self.out.push_str(name);
@@ -166,8 +167,8 @@ impl Text<'_> {
     }
 
     /// A function takes one name without parentheses.
-    fn argument(&mut self, args: &[Form]) {
-        if short(args) {
+    fn argument(&mut self, f: Function, args: &[Form]) {
+        if short(f, args) {
             self.out.push(' ');
             self.form(&args[0], Place::Base);
         } else {
@@ -215,9 +216,10 @@ impl Text<'_> {
     }
 }
 
-/// Whether the argument is one name.
-fn short(args: &[Form]) -> bool {
-    matches!(args, [Form::Name(_)])
+/// Whether the argument is one name that the function takes without parentheses.
+fn short(f: Function, args: &[Form]) -> bool {
+    use Function::*;
+    !matches!(f, Exp | Abs | Sign | Min | Max) && matches!(args, [Form::Name(_)])
 }
 
 /// The name with one or two of Newton's dots, where the language reads them as derivatives.

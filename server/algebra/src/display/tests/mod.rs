@@ -1,0 +1,3 @@
+//! What is printed reads back as what was meant, in all spellings.
+
+mod verbatim;
