@@ -19,6 +19,7 @@ CHECKS = {                 # module: packages
     "textbook": ["mpmath"],
     "hostile": ["mpmath"],
     "verdicts": ["mpmath"],
+    "reprint": ["mpmath"],
 }
 
 

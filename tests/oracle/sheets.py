@@ -8,8 +8,8 @@ import plain
 DIGITS = 40
 mp.mp.dps = DIGITS + 20          # the last twenty are for cancellation and difference quotients
 NUMBERS = plain.Digits()
-TOLERANCE = mp.mpf(10)**-(DIGITS - 10)
-STEP = mp.mpf(10)**-15           # of difference quotients: their error is about STEP²
+TOLERANCE = mp.mpf(10)**-(DIGITS - 2)
+STEP = mp.mpf(10)**-20           # of difference quotients: their error is about STEP²
 
 
 def unknown(name, orders, args):
@@ -169,4 +169,4 @@ def noether(report, sheet, s, points, signals=()):
 
 
 def close_rate(a, b):
-    return abs(a - b) <= mp.mpf(10)**-24 * (1 + abs(a) + abs(b))
+    return abs(a - b) <= mp.mpf(10)**-28 * (1 + abs(a) + abs(b))

@@ -213,16 +213,26 @@ def check(job):
     return report
 
 
+def shared_cases():
+    """The folder of shared cases, or nothing."""
+    folder = os.path.join(os.environ.get("LEASTWISE_SHARED", ""), "cases")
+    return folder if os.environ.get("LEASTWISE_SHARED") and os.path.isdir(folder) else None
+
+
+def models(only=None):
+    """The paths of all models at hand."""
+    folders = FOLDERS + ([shared_cases()] if shared_cases() else [])
+    paths = [os.path.join(d, f) for d in folders for f in sorted(os.listdir(d)) if f.endswith(".least") and f != "site.least"]
+    return [p for p in paths if only in (None, os.path.basename(p)[:-6])]
+
+
 def main(arguments=None):
     ap = argparse.ArgumentParser(description=__doc__.split("\n")[0])
     ap.add_argument("program")
     ap.add_argument("--only")
     ap.add_argument("--seeds", type=int, default=2)
     o = ap.parse_args(arguments)
-    folders = FOLDERS + [os.path.join(os.environ["LEASTWISE_SHARED"], "cases")] if os.environ.get("LEASTWISE_SHARED") else FOLDERS
-    paths = [os.path.join(d, f) for d in folders if os.path.isdir(d) for f in sorted(os.listdir(d)) if f.endswith(".least") and f != "site.least"]
-    paths = [p for p in paths if o.only in (None, os.path.basename(p)[:-6])]
-    without = len(folders) == len(FOLDERS)
+    paths, without = models(o.only), not shared_cases()
     if without:
         print("not run: verdicts on the shared cases (LEASTWISE_SHARED names no folder)")
     with multiprocessing.Pool(2) as pool:
