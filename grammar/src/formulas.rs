@@ -314,6 +314,7 @@ impl Reader<'_> {
         let start = self.at;
         let first = self.piece(start).filter(|_| start < end).map(|p| p.kind);
         let written = if root { "√" } else { name };
+        let gap = if root { "" } else { " " };
         let single_name = first == Some(Kind::Word) && arity == Arity::One && !self.is_call(start);
         let argument_end = match first {
             Some(Kind::Word) if single_name => self.marks_end(start + 1),
@@ -339,7 +340,11 @@ impl Reader<'_> {
             let exponent = &self.text[exponent.range()];
             let whole = span.to(self.pieces[behind.min(self.pieces.len()) - 1].span);
             self.slips
-                .error(codes::FUNCTION_POWER, whole, format!("a power behind `{written} {shown}` may belong to either"))
+                .error(
+                    codes::FUNCTION_POWER,
+                    whole,
+                    format!("a power behind `{written}{gap}{shown}` may belong to either"),
+                )
                 .mend(format!("write {written}({shown}{exponent})"), whole, format!("{written}({shown}{exponent})"))
                 .mend(format!("write {written}({shown}){exponent}"), whole, format!("{written}({shown}){exponent}"));
             return self.emit_call(name, span, power, Some(argument_end));

@@ -144,8 +144,15 @@ fn callable_name(text: &str) -> Option<String> {
     }
     // In `let P (a + b)` the equals sign is missing; `let f(x, y) = …` has names and commas only.
     (next.kind == Kind::Open).then_some(())?;
-    let formals = head.take_while(|l| l.kind != Kind::Close);
-    formals.take(4096).all(|l| matches!(l.kind, Kind::Word | Kind::Comma)).then_some(name)
+    let mut formals = head.take_while(|l| l.kind != Kind::Close).take(4096);
+    let mut name_next = true;
+    formals
+        .all(|l| {
+            let right = l.kind == if name_next { Kind::Word } else { Kind::Comma };
+            name_next = !name_next;
+            right
+        })
+        .then_some(name)
 }
 
 #[cfg(test)]

@@ -16,7 +16,7 @@ pub struct Lexeme {
 
 /// The kinds of lexeme. The wrong signs are signs of other languages, kept to say what is written instead.
 #[derive(Logos, Clone, Copy, PartialEq, Eq, Debug)]
-#[logos(skip r"[ \t\x0b\x0c\x00]+")]
+#[logos(skip r"[ \t\x0b\x0c]+")]
 pub enum Kind {
     #[regex("[A-Za-z]", word)]
     Word,

@@ -5,7 +5,9 @@
 
 mod build;
 pub mod codes;
+mod format;
 mod formulas;
+mod hints;
 mod items;
 mod keywords;
 mod lexer;
@@ -26,6 +28,7 @@ mod model {
     pub use generated::EntryParser;
 }
 
+pub use format::{format, format_with};
 pub use items::{RawItem, callable_names, description_at, split};
 pub use keywords::{Arity, Keyword, KeywordRole, builtin, keywords, nearest};
 pub use names::{CallableNames, fold_letters, fold_name, read_name};

@@ -1,11 +1,13 @@
 //! One item, or one formula, from text to tree.
 
 use crate::build::{Builder, Entry};
+use crate::hints::{hints, item_hints};
 use crate::messages::report;
 use crate::model::EntryParser;
 use crate::names::CallableNames;
 use crate::reading::{Reading, read_formula, read_item};
 use crate::slips::Slips;
+use crate::token::Spanned;
 use crate::tree::{Formula, FormulaKind, Item, ItemKind, Slip, Span};
 
 /// An item as read, with all that is to be said about its text.
@@ -23,6 +25,11 @@ pub struct ParsedItem {
 ///
 /// Linear in the text; the tree is at most [`crate::NESTING`] levels deep.
 pub fn parse_item(text: &str, callable: &CallableNames) -> ParsedItem {
+    parse_with_tokens(text, callable).0
+}
+
+/// Reads one item and keeps its tokens.
+pub(crate) fn parse_with_tokens(text: &str, callable: &CallableNames) -> (ParsedItem, Vec<Spanned>) {
     let mut slips = Slips::default();
     let reading = read_item(text, callable, &mut slips);
     let kind = if reading.tokens.is_empty() {
@@ -33,8 +40,11 @@ pub fn parse_item(text: &str, callable: &CallableNames) -> ParsedItem {
             _ => ItemKind::Broken,
         }
     };
+    if !slips.any_error() {
+        item_hints(text, &kind, &mut slips);
+    }
     let item = Item { kind, keyword: reading.keyword, span: reading.span };
-    ParsedItem { item, slips: slips.finish() }
+    (ParsedItem { item, slips: slips.finish() }, reading.tokens)
 }
 
 /// Reads a formula alone.
@@ -45,6 +55,9 @@ pub fn parse_formula(text: &str, callable: &CallableNames) -> (Formula, Vec<Slip
         Some(Entry::Formula(formula)) => formula,
         _ => Formula { kind: FormulaKind::Missing, span: Span::new(0, text.len()) },
     };
+    if !slips.any_error() {
+        hints(text, &formula, &mut slips);
+    }
     (formula, slips.finish())
 }
 

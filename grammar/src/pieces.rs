@@ -32,6 +32,7 @@ pub fn pieces(text: &str, slips: &mut Slips) -> Vec<Piece> {
 fn mended(text: &str, slips: &mut Slips) -> Vec<(Lexeme, bool)> {
     let mut out: Vec<(Lexeme, bool)> = Vec::new();
     let mut begins_line = true;
+    let mut braces = false;
     for mut lexeme in lex(text) {
         let span = lexeme.span;
         let touching = out.last().filter(|(last, _)| last.span.end == span.start).map(|(last, _)| *last);
@@ -65,13 +66,6 @@ fn mended(text: &str, slips: &mut Slips) -> Vec<(Lexeme, bool)> {
                         .mend(format!("write {digits}.0"), number.to(span), format!("{digits}.0"));
                     continue;
                 }
-                // With a number right behind it, the number says it.
-                if !text[span.end as usize..].starts_with(|c: char| c.is_ascii_digit()) {
-                    slips
-                        .error(codes::UNEXPECTED, span, "a point stands alone")
-                        .help("a product is written with a space or `·`, a range with `..`");
-                    continue;
-                }
             }
             Kind::Number => {
                 if let Some(last) = touching.filter(|last| last.kind == Kind::Point) {
@@ -93,6 +87,16 @@ fn mended(text: &str, slips: &mut Slips) -> Vec<(Lexeme, bool)> {
                 );
                 lexeme.kind = Kind::Text;
             }
+            Kind::OpenBrace => {
+                let slip = slips.error(codes::WRONG_SIGN, span, "braces are not used; write ( and )");
+                let close = text[span.end as usize..].find('}').map(|at| span.end + at as u32);
+                let edits = std::iter::once((span, "(".to_owned()));
+                let close = close.map(|at| (Span { start: at, end: at + 1 }, ")".to_owned()));
+                slip.mends("write ( and )", edits.chain(close).collect());
+                lexeme.kind = Kind::Open;
+                braces = true;
+            }
+            Kind::CloseBrace if braces => lexeme.kind = Kind::Close,
             kind => {
                 if let Some((right, text)) = right_sign(kind) {
                     slips.error(codes::WRONG_SIGN, span, format!("this sign is written `{text}` here")).mend(
@@ -117,7 +121,6 @@ fn right_sign(kind: Kind) -> Option<(Kind, &'static str)> {
         Kind::EqualLess => (Kind::LessEqual, "<="),
         Kind::LessGreater => (Kind::NotEqual, "!="),
         Kind::Semicolon => (Kind::Comma, ","),
-        Kind::OpenBrace => (Kind::Open, "("),
         Kind::CloseBrace => (Kind::Close, ")"),
         _ => return None,
     })

@@ -185,7 +185,8 @@ impl<'t> Reader<'t> {
             slip.help("to continue the item above, indent the line");
             slip.mend("indent the line", point(first.span.start), "    ");
         } else {
-            slip.help("such as `coordinate`, `parameter`, `let`, `kinetic`, `potential`; `#` begins a comment");
+            slip.help("such as `coordinate`, `parameter`, `let`, `kinetic`, `potential`");
+            slip.mend("make it a comment", point(first.span.start), "# ");
         }
     }
 
@@ -222,6 +223,7 @@ impl<'t> Reader<'t> {
             Token::Symmetry(_) => self.symmetry(),
             Token::Run => self.run(),
             Token::Assume => self.formula(|_| false),
+            Token::Include => self.file(),
             _ => self.head(Kind::Gap, false),
         }
         // What no part has read cannot stand there; the grammar says so at its place.
@@ -275,6 +277,12 @@ impl<'t> Reader<'t> {
             Kind::OpenBar => Token::OpenBar,
             Kind::CloseBar => Token::CloseBar,
             Kind::Gap | Kind::Unknown => Token::Gap,
+            Kind::Point => {
+                self.slips
+                    .error(codes::UNEXPECTED, span, "a point stands alone")
+                    .help("a product is written with a space or `·`, a range with `..`");
+                return;
+            }
             _ => Token::Stray,
         };
         self.emit(token, span);
@@ -427,16 +435,34 @@ impl<'t> Reader<'t> {
         };
         let mut names = Vec::new();
         for at in open + 1..self.pieces.len() {
+            let name_next = self.pieces[at - 1].kind != Kind::Word;
             match self.pieces[at].kind {
                 Kind::Close => {
                     self.formals = names;
                     return;
                 }
-                Kind::Word => names.push(read_name(self.text_at(at)).0),
-                Kind::Comma => {}
+                Kind::Word if name_next => names.push(read_name(self.text_at(at)).0),
+                Kind::Comma if !name_next => {}
                 _ => return,
             }
         }
+    }
+
+    /// The name of a file in quotes; without them a slip.
+    fn file(&mut self) {
+        if self.pass(Kind::Text) {
+            return;
+        }
+        let (Some(first), Some(last)) = (self.piece(self.at), self.pieces.last()) else { return };
+        let span = first.span.to(last.span);
+        let name = self.text[span.range()].to_owned();
+        self.slips.error(codes::MISSING_PART, span, "the name of a file stands in quotes").mend(
+            "put it in quotes",
+            span,
+            format!("\"{name}\""),
+        );
+        self.emit(Token::Text(name), span);
+        self.at = self.pieces.len();
     }
 
     fn term(&mut self, keyword: Span) {

@@ -78,6 +78,29 @@ pub enum Times {
     Cross,
 }
 
+impl Formula {
+    /// The formulas that it is made of, in the order of the text.
+    pub fn parts(&self) -> Vec<&Formula> {
+        match &self.kind {
+            FormulaKind::Number(_) | FormulaKind::Name(_) | FormulaKind::Missing => Vec::new(),
+            FormulaKind::Prime { base, .. } => vec![base],
+            FormulaKind::Neg(inner) | FormulaKind::Bars(inner) | FormulaKind::Paren(inner) => vec![inner],
+            FormulaKind::Add(left, right)
+            | FormulaKind::Sub(left, right)
+            | FormulaKind::Div(left, right)
+            | FormulaKind::Pow(left, right)
+            | FormulaKind::Mul { left, right, .. } => vec![left, right],
+            FormulaKind::Tuple(parts) => parts.iter().collect(),
+            FormulaKind::Index { base, indices } => std::iter::once(&**base).chain(indices).collect(),
+            FormulaKind::Call { power, args, .. } => power.as_deref().into_iter().chain(args).collect(),
+            FormulaKind::Sum { range, body, .. } => {
+                let ends = range.iter().flat_map(|(lower, upper)| [&**lower, &**upper]);
+                ends.chain(std::iter::once(&**body)).collect()
+            }
+        }
+    }
+}
+
 /// The kinds of formula.
 #[derive(Clone, PartialEq, Eq, Hash, Debug)]
 pub enum FormulaKind {
@@ -93,6 +116,7 @@ pub enum FormulaKind {
         order: u32,
     },
     /// `x[i+1]`, `P[3]`, `R[1, 2]`. Of `x'[3]` and `x[3]'` both are read as the prime of the index.
+    /// The member of a family of functions, `u[i](t)` or `u[i]'(t)`, is the index of the call `u(t)` or `u'(t)`.
     Index {
         /// The family, vector or matrix.
         base: Box<Formula>,

@@ -96,9 +96,10 @@ impl Reader<'_> {
         if start == end {
             return;
         }
-        self.arcs(first, end);
-        self.emit(Token::Unit, point(self.end()));
-        self.unit(end);
+        if !self.arcs(first, end) {
+            self.emit(Token::Unit, point(self.end()));
+            self.unit(end);
+        }
     }
 
     /// Whether a value begins with a name or has one among its numbers; then a slip and a gap.
@@ -145,9 +146,9 @@ impl Reader<'_> {
     /// `4° 30′ 10″` is (4 + 30/60 + 10/3600)°: puts the parts behind the first into the number.
     ///
     /// `first` is the first token of the number.
-    fn arcs(&mut self, first: usize, end: usize) {
+    fn arcs(&mut self, first: usize, end: usize) -> bool {
         let sign = |reader: &Self, at: usize| reader.piece(at).filter(|_| at < end).and_then(|p| reader.arc(p));
-        let Some(largest) = sign(self, self.at) else { return };
+        let Some(largest) = sign(self, self.at) else { return false };
         let mut parts = Vec::new();
         let mut at = self.at;
         let mut smaller = largest;
@@ -158,7 +159,7 @@ impl Reader<'_> {
             at += 2;
         }
         if parts.is_empty() {
-            return;
+            return false;
         }
         let negative = self.out.get(first).is_some_and(|s| s.token == Token::Negative);
         let open = point(self.pieces[self.at].span.start);
@@ -180,7 +181,24 @@ impl Reader<'_> {
         self.emit(Token::Unit, open);
         let symbol = ["°", "′", "″"][usize::from(largest)];
         self.emit(Token::Name(symbol.to_owned()), self.pieces[self.at].span);
+        for sign in self.at..=at {
+            self.typed_arc(sign);
+        }
         self.at = at + 1;
+        true
+    }
+
+    /// Arc minutes and seconds typed as quotes get a slip.
+    fn typed_arc(&mut self, at: usize) {
+        let span = self.pieces[at].span;
+        if self.text[span.range()].starts_with('\'') {
+            let symbol = if span.end - span.start == 1 { "′" } else { "″" };
+            self.slips.error(codes::VALUE_FORM, span, "arc minutes are written `′`, arc seconds `″`").mend(
+                format!("write {symbol}"),
+                span,
+                symbol,
+            );
+        }
     }
 
     /// 0 for degrees, 1 for arc minutes, 2 for arc seconds.
@@ -223,13 +241,7 @@ impl Reader<'_> {
             }
             Kind::Prime(order) if order <= 2 && self.at == from => {
                 let symbol = if order == 1 { "′" } else { "″" };
-                if self.text_at(self.at).starts_with('\'') {
-                    self.slips.error(codes::VALUE_FORM, span, "arc minutes are written `′`, arc seconds `″`").mend(
-                        format!("write {symbol}"),
-                        span,
-                        symbol,
-                    );
-                }
+                self.typed_arc(self.at);
                 self.at += 1;
                 self.emit(Token::Name(symbol.to_owned()), span);
             }
@@ -269,6 +281,8 @@ impl Reader<'_> {
             self.emit(Token::Named, point(self.end()));
             self.head(Kind::Colon, false);
             self.pass(Kind::Colon);
+        } else if !self.named_run() {
+            return;
         }
         let mut clause: Option<Token> = None;
         while let Some(piece) = self.piece(self.at) {
@@ -297,6 +311,8 @@ impl Reader<'_> {
                             Some(Token::With) => self.formula_until(ends),
                             _ => self.value(ends),
                         }
+                    } else {
+                        self.unset_clause();
                     }
                 }
             }
@@ -314,6 +330,45 @@ impl Reader<'_> {
                 return;
             }
         }
+    }
+
+    /// Passes the name of a run whose colon is missing; whether anything follows.
+    fn named_run(&mut self) -> bool {
+        let Some(name) = self.piece(self.at).filter(|p| p.kind == Kind::Word && self.clause(self.at).is_none()) else {
+            return self.at < self.pieces.len();
+        };
+        let alone = self.at + 1 == self.pieces.len();
+        if !alone && self.clause(self.at + 1).is_none() {
+            return true;
+        }
+        if alone {
+            self.slips
+                .error(codes::MISSING_PART, name.span, "this run says nothing")
+                .help("write `run NAME: from x = 1 m, over 20 s`");
+        } else {
+            self.slips.error(codes::MISSING_SEPARATOR, name.span, "the colon behind the run's name is missing").mend(
+                "put in `:`",
+                point(name.span.end),
+                ":",
+            );
+        }
+        self.emit(Token::Named, point(name.span.start));
+        self.plain();
+        self.emit(Token::Colon, point(name.span.end));
+        !alone
+    }
+
+    /// A clause `x 3 m` without its `=`.
+    fn unset_clause(&mut self) {
+        let end = self.end();
+        let span = self.out.last().map_or(point(end), |last| last.span);
+        if !self.slips.touches(span) {
+            self.slips
+                .error(codes::MISSING_EQUALS, span, "what this is set to is missing")
+                .help("write `x = 1 m`, `u = 2`, with a comma between");
+        }
+        self.emit(Token::Equals, point(end));
+        self.emit(Token::Gap, point(end));
     }
 
     /// The clause that begins at a piece.
