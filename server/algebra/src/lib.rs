@@ -7,12 +7,14 @@ mod calculus;
 mod call;
 mod display;
 mod function;
+mod integrate;
 mod rational;
 
 pub use arena::{Arena, Expr, Node, Role, Symbol, SymbolInfo};
 pub use budget::{Budget, MAX_DEPTH, Stopped};
 pub use build::MAX_BITS;
 pub use calculus::Derivation;
-pub use display::{DisplayOptions, Layout, Printed, verbatim};
+pub use display::{DisplayOptions, Layout, Printed, textbook, verbatim};
 pub use function::Function;
+pub use integrate::antiderivative;
 pub use rational::Rational;

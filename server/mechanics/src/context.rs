@@ -1,0 +1,62 @@
+//! What every derivation works with: the arena, the zero test with its tables, a budget, and memory across edits.
+
+use crate::symmetry::Generator;
+use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, ZeroTest};
+use std::collections::HashMap;
+
+/// Results that outlive an edit, keyed by the expressions they are of. Valid as long as the arena.
+#[derive(Default)]
+pub struct Memory {
+    /// For each generator: the prolonged derivation's results.
+    pub(crate) variations: HashMap<Generator, MemoMap>,
+    /// Velocity derivatives along motions without acceleration.
+    pub(crate) coasting: MemoMap,
+}
+
+/// A derivation's results.
+pub(crate) type MemoMap = hashbrown::HashMap<Expr, Expr>;
+
+/// The means of a derivation.
+pub struct Context<'a> {
+    /// Where expressions live.
+    pub arena: &'a mut Arena,
+    /// The zero test under the model's assumptions.
+    pub zero: &'a mut ZeroTest,
+    /// What may still be spent.
+    pub budget: &'a mut Budget,
+    /// Results of earlier edits.
+    pub memory: &'a mut Memory,
+}
+
+/// A sum that is not built: expressions with coefficients.
+pub type Parts = Vec<(Expr, Rational)>;
+
+impl Context<'_> {
+    /// Whether the sum of the parts vanishes identically.
+    pub fn vanishes(&mut self, parts: &[(Expr, Rational)]) -> Verdict {
+        match parts {
+            [] => Verdict::Proved,
+            [(e, _)] => self.zero.is_zero(self.arena, *e, self.budget),
+            _ => self.zero.sum_is_zero(self.arena, parts, self.budget),
+        }
+    }
+
+    /// Whether all vanish: the first that does not decides.
+    pub fn all_vanish(&mut self, lists: &[Parts]) -> Verdict {
+        let mut result = Verdict::Proved;
+        for parts in lists {
+            match self.vanishes(parts) {
+                Verdict::Proved => {}
+                Verdict::Undecided(r) => result = Verdict::Undecided(r),
+                refuted => return refuted,
+            }
+        }
+        result
+    }
+
+    /// The sum of the parts as one expression.
+    pub fn build(&mut self, parts: &[(Expr, Rational)]) -> Result<Expr, Stopped> {
+        self.budget.charge(parts.len())?;
+        Ok(self.arena.linear(parts))
+    }
+}
