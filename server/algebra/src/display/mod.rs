@@ -2,11 +2,16 @@
 
 mod abbreviate;
 mod compose;
+mod cost;
+mod factor;
 mod form;
 mod latex;
 mod order;
 mod plain;
+mod polynomial;
+mod simplify;
 mod text;
+mod trigonometry;
 
 #[cfg(test)]
 mod reader;
@@ -14,10 +19,11 @@ mod reader;
 mod tests;
 
 use crate::arena::{Arena, Expr};
-use crate::budget::Stopped;
+use crate::budget::{Budget, Stopped};
 use compose::Composer;
 use form::Form;
 use order::Keys;
+use simplify::Simplifier;
 
 /// The three spellings of a formula.
 #[derive(Clone, PartialEq, Eq, Hash, Debug)]
@@ -135,6 +141,22 @@ impl Layout {
         }
         self.form.to_expr(arena, &known)
     }
+}
+
+/// The textbook form: simplified, collected, factored, fewest operations. Equal to `e` by construction; never longer than
+/// [`verbatim`]. Where the budget does not suffice it is `verbatim` itself.
+pub fn textbook(arena: &mut Arena, e: Expr, options: &DisplayOptions, budget: &mut Budget) -> Layout {
+    let mut keys = Keys::default();
+    let simplified = match Simplifier::new(arena, options, &mut keys).simplify(e, 0, budget) {
+        Ok(simplified) => simplified,
+        Err(_) => e,
+    };
+    let shown = lay_out(arena, simplified, options, &mut keys);
+    if simplified == e {
+        return shown;
+    }
+    let source = lay_out(arena, e, options, &mut keys);
+    if source.operations() < shown.operations() { source } else { shown }
 }
 
 /// The expression as it is, ordered, nothing simplified.

@@ -188,8 +188,11 @@ impl Reader<'_> {
         self.space();
         let Some(c) = self.peek() else { panic!("a formula expected") };
         if self.eat('(') {
-            let e = self.sum();
+            let mut e = self.sum();
             self.expect(')');
+            for _ in 0..self.primes() {
+                e = self.arena.total(e, &mut Budget::new(10_000_000)).unwrap();
+            }
             return e;
         }
         if self.eat('√') {

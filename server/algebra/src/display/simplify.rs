@@ -1,0 +1,281 @@
+//! The textbook form: candidates, and the one with fewest operations.
+
+use crate::arena::{Arena, Expr, Node};
+use crate::budget::{Budget, Stopped};
+use crate::display::DisplayOptions;
+use crate::display::cost::Costs;
+use crate::display::factor::{Collect, Factoriser, is_proper_sum};
+use crate::display::order::Keys;
+use crate::display::polynomial::{Expander, Kind, Polynomial, Table};
+use crate::display::trigonometry::Rewriter;
+use hashbrown::{HashMap, HashSet};
+
+/// Insides nested more deeply than this stay as they are.
+const MAX_INSIDE: u32 = 24;
+
+/// One print's work.
+pub(crate) struct Simplifier<'a> {
+    pub arena: &'a mut Arena,
+    pub options: &'a DisplayOptions,
+    pub keys: &'a mut Keys,
+    pub costs: Costs,
+    table: Table,
+    open: HashMap<Expr, bool>,
+    done: HashMap<Expr, Expr>,
+    inside: HashMap<Expr, Expr>,
+}
+
+impl<'a> Simplifier<'a> {
+    pub fn new(arena: &'a mut Arena, options: &'a DisplayOptions, keys: &'a mut Keys) -> Simplifier<'a> {
+        Simplifier {
+            arena,
+            options,
+            keys,
+            costs: Costs::default(),
+            table: Table::default(),
+            open: HashMap::new(),
+            done: HashMap::new(),
+            inside: HashMap::new(),
+        }
+    }
+
+    fn cost(&mut self, e: Expr) -> usize {
+        self.costs.of(self.arena, e)
+    }
+
+    /// The shortest form found. Equal to `e`: every step is an identity.
+    pub fn simplify(&mut self, e: Expr, level: u32, budget: &mut Budget) -> Result<Expr, Stopped> {
+        if let Some(&known) = self.done.get(&e) {
+            return Ok(known);
+        }
+        budget.charge(1)?;
+        let source = self.insides(e, level, budget)?;
+        let out = self.shortest(source, budget)?;
+        self.done.insert(e, out);
+        Ok(out)
+    }
+
+    fn shortest(&mut self, source: Expr, budget: &mut Budget) -> Result<Expr, Stopped> {
+        if !matches!(self.arena.node(source), Node::Sum(..) | Node::Product(_)) {
+            return Ok(source);
+        }
+        let mut best = None;
+        let none = HashSet::new();
+        let kept = self.kept(source, budget)?;
+        let all = self.kinematic_sums(source);
+        let mut tried: Vec<HashSet<Expr>> = Vec::new();
+        for opaque in [none, kept, all] {
+            if tried.contains(&opaque) {
+                continue;
+            }
+            match self.expanded(source, &opaque, budget) {
+                Ok(p) => self.candidates(&p, &mut best, budget)?,
+                Err(Stopped::TooLarge) if budget.left() > 0 => {}
+                Err(other) => return Err(other),
+            }
+            tried.push(opaque);
+        }
+        let own = self.cost(source);
+        Ok(match best {
+            Some((cost, e)) if cost <= own => e,
+            _ => source,
+        })
+    }
+
+    fn expanded(&mut self, e: Expr, opaque: &HashSet<Expr>, budget: &mut Budget) -> Result<Polynomial, Stopped> {
+        Expander {
+            arena: self.arena,
+            table: &mut self.table,
+            opaque,
+            open: &mut self.open,
+            cap: self.options.monomials,
+        }
+        .expand(e, budget)
+    }
+
+    /// All rewritings and ways of collecting; the cheapest, of equal ones the first.
+    fn candidates(
+        &mut self,
+        p: &Polynomial,
+        best: &mut Option<(usize, Expr)>,
+        budget: &mut Budget,
+    ) -> Result<(), Stopped> {
+        let versions =
+            Rewriter { arena: self.arena, table: &mut self.table, cap: self.options.monomials }.versions(p, budget)?;
+        for (i, p) in versions.iter().enumerate() {
+            for collect in [Collect::Motion, Collect::Parameters, Collect::Nothing] {
+                let e = self.factored(p, collect, budget)?;
+                let mut cost = self.cost(e);
+                if i > 1 {
+                    // Forms that a reader would not expect must be clearly shorter.
+                    cost += cost / 5 + 1;
+                }
+                if best.as_ref().is_none_or(|b| cost < b.0) {
+                    *best = Some((cost, e));
+                }
+            }
+        }
+        Ok(())
+    }
+
+    /// Without accelerations, kinetic and potential parts stay apart.
+    fn factored(&mut self, p: &Polynomial, collect: Collect, budget: &mut Budget) -> Result<Expr, Stopped> {
+        let mut parts: Vec<(i32, Polynomial)> = Vec::new();
+        let mut accelerated = false;
+        for t in p {
+            let mut degree = 0;
+            for (a, e) in &t.monomial {
+                match self.table.kind(*a) {
+                    Kind::Velocity => degree += e,
+                    Kind::Acceleration => accelerated = true,
+                    _ => degree += e * self.degree_inside(*a),
+                }
+            }
+            match parts.iter_mut().find(|x| x.0 == degree) {
+                Some(part) => part.1.push(t.clone()),
+                None => parts.push((degree, vec![t.clone()])),
+            }
+        }
+        let mut run = |p: &Polynomial| {
+            Factoriser { arena: self.arena, table: &mut self.table, keys: self.keys, costs: &mut self.costs }
+                .run(p, collect, budget)
+        };
+        if accelerated || parts.iter().all(|p| p.0 < 2) {
+            return run(p);
+        }
+        let mut sum = Vec::with_capacity(parts.len());
+        for (_, part) in &parts {
+            sum.push(run(part)?);
+        }
+        Ok(self.arena.sum(&sum))
+    }
+
+    /// The degree in velocities of an opaque sum.
+    fn degree_inside(&mut self, atom: u32) -> i32 {
+        let base = self.table.atoms[atom as usize].base;
+        i32::from(self.table.atoms[atom as usize].root == 1 && is_proper_sum(self.arena, base) && self.moves(base))
+    }
+
+    /// Whether there are velocities or accelerations in a sum's own terms.
+    fn moves(&mut self, e: Expr) -> bool {
+        use crate::display::order::class;
+        self.keys.factor(self.arena, e).class >= class::VELOCITY
+    }
+
+    /// Sums inside of summands that are shorter as they are than expanded.
+    fn kept(&mut self, source: Expr, budget: &mut Budget) -> Result<HashSet<Expr>, Stopped> {
+        let mut kept = HashSet::new();
+        let summands = self.arena.summands(source);
+        if summands.len() < 2 || summands.len() > 200 {
+            return Ok(kept);
+        }
+        for (t, c) in summands {
+            let sums = self.kinematic_sums(t);
+            if sums.is_empty() {
+                continue;
+            }
+            let t = self.arena.scale(t, &c);
+            let mut best = None;
+            match self.expanded(t, &HashSet::new(), budget) {
+                Ok(p) if p.len() <= 64 => self.candidates(&p, &mut best, budget)?,
+                Ok(_) | Err(Stopped::TooLarge) if budget.left() > 0 => {}
+                Err(other) => return Err(other),
+                Ok(_) => return Err(Stopped::TooLarge),
+            }
+            let own = self.cost(t);
+            if best.is_none_or(|(cost, _)| own < cost) {
+                kept.extend(sums);
+            }
+        }
+        Ok(kept)
+    }
+
+    /// Sums with velocities that are multiplied by something or raised to a power, at this level.
+    fn kinematic_sums(&mut self, e: Expr) -> HashSet<Expr> {
+        let mut out = HashSet::new();
+        let mut stack: Vec<Expr> = self.arena.summands(e).into_iter().map(|t| t.0).collect();
+        while let Some(t) = stack.pop() {
+            for (b, x) in self.arena.factors(t) {
+                if x.is_integer() && is_proper_sum(self.arena, b) && self.moves(b) && out.insert(b) {
+                    stack.extend(self.arena.summands(b).into_iter().map(|t| t.0));
+                }
+            }
+        }
+        out
+    }
+
+    /// The same structure with the insides of atoms simplified.
+    fn insides(&mut self, e: Expr, level: u32, budget: &mut Budget) -> Result<Expr, Stopped> {
+        if let Some(&known) = self.inside.get(&e) {
+            return Ok(known);
+        }
+        budget.charge(1)?;
+        if level > MAX_INSIDE || self.arena.depth(e) > 256 {
+            return Ok(e);
+        }
+        let all = |s: &mut Self, list: &[Expr], budget: &mut Budget| -> Result<Vec<Expr>, Stopped> {
+            list.iter().map(|a| s.simplify(*a, level + 1, budget)).collect()
+        };
+        let out = match self.arena.node(e) {
+            Node::Number(_) | Node::Pi | Node::Undefined | Node::Symbol(_) | Node::Jet(..) | Node::Member { .. } => e,
+            Node::Sum(c, terms) => {
+                let (c, terms) = (c.clone(), terms.clone());
+                let mut list = vec![(Arena::ONE, c)];
+                for (t, k) in terms.iter() {
+                    list.push((self.insides(*t, level, budget)?, k.clone()));
+                }
+                self.arena.linear(&list)
+            }
+            Node::Product(factors) => {
+                let factors = factors.clone();
+                let mut list = Vec::with_capacity(factors.len());
+                for (b, x) in factors.iter() {
+                    let whole = x.is_integer() && !x.is_negative();
+                    // What will be expanded is not simplified before.
+                    let open = whole && is_proper_sum(self.arena, *b) && self.is_open(*b);
+                    let b = if open || !is_proper_sum(self.arena, *b) {
+                        self.insides(*b, level, budget)?
+                    } else {
+                        self.simplify(*b, level + 1, budget)?
+                    };
+                    list.push((b, x.clone()));
+                }
+                self.arena.monomial(&list)
+            }
+            Node::Power(b, x) => {
+                let list = [*b, *x];
+                let list = all(self, &list, budget)?;
+                self.arena.power(list[0], list[1])
+            }
+            Node::Call(f, args) => {
+                let (f, args) = (*f, args.clone());
+                let args = all(self, &args, budget)?;
+                self.arena.call(f, &args)
+            }
+            Node::Unspecified { function, index, orders, args } => {
+                let (function, index, orders, args) = (*function, *index, orders.clone(), args.clone());
+                let args = all(self, &args, budget)?;
+                self.arena.unspecified(function, index, &orders, &args)
+            }
+            Node::Bound { index, lower, upper, body } => {
+                let (index, lower, upper, body) = (*index, *lower, *upper, *body);
+                let body = self.simplify(body, level + 1, budget)?;
+                self.arena.bound(index, lower, upper, body, budget)?
+            }
+        };
+        self.inside.insert(e, out);
+        Ok(out)
+    }
+
+    fn is_open(&mut self, e: Expr) -> bool {
+        let opaque = HashSet::new();
+        Expander {
+            arena: self.arena,
+            table: &mut self.table,
+            opaque: &opaque,
+            open: &mut self.open,
+            cap: self.options.monomials,
+        }
+        .is_open(e)
+    }
+}
