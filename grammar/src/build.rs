@@ -23,7 +23,7 @@ pub struct Built {
 /// What was read.
 pub enum Entry {
     /// An item.
-    Item(ItemKind),
+    Item(Box<ItemKind>),
     /// A formula alone.
     Formula(Formula),
 }

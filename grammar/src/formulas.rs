@@ -313,6 +313,10 @@ impl Reader<'_> {
     fn bare(&mut self, name: &str, arity: Arity, span: Span, power: Vec<(Token, Span)>, end: usize, root: bool) {
         let start = self.at;
         let first = self.piece(start).filter(|_| start < end).map(|p| p.kind);
+        if matches!(first, Some(Kind::Gap | Kind::Unknown)) {
+            // Of what stands there a slip tells already.
+            return self.emit_call(name, span, power, Some(start + 1));
+        }
         let written = if root { "√" } else { name };
         let gap = if root { "" } else { " " };
         let single_name = first == Some(Kind::Word) && arity == Arity::One && !self.is_call(start);

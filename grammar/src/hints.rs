@@ -90,11 +90,10 @@ impl Hints<'_> {
             },
             _ => None,
         };
-        if let Some((call, argument)) = bare {
-            if !is_constant(argument) || !is_constant(right) {
-                self.function(call, argument, right);
-                return;
-            }
+        if let Some((call, argument)) = bare
+            && !(is_constant(argument) && is_constant(right))
+        {
+            return self.function(call, argument, right);
         }
         let Some(beside) = beside else { return };
         if is_constant(left) && is_constant(right) {

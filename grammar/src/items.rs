@@ -198,7 +198,7 @@ mod tests {
         let found: Vec<_> = split(text).into_iter().map(|i| i.description).collect();
         let expected = [Some("one\ntwo"), Some("four"), None, None];
         assert_eq!(found, expected.map(|d| d.map(str::to_owned)));
-        assert_eq!(description_at("parameter a, # first\n  b # second", 15), Some("second".into()));
+        assert_eq!(description_at("parameter a, # first\n  b # second", 24), Some("second".into()));
     }
 
     #[test]

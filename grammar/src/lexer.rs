@@ -295,7 +295,14 @@ mod tests {
         use Kind::*;
         check(
             "§\u{0}\u{1}\"a # b\n#\"",
-            &[(Unknown, "§"), (Unknown, "\u{1}"), (OpenText, "\"a # b"), (Newline, "\n"), (Comment, "#\"")],
+            &[
+                (Unknown, "§"),
+                (Unknown, "\0"),
+                (Unknown, "\u{1}"),
+                (OpenText, "\"a # b"),
+                (Newline, "\n"),
+                (Comment, "#\""),
+            ],
         );
         check(
             "4°30′ 21°C",

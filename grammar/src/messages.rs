@@ -19,11 +19,8 @@ pub fn report(text: &str, tokens: &[Spanned], failures: &[Failure], slips: &mut 
         let at = place(tokens, failure);
         let span = tokens.get(at).map_or_else(|| point(tokens.last().map_or(0, |t| t.span.end)), |t| t.span);
         let before = tokens[..at.min(tokens.len())].last().map_or(span, |t| t.span);
-        let said = match failure {
-            ParseError::UnrecognizedToken { .. } | ParseError::UnrecognizedEof { .. } => slips.touches(span),
-            _ => false,
-        };
-        if !said && !(at == tokens.len() && slips.touches(before)) {
+        let said = slips.touches(span) || at == tokens.len() && slips.touches(before);
+        if !said {
             Report { text, tokens, at, span, slips }.say();
         }
     }
@@ -75,7 +72,7 @@ impl Report<'_> {
                     .error(codes::UNEXPECTED, before.span.to(self.span), "a power of a power needs parentheses")
                     .help("write (x²)^3 or x^(2^3)");
             }
-            (_, Some(operator)) if is_operator(operator) && !ends_operand(&before.token) => {
+            (_, Some(operator)) if is_operator(operator) && !before.token.ends_operand() => {
                 let shown = self.shown(self.span);
                 let span = self.span;
                 self.slips
@@ -326,20 +323,6 @@ fn begins_operand(token: Option<&Token>) -> bool {
                 | Token::Negative
                 | Token::Gap
         )
-    )
-}
-
-fn ends_operand(token: &Token) -> bool {
-    matches!(
-        token,
-        Token::Name(_)
-            | Token::Number(_)
-            | Token::Prime(_)
-            | Token::Superscript(_)
-            | Token::Close
-            | Token::CloseIndex
-            | Token::CloseBar
-            | Token::Gap
     )
 }
 

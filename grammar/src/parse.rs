@@ -36,7 +36,7 @@ pub(crate) fn parse_with_tokens(text: &str, callable: &CallableNames) -> (Parsed
         ItemKind::Broken
     } else {
         match parse(text, &reading, &mut slips) {
-            Some(Entry::Item(kind)) => kind,
+            Some(Entry::Item(kind)) => *kind,
             _ => ItemKind::Broken,
         }
     };

@@ -46,6 +46,7 @@ fn mended(text: &str, slips: &mut Slips) -> Vec<(Lexeme, bool)> {
                 if touching.is_some_and(|last| last.kind == Kind::Unknown) {
                     let last = out.len() - 1;
                     out[last].0.span.end = span.end;
+                    slips.extend_last(span.end);
                     continue;
                 }
                 unknown(&text[span.range()], span, slips);
@@ -250,7 +251,25 @@ impl Balance<'_> {
         self.push(lexeme.kind, lexeme.span, begins_line);
     }
 
+    /// `f(x = …`, `U(r: …`: a list of names whose bracket is closed before the sign behind it.
+    fn close_head(&mut self) {
+        let [open] = self.stack[..] else { return };
+        let Some(from) = self.out.iter().position(|p| p.span == open.span) else { return };
+        let names = |p: &&Piece| matches!(p.kind, Kind::Word | Kind::Comma);
+        let at = from + 1 + self.out[from + 1..].iter().take_while(names).count();
+        let sign = self.out.get(at).is_some_and(|p| matches!(p.kind, Kind::Colon | Kind::Equals));
+        if open.kind != Kind::Open || !sign || at == from + 1 || self.slips.has(codes::NESTING) {
+            return;
+        }
+        self.stack.clear();
+        let end = self.out[at - 1].span.end;
+        self.unclosed(open, end);
+        self.out[at..].iter_mut().for_each(|p| p.depth = p.depth.saturating_sub(1));
+        self.out.insert(at, Piece { kind: Kind::Close, span: point(end), depth: 0, begins_line: false });
+    }
+
     fn close_all(&mut self) {
+        self.close_head();
         let end = self.out.last().map_or(0, |last| last.span.end);
         if let Some(open) = self.stack.last().copied().filter(|_| !self.slips.has(codes::NESTING)) {
             self.unclosed(open, end);
@@ -338,7 +357,7 @@ mod tests {
         check("a)", &[Word], Some("unbalanced-bracket"));
         check("(a]", &[Open, Word, Close], Some("unbalanced-bracket"));
         check("(|a)", &[Open, OpenBar, Word, CloseBar, Close], Some("unbalanced-bracket"));
-        check("((a]", &[Open, Open, Word, Close, Close], Some("unbalanced-bracket"));
+        check("((a)", &[Open, Open, Word, Close, Close], Some("unbalanced-bracket"));
     }
 
     #[test]

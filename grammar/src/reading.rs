@@ -36,6 +36,9 @@ pub fn read_item(text: &str, callable: &CallableNames, slips: &mut Slips) -> Rea
         reader.item(token, *span);
     }
     let tokens = reader.out;
+    if pieces.is_empty() {
+        slips.error(codes::NO_KEYWORD, Span::default(), "an item begins with a keyword in the first column");
+    }
     let keyword = keyword.map_or(first, |(_, span)| span);
     Reading { tokens, keyword, span: first.to(last).to(keyword) }
 }
@@ -252,7 +255,7 @@ impl<'t> Reader<'t> {
             Kind::Prime(order) => Token::Prime(order),
             Kind::Plus => Token::Plus,
             Kind::Minus => {
-                let binary = self.at >= 2 && self.pieces[self.at - 2].kind.ends_operand();
+                let binary = self.out.last().is_some_and(|last| last.token.ends_operand());
                 if binary { Token::Minus } else { Token::Negative }
             }
             Kind::Star => Token::Star,

@@ -32,6 +32,13 @@ impl Slips {
         &mut self.list[last]
     }
 
+    /// Makes the last slip's place longer.
+    pub fn extend_last(&mut self, end: u32) {
+        if let Some(last) = self.list.last_mut() {
+            last.span.end = last.span.end.max(end);
+        }
+    }
+
     /// Whether an error touches this place.
     pub fn touches(&self, span: Span) -> bool {
         self.list.iter().any(|s| s.severity == Severity::Error && s.span.start <= span.end && span.start <= s.span.end)

@@ -119,6 +119,23 @@ pub enum Token {
     Stray,
 }
 
+impl Token {
+    /// Whether a formula may end with it.
+    pub fn ends_operand(&self) -> bool {
+        matches!(
+            self,
+            Token::Name(_)
+                | Token::Number(_)
+                | Token::Prime(_)
+                | Token::Superscript(_)
+                | Token::Close
+                | Token::CloseIndex
+                | Token::CloseBar
+                | Token::Gap
+        )
+    }
+}
+
 /// A token with its place.
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub struct Spanned {

@@ -217,7 +217,8 @@ impl Reader<'_> {
         let mut slash = None;
         while self.at < end {
             let Some(piece) = self.piece(self.at) else { return };
-            let starts = matches!(piece.kind, Kind::Word | Kind::Degree | Kind::Open) && piece.depth == 0;
+            let exponent = self.at > from && self.pieces[self.at - 1].kind == Kind::Caret;
+            let starts = matches!(piece.kind, Kind::Word | Kind::Degree | Kind::Open) && piece.depth == 0 && !exponent;
             if piece.begins_line && starts && self.at > from && self.indented_keyword() {
                 return;
             }
@@ -253,15 +254,8 @@ impl Reader<'_> {
     fn quotient_unit(&mut self, from: usize, slash: usize, end: usize) {
         let span = self.pieces[from].span.to(self.pieces[end - 1].span);
         let text = |from: usize, to: usize| {
-            let words =
-                self.pieces[from..to].iter().filter(|p| !matches!(p.kind, Kind::Slash | Kind::Dot | Kind::Star));
-            words.fold(String::new(), |mut all, p| {
-                let joined =
-                    all.is_empty() || matches!(p.kind, Kind::Superscript | Kind::Caret | Kind::Number | Kind::Minus);
-                all.push_str(if joined { "" } else { " " });
-                all.push_str(&self.text[p.span.range()]);
-                all
-            })
+            let (first, last) = (self.pieces[from].span.start, self.pieces[to - 1].span.end);
+            self.text[first as usize..last as usize].trim_matches(['/', '*', '·']).replace('/', " ").trim().to_owned()
         };
         let (above, first, rest) = (text(from, slash), text(slash + 1, self.at), text(self.at, end));
         let twice = self.kind(self.at) == Some(Kind::Slash);
