@@ -9,6 +9,7 @@ mod display;
 mod function;
 mod integrate;
 mod rational;
+mod zero;
 
 pub use arena::{Arena, Expr, Node, Role, Symbol, SymbolInfo};
 pub use budget::{Budget, MAX_DEPTH, Stopped};
@@ -18,3 +19,4 @@ pub use display::{DisplayOptions, Layout, Printed, textbook, verbatim};
 pub use function::Function;
 pub use integrate::antiderivative;
 pub use rational::Rational;
+pub use zero::{Assumptions, Reason, Relation, Sign, Verdict, Witness, ZeroTest};
