@@ -1,0 +1,102 @@
+//! The help pages, written by hand.
+
+/// The line that ends a complaint about the command line.
+pub const SEE: &str = "See `leastwise help`.";
+
+/// `leastwise help`.
+pub const OVERVIEW: &str = "\
+leastwise: Lagrangian mechanics from a model file, derived exactly
+
+  leastwise check FILES…      what is wrong or worth knowing, with the place in the file
+  leastwise sheet FILE        everything derived: equations, momenta, energy, symmetries
+  leastwise format FILES…     lay models out in the one usual way
+  leastwise explain [CODE]    what a finding's code stands for
+  leastwise help [COMMAND]    this page, or one about a command
+  leastwise --version         the version
+
+A model is a plain text file, NAME.least; `-` stands for standard input. A small one:
+
+  coordinate θ: angle
+  parameter m: mass = 2 kg, l: length = 1 m, g: acceleration = 9.81 m/s^2
+  kinetic   bob    = 1/2 m l^2 θ'^2
+  potential weight = -m g l cos θ
+
+Exit status: 0 all is well, 1 something was found, 2 it could not run.
+Colours are used on a terminal only, and not where NO_COLOR is set.
+";
+
+/// `leastwise help check`.
+pub const CHECK: &str = "\
+leastwise check FILES… [--as text|json|sarif]
+
+Checks models and prints what was found, each with its place and what to do about it: slips of
+spelling, unknown names, claims that do not hold and the term that breaks them, a singular mass matrix.
+
+  --as text    for people (the usual form)
+  --as json    one object: files, their findings with code, severity, message, range (lines from
+               zero, columns in UTF-16 units), help, related places and fixes
+  --as sarif   SARIF 2.1.0, for services that collect findings
+
+Exit status: 0 nothing worse than information, 1 a warning or an error, 2 a file could not be read.
+A code in brackets, such as [cyclic-claim], is explained by `leastwise explain CODE`.
+";
+
+/// `leastwise help sheet`.
+pub const SHEET: &str = "\
+leastwise sheet FILE [--as text|json|latex]
+
+Prints all that follows from a model: the Lagrangian and its terms, equations of motion, momenta,
+mass matrix, energy, each symmetry with its charge and balance law, constants of the motion.
+
+  --as text    set for a terminal, to its width; 100 columns elsewhere (the usual form)
+  --as json    for programs; each formula as text, plain and latex
+  --as latex   a complete article; needs amsmath
+
+An equation of motion is printed as zero; with constraints the reactions stand on its right side.
+
+Exit status: 0 printed, 1 printed, but the model has errors and the sheet may lack parts,
+2 the file could not be read.
+";
+
+/// `leastwise help format`.
+pub const FORMAT: &str = "\
+leastwise format FILES… [--check]
+
+Lays models out in the one usual way and writes them back in place. Comments and the order of items
+stay; an item that cannot be read stays as it was typed. `-` reads standard input and writes the
+result to standard output.
+
+  --check      change nothing, name the files that would change
+
+Exit status: 0 done (with --check: nothing would change), 1 with --check: something would change,
+2 a file could not be read or written.
+";
+
+/// `leastwise help explain`.
+pub const EXPLAIN: &str = "\
+leastwise explain [CODE]
+
+Explains the code of a finding, such as the one in brackets in `warning[cyclic-claim]`. Without a
+code, lists all of them.
+
+Exit status: 0 explained, 2 there is no such code.
+";
+
+/// `leastwise help help`.
+pub const HELP: &str = "\
+leastwise help [COMMAND]
+
+Prints the overview, or the page of a command.
+";
+
+/// The page of a command.
+pub fn page(command: &str) -> Option<&'static str> {
+    Some(match command {
+        "check" => CHECK,
+        "sheet" => SHEET,
+        "format" => FORMAT,
+        "explain" => EXPLAIN,
+        "help" => HELP,
+        _ => return None,
+    })
+}
