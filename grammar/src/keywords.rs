@@ -138,33 +138,63 @@ pub fn near_keyword(word: &str) -> Option<&'static str> {
 
 /// The one of `known` that was probably meant: a slip of one letter in short words, of two in longer ones.
 pub fn nearest<'k>(word: &str, known: impl Iterator<Item = &'k str>) -> Option<&'k str> {
-    let letters: Vec<char> = word.chars().flat_map(char::to_lowercase).take(24).collect();
-    let allowed = if letters.len() <= 4 { 1 } else { 2 };
+    let word = Letters::of(word)?;
+    let allowed = if word.length <= 4 { 1 } else { 2 };
     known
-        .map(|k| (distance(&letters, k), k))
-        .filter(|(far, _)| *far <= allowed)
+        .filter_map(|k| Some((word.distance(&Letters::of(k)?, allowed)?, k)))
         .min_by_key(|(far, _)| *far)
         .map(|(_, k)| k)
 }
 
-/// Insertions, deletions, substitutions and swaps of neighbours between two words.
-fn distance(a: &[char], b: &str) -> usize {
-    let b: Vec<char> = b.chars().collect();
-    let mut before: Vec<usize> = vec![0; b.len() + 1];
-    let mut last: Vec<usize> = (0..=b.len()).collect();
-    for i in 1..=a.len() {
-        let mut row = vec![i];
-        for j in 1..=b.len() {
-            let same = usize::from(a[i - 1] != b[j - 1]);
-            let mut best = (last[j] + 1).min(row[j - 1] + 1).min(last[j - 1] + same);
-            if i > 1 && j > 1 && a[i - 1] == b[j - 2] && a[i - 2] == b[j - 1] {
-                best = best.min(before[j - 2] + 1);
-            }
-            row.push(best);
+/// No longer word is taken for a slip of another.
+const LONGEST: usize = 40;
+
+/// A short word, without regard to case.
+struct Letters {
+    letters: [char; LONGEST],
+    length: usize,
+}
+
+impl Letters {
+    fn of(word: &str) -> Option<Letters> {
+        let (mut letters, mut length) = (['\0'; LONGEST], 0);
+        for c in word.chars() {
+            *letters.get_mut(length)? = c.to_ascii_lowercase();
+            length += 1;
         }
-        before = std::mem::replace(&mut last, row);
+        Some(Letters { letters, length })
     }
-    last[b.len()]
+
+    /// Insertions, deletions, substitutions and swaps of neighbours, if they are no more than allowed.
+    fn distance(&self, other: &Letters, allowed: usize) -> Option<usize> {
+        if self.length.abs_diff(other.length) > allowed {
+            return None;
+        }
+        let mut rows = [[0_usize; LONGEST + 1]; 3];
+        for (j, cell) in rows[1].iter_mut().enumerate() {
+            *cell = j;
+        }
+        for i in 1..=self.length {
+            let [before, last, row] = &mut rows;
+            row[0] = i;
+            let mut least = i;
+            for j in 1..=other.length {
+                let differs = |i: usize, j: usize| usize::from(self.letters[i - 1] != other.letters[j - 1]);
+                let mut best = (last[j] + 1).min(row[j - 1] + 1).min(last[j - 1] + differs(i, j));
+                if i > 1 && j > 1 && differs(i, j - 1) == 0 && differs(i - 1, j) == 0 {
+                    best = best.min(before[j - 2] + 1);
+                }
+                row[j] = best;
+                least = least.min(best);
+            }
+            // A later cell is at least as large as the least of two rows, less one for a swap.
+            if least > allowed + 1 {
+                return None;
+            }
+            rows.rotate_left(1);
+        }
+        Some(rows[1][other.length]).filter(|far| *far <= allowed)
+    }
 }
 
 #[cfg(test)]
@@ -179,6 +209,8 @@ mod tests {
         assert_eq!(near_keyword("lte"), Some("let"));
         assert_eq!(near_keyword("mass"), None);
         assert_eq!(near_keyword("x"), None);
+        assert_eq!(near_keyword(&"kinetic".repeat(9)), None);
+        assert_eq!(near_keyword("kínetic"), Some("kinetic"));
     }
 
     #[test]
