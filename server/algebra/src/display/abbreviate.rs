@@ -5,7 +5,7 @@ use crate::display::DisplayOptions;
 use hashbrown::{HashMap, HashSet};
 
 /// Deeper nesting than this is cut by abbreviations, so that laying out may recurse.
-const MAX_NESTING: u32 = 300;
+const MAX_NESTING: u32 = 150;
 /// A part that stands once gets a letter when it is larger than this share of the page.
 const SHARE: usize = 4;
 

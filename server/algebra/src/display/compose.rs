@@ -386,6 +386,15 @@ fn turn(form: &mut Form) -> bool {
                 *form = lead_positive(Form::Sum(taken).signed(true));
                 true
             }
+            // No minus here, but one further in that can be turned: g (1 − cos θ) − b.
+            Form::Sum(list) if list.len() > 1 => {
+                let Some(i) = list.iter_mut().position(|s| turn(&mut s.form)) else { return false };
+                let mut taken = std::mem::take(list);
+                taken.iter_mut().for_each(|s| s.negative = true);
+                taken[i].negative = false;
+                *form = lead_positive(Form::Sum(taken));
+                true
+            }
             Form::Power(base, e) if e.is_integer() && !e.is_even_integer() => sum(base),
             _ => false,
         }

@@ -25,20 +25,18 @@ impl Costs {
                 let mut n = terms.len() + usize::from(!c.is_zero()) - 1;
                 let mut content = c.abs();
                 let mut bare = 0usize;
-                let mut positive = c.signum() > 0;
                 for (t, k) in terms.iter() {
                     let with = self.scaled(arena, k, *t);
                     let without = self.scaled(arena, &Rational::ONE, *t);
                     n = n.saturating_add(without);
                     bare += with - without.min(with);
                     content = if content.is_zero() { k.abs() } else { content.content(k) };
-                    positive |= !k.is_negative();
                 }
                 // One number in front of all may be shorter.
                 let inverse = content.recip().unwrap_or(Rational::ONE);
                 let taken: usize = terms.iter().map(|t| coefficient_cost(&t.1.mul(&inverse))).sum::<usize>()
                     + coefficient_cost(&content);
-                n.saturating_add(bare.min(taken)) + usize::from(!positive)
+                n.saturating_add(bare.min(taken))
             }
             Node::Product(_) => self.scaled(arena, &Rational::ONE, e),
             Node::Power(b, x) => self.of(arena, *b).saturating_add(self.of(arena, *x)) + 1,

@@ -17,9 +17,11 @@ use hashbrown::HashMap;
 pub(crate) enum Collect {
     /// Nothing.
     Nothing,
+    /// What multiplies the same acceleration.
+    Accelerations,
     /// Parameters that multiply the same thing.
     Parameters,
-    /// Also what multiplies the same acceleration, then the same velocities.
+    /// Parameters, then also what multiplies the same acceleration, then the same velocities.
     Motion,
 }
 
@@ -29,6 +31,10 @@ pub(crate) struct Factoriser<'a> {
     pub table: &'a mut Table,
     pub keys: &'a mut Keys,
     pub costs: &'a mut Costs,
+    /// Whether there are accelerations in the whole.
+    pub accelerated: bool,
+    /// The highest degree in the velocities in the whole.
+    pub degree: i32,
 }
 
 /// A factor to be taken out of some terms.
@@ -43,14 +49,14 @@ impl Factoriser<'_> {
     /// The whole job.
     pub fn run(&mut self, p: &Polynomial, collect: Collect, budget: &mut Budget) -> Result<Expr, Stopped> {
         let mut terms = p.clone();
-        if collect != Collect::Nothing {
+        if matches!(collect, Collect::Parameters | Collect::Motion) {
             terms = self.collect(
                 terms,
                 &|table, m| m.iter().copied().filter(|f| table.kind(f.0) != Kind::Parameter).collect(),
                 budget,
             )?;
         }
-        if collect == Collect::Motion {
+        if matches!(collect, Collect::Accelerations | Collect::Motion) {
             let accelerations = self.present(&terms, Kind::Acceleration);
             for a in accelerations {
                 terms = self.collect(terms, &|_, m| m.iter().copied().filter(|f| f.0 == a).collect(), budget)?;
@@ -171,6 +177,7 @@ impl Factoriser<'_> {
                     options.push(((0..terms.len()).collect(), true));
                 }
             }
+            options.extend(self.parts(terms, &set).into_iter().map(|s| (s, false)));
             for (set, clear) in options {
                 if tried.iter().any(|t| t.0 == set && (t.1 == clear && !clear)) {
                     continue;
@@ -178,12 +185,15 @@ impl Factoriser<'_> {
                 let factor = common(terms, &set, clear.then_some(atom));
                 let candidate = self.weigh(terms, &costs, set.clone(), factor);
                 tried.push((set, clear));
-                if candidate.saving <= 0 {
+                let versine = candidate.saving == 0 && self.is_versine(terms, &candidate);
+                if candidate.saving <= 0 && !versine || !self.suits(terms, &candidate) {
                     continue;
                 }
                 let better = match &best {
                     None => true,
                     Some((b, _)) if candidate.saving != b.saving => candidate.saving > b.saving,
+                    // A denominator that goes leaves no fraction in a fraction.
+                    Some((b, _)) if clear && b.terms == candidate.terms => true,
                     Some((b, _)) if candidate.terms.len() != b.terms.len() => candidate.terms.len() > b.terms.len(),
                     Some((_, key)) => self.names(&candidate.factor) < *key,
                 };
@@ -194,6 +204,93 @@ impl Factoriser<'_> {
             }
         }
         Ok(best.map(|b| b.0))
+    }
+
+    /// Smaller sets that belong together: by the degree in the velocities and by the number in front, or inertial terms
+    /// and forces.
+    fn parts(&self, terms: &[Term], set: &[usize]) -> Vec<Vec<usize>> {
+        let mut parts: Vec<((i32, Rational), Vec<usize>)> = Vec::new();
+        let mut whole: Vec<(i32, Vec<usize>)> = Vec::new();
+        for &i in set {
+            let (degree, accelerated) = self.table.motion(&terms[i].monomial);
+            let (kind, number) = match self.accelerated {
+                true => (i32::from(degree > 0 || accelerated), Rational::ONE),
+                false => (degree, terms[i].coefficient.abs()),
+            };
+            match whole.iter_mut().find(|p| p.0 == kind) {
+                Some(p) => p.1.push(i),
+                None => whole.push((kind, vec![i])),
+            }
+            let key = (kind, number);
+            match parts.iter_mut().find(|p| p.0 == key) {
+                Some(p) => p.1.push(i),
+                None => parts.push((key, vec![i])),
+            }
+        }
+        let mut out: Vec<Vec<usize>> = whole.into_iter().map(|p| p.1).collect();
+        out.extend(parts.into_iter().map(|p| p.1));
+        out.retain(|p| p.len() > 1 && p.len() < set.len());
+        out.dedup();
+        out
+    }
+
+    /// Whether a physicist would take that factor out.
+    ///
+    /// - A velocity is taken out of what multiplies it, not out of a quadratic form; likewise a coordinate out of a potential.
+    /// - Without accelerations, parts of different degree in the velocities (kinetic, potential) stay apart, unless what
+    ///   remains of the kinetic part has no parameters: 1/2 m R² (θ̇² + ω² sin² θ). Parts of the kinetic energy with
+    ///   different numbers stay apart, unless the factor goes through it all.
+    /// - With accelerations, a sine alone is not taken out of different motions; inertial terms and forces are joined only together with an acceleration, or for much.
+    fn suits(&self, terms: &[Term], c: &Candidate) -> bool {
+        let quotients: Vec<Monomial> = c.terms.iter().map(|&i| over(&terms[i].monomial, &c.factor)).collect();
+        let motion = |m: &Monomial| self.table.motion(m);
+        let is_sum = |f: &(u32, i32)| self.table.kind(f.0) == Kind::Other && self.table.motion(&[*f][..].into()).0 != 0;
+        if c.factor.iter().any(is_sum) {
+            // A whole sum with velocities, kept from the source: what is left may be that sum again.
+            return true;
+        }
+        if motion(&c.factor).0 != 0 && quotients.iter().any(|q| motion(q).0 != 0 || motion(q).1) {
+            return false;
+        }
+        let coordinate = |f: &(u32, i32)| self.table.kind(f.0) == Kind::Coordinate && f.1 > 0;
+        if !self.accelerated
+            && c.factor.iter().any(coordinate)
+            && quotients.iter().any(|q| q.iter().any(coordinate))
+            && c.terms.iter().all(|&i| motion(&terms[i].monomial).0 == 0)
+        {
+            return false;
+        }
+        let degrees: Vec<(i32, bool)> = c.terms.iter().map(|&i| motion(&terms[i].monomial)).collect();
+        let mixed = degrees.iter().any(|d| *d != degrees[0]);
+        if self.accelerated {
+            let trig = |f: &(u32, i32)| matches!(self.table.kind(f.0), Kind::Sine(_) | Kind::Cosine(_));
+            if mixed && c.factor.iter().all(trig) && c.terms.len() < terms.len() {
+                return false;
+            }
+            let still = degrees.iter().any(|d| d.0 == 0 && !d.1);
+            return !mixed || !still || degrees.iter().any(|d| d.1) || c.saving >= 4;
+        }
+        if self.degree < 2 {
+            return true;
+        }
+        let highest = degrees.iter().map(|d| d.0).max().unwrap_or(0);
+        let first = terms[c.terms[0]].coefficient.abs();
+        let equal = c.terms.iter().all(|&i| terms[i].coefficient.abs() == first);
+        if mixed {
+            let bare = |q: &Monomial| q.iter().all(|f| self.table.kind(f.0) != Kind::Parameter);
+            return equal && quotients.iter().zip(&degrees).all(|(q, d)| d.0 < highest || bare(q));
+        }
+        highest < 2 || equal || c.terms.len() == terms.iter().filter(|t| motion(&t.monomial).0 == highest).count()
+    }
+
+    /// Whether g (1 − cos θ) is in the making.
+    fn is_versine(&self, terms: &[Term], c: &Candidate) -> bool {
+        let quotients: Vec<Monomial> = c.terms.iter().map(|&i| over(&terms[i].monomial, &c.factor)).collect();
+        let cosine = |q: &Monomial| matches!(q.as_slice(), [(a, 1)] if matches!(self.table.kind(*a), Kind::Cosine(_)));
+        quotients.len() == 2
+            && quotients.iter().any(|q| q.is_empty())
+            && quotients.iter().any(cosine)
+            && c.terms.iter().all(|&i| terms[i].coefficient.abs() == c.content.abs())
     }
 
     fn names(&mut self, m: &Monomial) -> Vec<std::sync::Arc<crate::display::order::FactorKey>> {

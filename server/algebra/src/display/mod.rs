@@ -69,6 +69,9 @@ pub struct Layout {
     pub abbreviations: Vec<(String, Layout)>,
 }
 
+/// Formulas nested more deeply are not simplified.
+const MAX_DEPTH: u32 = 300;
+
 /// Past so many bytes a formula with its abbreviations written out is not spelled in plain.
 const MAX_PLAIN: usize = 4_000_000;
 
@@ -146,6 +149,9 @@ impl Layout {
 /// The textbook form: simplified, collected, factored, fewest operations. Equal to `e` by construction; never longer than
 /// [`verbatim`]. Where the budget does not suffice it is `verbatim` itself.
 pub fn textbook(arena: &mut Arena, e: Expr, options: &DisplayOptions, budget: &mut Budget) -> Layout {
+    if arena.depth(e) > MAX_DEPTH {
+        return verbatim(arena, e, options);
+    }
     let mut keys = Keys::default();
     let simplified = match Simplifier::new(arena, options, &mut keys).simplify(e, 0, budget) {
         Ok(simplified) => simplified,

@@ -97,6 +97,8 @@ pub(crate) struct FactorKey {
     pub name: Arc<NameKey>,
     function: u8,
     structure: u64,
+    /// Its degree in the velocities.
+    degree: Rational,
 }
 
 /// How a term sorts among the summands of a sum.
@@ -137,6 +139,9 @@ impl TermKey {
     }
 }
 
+/// Nesting beyond this is keyed bottom up.
+const DEEP: u32 = 60;
+
 /// Keys seen so far.
 #[derive(Default)]
 pub(crate) struct Keys {
@@ -166,11 +171,27 @@ impl Keys {
             _ => class::ACCELERATION,
         };
         let preference = if class == class::PARAMETER { name.preference() } else { 0 };
-        FactorKey { class, preference, compound: false, name, function: 0, structure }
+        let degree = if class == class::VELOCITY { Rational::ONE } else { Rational::ZERO };
+        FactorKey { class, preference, compound: false, name, function: 0, structure, degree }
     }
 
     /// The key of a base. Costs one visit per distinct node, once.
     pub fn factor(&mut self, arena: &Arena, e: Expr) -> Arc<FactorKey> {
+        if let Some(k) = self.factors.get(&e) {
+            return k.clone();
+        }
+        if arena.depth(e) > DEEP {
+            // Bottom up, so that the recursion below ends at once.
+            let mut order = Vec::new();
+            arena.visit(e, &mut |x, _| order.push(x));
+            for x in order {
+                self.key(arena, x);
+            }
+        }
+        self.key(arena, e)
+    }
+
+    fn key(&mut self, arena: &Arena, e: Expr) -> Arc<FactorKey> {
         if let Some(k) = self.factors.get(&e) {
             return k.clone();
         }
@@ -182,11 +203,12 @@ impl Keys {
             name: Arc::new(NameKey::default()),
             function: 0,
             structure,
+            degree: Rational::ZERO,
         };
         let join = |keys: &mut Keys, parts: &mut dyn Iterator<Item = Expr>| {
             let mut out: Option<FactorKey> = None;
             for p in parts {
-                let k = keys.factor(arena, p);
+                let k = keys.key(arena, p);
                 out = Some(match out {
                     None => (*k).clone(),
                     // The first name of the highest class stands for the whole, the best preference counts.
@@ -225,9 +247,14 @@ impl Keys {
                 let single = list.len() == 1;
                 let mut k = join(self, &mut list.iter().map(|t| t.0));
                 k.compound |= !single;
+                k.degree = list.iter().map(|t| self.key(arena, t.0).degree.clone()).max().unwrap_or(Rational::ZERO);
                 k
             }
-            Node::Product(list) => join(self, &mut list.iter().map(|t| t.0)),
+            Node::Product(list) => {
+                let mut k = join(self, &mut list.iter().map(|t| t.0));
+                k.degree = list.iter().fold(Rational::ZERO, |d, t| d.add(&self.key(arena, t.0).degree.mul(&t.1)));
+                k
+            }
             Node::Power(b, x) => {
                 let mut k = join(self, &mut [*b, *x].into_iter());
                 k.class = k.class.max(class::FUNCTION);
@@ -236,6 +263,7 @@ impl Keys {
             Node::Call(f, args) => {
                 let mut k = join(self, &mut args.iter().copied());
                 k.class = class::FUNCTION;
+                k.degree = Rational::ZERO;
                 k.preference = 0;
                 k.compound = false;
                 k.function = 1 + *f as u8;
@@ -275,7 +303,7 @@ impl Keys {
                 class::ACCELERATION => k.level = Reverse(2),
                 class::VELOCITY => {
                     k.level = Reverse(k.level.0.max(1));
-                    k.degree.0 = k.degree.0.add(&exponent);
+                    k.degree.0 = k.degree.0.add(&exponent.mul(&f.degree));
                 }
                 class::FUNCTION => {
                     k.functions += 1;

@@ -29,6 +29,8 @@ pub(crate) type Polynomial = Vec<Term>;
 pub(crate) enum Kind {
     /// Built from parameters only.
     Parameter,
+    /// A coordinate.
+    Coordinate,
     /// Anything else without derivatives.
     Other,
     /// The sine of the angle with that number.
@@ -45,6 +47,10 @@ pub(crate) struct Atom {
     pub base: Expr,
     pub root: i64,
     pub kind: Kind,
+    /// The degree in velocities.
+    pub degree: i32,
+    /// Whether there are accelerations.
+    pub accelerated: bool,
 }
 
 /// The atoms of one print.
@@ -74,17 +80,27 @@ impl Table {
             _ => match derivative(arena, base) {
                 Some(1) => Kind::Velocity,
                 Some(_) => Kind::Acceleration,
+                None if is_coordinate(arena, base) => Kind::Coordinate,
                 None if only_parameters(arena, base) => Kind::Parameter,
                 None => Kind::Other,
             },
         };
-        self.atoms.push(Atom { base, root, kind });
+        let (degree, accelerated) = if root == 1 { motion(arena, base, 0) } else { (0, false) };
+        self.atoms.push(Atom { base, root, kind, degree, accelerated });
         self.numbers.insert((base, root), n);
         n
     }
 
     pub fn kind(&self, atom: u32) -> Kind {
         self.atoms[atom as usize].kind
+    }
+
+    /// The degree of a monomial in the velocities, and whether it has accelerations.
+    pub fn motion(&self, m: &Monomial) -> (i32, bool) {
+        m.iter().fold((0, false), |(degree, accelerated), (a, e)| {
+            let atom = &self.atoms[*a as usize];
+            (degree + atom.degree.saturating_mul(*e), accelerated | atom.accelerated)
+        })
     }
 
     /// The expression of a monomial with its coefficient.
@@ -128,6 +144,37 @@ fn derivative(arena: &Arena, e: Expr) -> Option<u16> {
         _ => return None,
     };
     (order > 0 && arena.info(s).role == Role::Coordinate).then_some(order)
+}
+
+fn is_coordinate(arena: &Arena, e: Expr) -> bool {
+    match arena.node(e) {
+        Node::Symbol(s) | Node::Member { family: s, .. } => arena.info(*s).role == Role::Coordinate,
+        _ => false,
+    }
+}
+
+/// Degree in velocities and presence of accelerations, seen through sums and products. Insides nested very deeply count
+/// as at rest.
+fn motion(arena: &Arena, e: Expr, level: u32) -> (i32, bool) {
+    if level > 20 {
+        return (0, false);
+    }
+    match arena.node(e) {
+        Node::Jet(..) | Node::Member { .. } => match derivative(arena, e) {
+            Some(1) => (1, false),
+            Some(_) => (0, true),
+            None => (0, false),
+        },
+        Node::Sum(_, list) => list.iter().fold((0, false), |(d, a), t| {
+            let (x, y) = motion(arena, t.0, level + 1);
+            (d.max(x), a | y)
+        }),
+        Node::Product(list) => list.iter().fold((0, false), |(d, a), (b, e)| {
+            let (x, y) = motion(arena, *b, level + 1);
+            (d + x.saturating_mul(e.to_i64().unwrap_or(0) as i32), a | y)
+        }),
+        _ => (0, false),
+    }
 }
 
 fn only_parameters(arena: &Arena, e: Expr) -> bool {
@@ -210,6 +257,8 @@ pub(crate) struct Expander<'a> {
     pub opaque: &'a HashSet<Expr>,
     /// Whether a node has velocities, accelerations or trigonometric factors to expand.
     pub open: &'a mut HashMap<Expr, bool>,
+    /// Whether sums of parameters and coordinates are expanded too; their powers are not.
+    pub wide: bool,
     pub cap: usize,
 }
 
@@ -267,12 +316,9 @@ impl Expander<'_> {
                 for (base, x) in self.arena.factors(e) {
                     let (p, q) = x.small().ok_or(Stopped::TooLarge)?;
                     let sum = matches!(self.arena.node(base), Node::Sum(..));
-                    if sum
-                        && q == 1
-                        && (1..=MAX_POWER).contains(&p)
-                        && !self.opaque.contains(&base)
-                        && self.is_open(base)
-                    {
+                    let wide = self.wide && p == 1;
+                    let may = sum && q == 1 && (1..=MAX_POWER).contains(&p) && !self.opaque.contains(&base);
+                    if may && (wide || self.is_open(base)) {
                         let inner = self.expand(base, budget)?;
                         for _ in 0..p {
                             out = multiply(&out, &inner, self.cap, budget)?;

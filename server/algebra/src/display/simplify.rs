@@ -6,12 +6,16 @@ use crate::display::DisplayOptions;
 use crate::display::cost::Costs;
 use crate::display::factor::{Collect, Factoriser, is_proper_sum};
 use crate::display::order::Keys;
-use crate::display::polynomial::{Expander, Kind, Polynomial, Table};
+use crate::display::polynomial::{Expander, Polynomial, Table};
 use crate::display::trigonometry::Rewriter;
 use hashbrown::{HashMap, HashSet};
 
 /// Insides nested more deeply than this stay as they are.
 const MAX_INSIDE: u32 = 24;
+/// Sums of parameters and coordinates are multiplied out only if that gives no more terms than this.
+const MAX_WIDE: usize = 60;
+/// How many times longer a source may be whose sums are still tried as they are.
+const HOPELESS: usize = 3;
 
 /// One print's work.
 pub(crate) struct Simplifier<'a> {
@@ -59,35 +63,57 @@ impl<'a> Simplifier<'a> {
         if !matches!(self.arena.node(source), Node::Sum(..) | Node::Product(_)) {
             return Ok(source);
         }
+        let own = self.cost(source);
         let mut best = None;
-        let none = HashSet::new();
-        let kept = self.kept(source, budget)?;
-        let all = self.kinematic_sums(source);
-        let mut tried: Vec<HashSet<Expr>> = Vec::new();
-        for opaque in [none, kept, all] {
-            if tried.contains(&opaque) {
-                continue;
+        match self.expanded(source, &HashSet::new(), false, budget) {
+            Ok(p) => self.candidates(&p, &mut best, budget)?,
+            Err(Stopped::TooLarge) if budget.left() > 0 => {}
+            Err(other) => return Err(other),
+        }
+        // A source that is several times as long has no parts worth keeping.
+        if best.is_none_or(|(cost, _)| own <= HOPELESS * cost) {
+            let kept = self.kept(source, budget)?;
+            let (all, squares) = self.kinematic_sums(source);
+            let mut tried = vec![HashSet::new()];
+            for opaque in [kept, squares, all] {
+                if tried.contains(&opaque) {
+                    continue;
+                }
+                match self.expanded(source, &opaque, false, budget) {
+                    Ok(p) => self.candidates(&p, &mut best, budget)?,
+                    Err(Stopped::TooLarge) if budget.left() > 0 => {}
+                    Err(other) => return Err(other),
+                }
+                tried.push(opaque);
             }
-            match self.expanded(source, &opaque, budget) {
-                Ok(p) => self.candidates(&p, &mut best, budget)?,
+        }
+        if self.has_closed_sums(source) {
+            match self.expanded(source, &HashSet::new(), true, budget) {
+                Ok(p) if p.len() <= MAX_WIDE => self.candidates(&p, &mut best, budget)?,
+                Ok(_) => {}
                 Err(Stopped::TooLarge) if budget.left() > 0 => {}
                 Err(other) => return Err(other),
             }
-            tried.push(opaque);
         }
-        let own = self.cost(source);
         Ok(match best {
             Some((cost, e)) if cost <= own => e,
             _ => source,
         })
     }
 
-    fn expanded(&mut self, e: Expr, opaque: &HashSet<Expr>, budget: &mut Budget) -> Result<Polynomial, Stopped> {
+    fn expanded(
+        &mut self,
+        e: Expr,
+        opaque: &HashSet<Expr>,
+        wide: bool,
+        budget: &mut Budget,
+    ) -> Result<Polynomial, Stopped> {
         Expander {
             arena: self.arena,
             table: &mut self.table,
             opaque,
             open: &mut self.open,
+            wide,
             cap: self.options.monomials,
         }
         .expand(e, budget)
@@ -102,11 +128,16 @@ impl<'a> Simplifier<'a> {
     ) -> Result<(), Stopped> {
         let versions =
             Rewriter { arena: self.arena, table: &mut self.table, cap: self.options.monomials }.versions(p, budget)?;
-        for (i, p) in versions.iter().enumerate() {
-            for collect in [Collect::Motion, Collect::Parameters, Collect::Nothing] {
+        for (p, expected) in &versions {
+            let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
+            for collect in [Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing] {
                 let e = self.factored(p, collect, budget)?;
                 let mut cost = self.cost(e);
-                if i > 1 {
+                if accelerated && matches!(collect, Collect::Parameters | Collect::Nothing) {
+                    // An acceleration in two places must be worth it.
+                    cost += 1;
+                }
+                if !expected {
                     // Forms that a reader would not expect must be clearly shorter.
                     cost += cost / 5 + 1;
                 }
@@ -118,42 +149,11 @@ impl<'a> Simplifier<'a> {
         Ok(())
     }
 
-    /// Without accelerations, kinetic and potential parts stay apart.
     fn factored(&mut self, p: &Polynomial, collect: Collect, budget: &mut Budget) -> Result<Expr, Stopped> {
-        let mut parts: Vec<(i32, Polynomial)> = Vec::new();
-        let mut accelerated = false;
-        for t in p {
-            let mut degree = 0;
-            for (a, e) in &t.monomial {
-                match self.table.kind(*a) {
-                    Kind::Velocity => degree += e,
-                    Kind::Acceleration => accelerated = true,
-                    _ => degree += e * self.degree_inside(*a),
-                }
-            }
-            match parts.iter_mut().find(|x| x.0 == degree) {
-                Some(part) => part.1.push(t.clone()),
-                None => parts.push((degree, vec![t.clone()])),
-            }
-        }
-        let mut run = |p: &Polynomial| {
-            Factoriser { arena: self.arena, table: &mut self.table, keys: self.keys, costs: &mut self.costs }
-                .run(p, collect, budget)
-        };
-        if accelerated || parts.iter().all(|p| p.0 < 2) {
-            return run(p);
-        }
-        let mut sum = Vec::with_capacity(parts.len());
-        for (_, part) in &parts {
-            sum.push(run(part)?);
-        }
-        Ok(self.arena.sum(&sum))
-    }
-
-    /// The degree in velocities of an opaque sum.
-    fn degree_inside(&mut self, atom: u32) -> i32 {
-        let base = self.table.atoms[atom as usize].base;
-        i32::from(self.table.atoms[atom as usize].root == 1 && is_proper_sum(self.arena, base) && self.moves(base))
+        let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
+        let degree = p.iter().map(|t| self.table.motion(&t.monomial).0).max().unwrap_or(0);
+        let (table, costs) = (&mut self.table, &mut self.costs);
+        Factoriser { arena: self.arena, table, keys: self.keys, costs, accelerated, degree }.run(p, collect, budget)
     }
 
     /// Whether there are velocities or accelerations in a sum's own terms.
@@ -170,13 +170,13 @@ impl<'a> Simplifier<'a> {
             return Ok(kept);
         }
         for (t, c) in summands {
-            let sums = self.kinematic_sums(t);
+            let (sums, _) = self.kinematic_sums(t);
             if sums.is_empty() {
                 continue;
             }
             let t = self.arena.scale(t, &c);
             let mut best = None;
-            match self.expanded(t, &HashSet::new(), budget) {
+            match self.expanded(t, &HashSet::new(), false, budget) {
                 Ok(p) if p.len() <= 64 => self.candidates(&p, &mut best, budget)?,
                 Ok(_) | Err(Stopped::TooLarge) if budget.left() > 0 => {}
                 Err(other) => return Err(other),
@@ -190,18 +190,41 @@ impl<'a> Simplifier<'a> {
         Ok(kept)
     }
 
-    /// Sums with velocities that are multiplied by something or raised to a power, at this level.
-    fn kinematic_sums(&mut self, e: Expr) -> HashSet<Expr> {
-        let mut out = HashSet::new();
+    /// Whether a summand has a sum of parameters or coordinates as a factor.
+    fn has_closed_sums(&mut self, e: Expr) -> bool {
+        let summands = self.arena.summands(e);
+        summands.len() > 1
+            && summands.iter().any(|(t, _)| {
+                let sum = |(b, x): &(Expr, crate::rational::Rational)| {
+                    x.is_one() && is_proper_sum(self.arena, *b) && !self.is_open_now(*b)
+                };
+                self.arena.factors(*t).iter().any(sum)
+            })
+    }
+
+    fn is_open_now(&self, e: Expr) -> bool {
+        self.open.get(&e).copied().unwrap_or(false)
+    }
+
+    /// Sums with velocities that are multiplied by something or raised to a power, at this level; and those of them that
+    /// are squared.
+    fn kinematic_sums(&mut self, e: Expr) -> (HashSet<Expr>, HashSet<Expr>) {
+        let (mut all, mut squares) = (HashSet::new(), HashSet::new());
         let mut stack: Vec<Expr> = self.arena.summands(e).into_iter().map(|t| t.0).collect();
         while let Some(t) = stack.pop() {
             for (b, x) in self.arena.factors(t) {
-                if x.is_integer() && is_proper_sum(self.arena, b) && self.moves(b) && out.insert(b) {
+                if !x.is_integer() || !is_proper_sum(self.arena, b) || !self.moves(b) {
+                    continue;
+                }
+                if x.is_even_integer() {
+                    squares.insert(b);
+                }
+                if all.insert(b) {
                     stack.extend(self.arena.summands(b).into_iter().map(|t| t.0));
                 }
             }
         }
-        out
+        (all, squares)
     }
 
     /// The same structure with the insides of atoms simplified.
@@ -274,6 +297,7 @@ impl<'a> Simplifier<'a> {
             table: &mut self.table,
             opaque: &opaque,
             open: &mut self.open,
+            wide: false,
             cap: self.options.monomials,
         }
         .is_open(e)

@@ -43,9 +43,10 @@ fn ungroup(list: Vec<(Monomial, Polynomial)>) -> Polynomial {
 }
 
 impl Rewriter<'_> {
-    /// All versions worth to be looked at, the original first, equal ones once.
-    pub fn versions(&mut self, p: &Polynomial, budget: &mut Budget) -> Result<Vec<Polynomial>, Stopped> {
-        let mut out = vec![p.clone()];
+    /// All versions worth to be looked at, equal ones once; `true` marks those that a reader expects: the original and
+    /// the one with every group shortened.
+    pub fn versions(&mut self, p: &Polynomial, budget: &mut Budget) -> Result<Vec<(Polynomial, bool)>, Stopped> {
+        let mut out = vec![(p.clone(), true)];
         if !p.iter().any(|t| t.monomial.iter().any(|(a, _)| self.is_trig(*a))) {
             return Ok(out);
         }
@@ -54,21 +55,25 @@ impl Rewriter<'_> {
         for (other, group) in &list {
             best.push((other.clone(), self.best(group, budget)?));
         }
-        let mut push = |p: Polynomial| {
-            if !out.contains(&p) {
-                out.push(p);
+        let mut push = |p: Polynomial, expected: bool| {
+            if !out.iter().any(|x| x.0 == p) {
+                out.push((p, expected));
             }
         };
         let best = ungroup(best);
-        push(best.clone());
+        if 2 * best.len() <= p.len() {
+            // Nothing that begins with so many more terms ends up shorter.
+            return Ok(vec![(best, true)]);
+        }
+        push(best.clone(), true);
         for sine in [true, false] {
             let mut q = best.clone();
             for angle in 0..self.table.angles.len() as u32 {
                 q = self.pythagoras(&q, angle, sine, budget)?;
             }
-            push(q);
+            push(q, false);
         }
-        push(self.sums(p, true, budget)?);
+        push(self.sums(p, true, budget)?, false);
         Ok(out)
     }
 
