@@ -131,6 +131,55 @@ pub fn combine(
     Ok(merge(out))
 }
 
+/// Ranges of members, and for each list one expression on each range.
+pub type Aligned = (Vec<Option<(i64, i64)>>, Vec<Vec<Expr>>);
+
+/// Sums of forms of one coordinate, each list on the same ranges, so that they can be compared place by place.
+pub fn aligned(
+    arena: &mut Arena,
+    q: &Coordinate,
+    lists: &[Vec<(Vec<Form>, Rational)>],
+    budget: &mut Budget,
+) -> Result<Aligned, Stopped> {
+    let ranges: Vec<Option<(i64, i64)>> = match q.members {
+        None => vec![None],
+        Some(m) => {
+            let mut cuts = vec![m.lower, m.upper + 1];
+            for f in lists.iter().flatten().flat_map(|(fs, _)| fs) {
+                if let Some((a, b)) = f.range {
+                    cuts.extend([a, b + 1]);
+                }
+            }
+            cuts.sort_unstable();
+            cuts.dedup();
+            cuts.windows(2).map(|w| Some((w[0], w[1] - 1))).collect()
+        }
+    };
+    let mut out = Vec::with_capacity(lists.len());
+    for list in lists {
+        let mut row = Vec::with_capacity(ranges.len());
+        for range in &ranges {
+            let mut terms = Vec::new();
+            for (fs, c) in list {
+                for f in fs {
+                    let e = match (range, f.range, q.members) {
+                        (Some((a, b)), Some((x, y)), Some(m)) if x <= *a && *b <= y => {
+                            if a == b { at_member(arena, f.expr, m.index, *a, budget)? } else { f.expr }
+                        }
+                        (None, None, _) => f.expr,
+                        _ => continue,
+                    };
+                    terms.push((e, c.clone()));
+                }
+            }
+            budget.charge(1 + terms.len())?;
+            row.push(arena.linear(&terms));
+        }
+        out.push(row);
+    }
+    Ok((ranges, out))
+}
+
 /// Applies `f` to each form.
 pub fn map(
     forms: &[Form],

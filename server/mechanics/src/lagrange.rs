@@ -139,3 +139,58 @@ pub fn questions(cx: &mut Context<'_>, q: &Coordinate, parts: &FormParts) -> Res
     let forms = collect(cx, q, parts)?;
     Ok(forms.into_iter().map(|f| vec![(f.expr, Rational::ONE)]).collect())
 }
+
+/// The multiplier of a constraint, `λ_` and its name.
+pub fn multiplier(arena: &mut Arena, name: &str) -> Expr {
+    let s = arena.symbol(&format!("λ_{name}"), None, Role::Multiplier);
+    arena.sym(s)
+}
+
+/// The reaction Rᵢ = Σ λₐ aₐᵢ with aₐᵢ = ∂fₐ/∂qⁱ for a holonomic constraint, ∂fₐ/∂q̇ⁱ for one linear in the velocities
+/// (d'Alembert–Lagrange) [GPS §2.4].
+pub fn reaction(cx: &mut Context<'_>, model: &Model, q: &Coordinate) -> Result<FormParts, Stopped> {
+    let mut out = Vec::new();
+    for c in &model.constraints {
+        let order = depends_on_velocities(cx.arena, c.f) as u16;
+        let slope = forms::derivative(cx.arena, c.f, q, order, cx.budget)?;
+        let lambda = multiplier(cx.arena, &c.name);
+        let forms = forms::map(&slope, |a| Ok(cx.arena.mul(lambda, a)))?;
+        if forms.iter().any(|f| f.expr != Arena::ZERO) {
+            out.push((forms, Rational::ONE));
+        }
+    }
+    Ok(out)
+}
+
+/// Whether no constraint depends on the time, so that reactions do no work: holonomic ones free of `t`, others
+/// homogeneous in the velocities.
+pub fn constraints_at_rest(cx: &mut Context<'_>, model: &Model) -> Result<bool, Stopped> {
+    let t = crate::model::time(cx.arena);
+    let t = cx.arena.sym(t);
+    for c in &model.constraints {
+        if cx.arena.partial(c.f, t, cx.budget)? != Arena::ZERO {
+            return Ok(false);
+        }
+        let driven = cx.arena.atoms(c.f).into_iter().any(|a| match cx.arena.node(a) {
+            Node::Symbol(s) | Node::Jet(s, _) => cx.arena.info(*s).role == Role::Input,
+            Node::Member { family, .. } => cx.arena.info(*family).role == Role::Input,
+            _ => false,
+        });
+        if driven {
+            return Ok(false);
+        }
+        if depends_on_velocities(cx.arena, c.f) {
+            // What is left at zero velocity moves the constraint.
+            let mut at_rest = hashbrown::HashMap::new();
+            for a in cx.arena.atoms(c.f) {
+                if jet_order(cx.arena, a) > 0 {
+                    at_rest.insert(a, Arena::ZERO);
+                }
+            }
+            if cx.arena.substitute(c.f, &at_rest, cx.budget)? != Arena::ZERO {
+                return Ok(false);
+            }
+        }
+    }
+    Ok(true)
+}

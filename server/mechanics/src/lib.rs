@@ -1,5 +1,17 @@
-//! Lagrangian mechanics over exact expressions. Knows no text.
+//! Lagrangian mechanics over exact expressions: momenta, forces, equations of motion, energy, symmetries and their
+//! charges, and which term breaks what. This crate knows no text.
 
-pub mod model;
-pub mod forms;
 pub mod blame;
+pub mod claims;
+pub mod context;
+pub mod energy;
+pub mod forms;
+pub mod gauge;
+pub mod lagrange;
+pub mod mass;
+pub mod model;
+pub mod symmetry;
+pub mod verdicts;
+
+#[cfg(test)]
+mod fixture;

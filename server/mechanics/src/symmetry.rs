@@ -133,6 +133,22 @@ pub fn variations(
     Ok(out)
 }
 
+/// The derivatives of functions along the prolonged flow: of constraints, not of densities.
+pub fn variations_of_functions(
+    cx: &mut Context<'_>,
+    model: &Model,
+    g: &Generator,
+    functions: &[Expr],
+) -> Result<Vec<Expr>, Stopped> {
+    let mut out = variations(cx, &model.coordinates, g, functions)?;
+    let tau_rate = cx.arena.total(g.tau, cx.budget)?;
+    for (v, &f) in out.iter_mut().zip(functions) {
+        let stretch = cx.arena.mul(f, tau_rate);
+        *v = cx.arena.sub(*v, stretch);
+    }
+    Ok(out)
+}
+
 /// The prolonged vector field on an atom: t ↦ τ, q ↦ η, q̇ ↦ η̇ − q̇ τ̇; what is a given function of time moves with τ.
 fn prolonged(
     arena: &mut Arena,
@@ -173,7 +189,10 @@ fn prolonged(
                 None => g.eta[k],
             };
             let mut jet = match index {
-                Some(i) => arena.member(symbol_of_family(arena, symbol), i, 0),
+                Some(i) => {
+                    let family = symbol_of_family(arena, symbol);
+                    arena.member(family, i, 0)
+                }
                 None => arena.sym(symbol),
             };
             for _ in 0..order {
@@ -315,6 +334,11 @@ pub fn taken(cx: &mut Context<'_>, model: &Model, g: &Generator) -> Result<Vec<E
         out.push(cx.build(&moved)?);
     }
     Ok(out)
+}
+
+/// The work of each reaction against the flow, for a multiplier of one: Σ aᵢ (ηⁱ − q̇ⁱ τ).
+pub fn reaction_work(cx: &mut Context<'_>, model: &Model, g: &Generator) -> Result<Vec<Expr>, Stopped> {
+    model.constraints.iter().map(|c| along_flow(cx, model, g, c.f)).collect()
 }
 
 /// Σ ∂E/∂qⁱ (ηⁱ − q̇ⁱ τ) for E(q, t), Σ ∂E/∂q̇ⁱ (ηⁱ − q̇ⁱ τ) for E linear in the velocities.

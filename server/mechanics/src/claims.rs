@@ -1,0 +1,96 @@
+//! Claimed constants of the motion: dC/dt along motions, decided in the field with M a = b solved at each point.
+
+use crate::context::{Context, Parts};
+use crate::lagrange::jet_order;
+use crate::mass::{coasting, mass_matrix, right_sides};
+use crate::model::Model;
+use leastwise_algebra::{Arena, Expr, Motion, Stopped, Verdict};
+
+/// The verdict on a claim, and its rate.
+#[derive(Clone, PartialEq, Debug)]
+pub struct Claim {
+    /// dC/dt with the accelerations as they stand.
+    pub rate: Expr,
+    /// Whether it vanishes on motions.
+    pub verdict: Result<Verdict, Unanswered>,
+}
+
+/// Why a claim is not decided before any zero test.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub enum Unanswered {
+    /// Motions lie on the constraint surface; rates on it are not decided yet.
+    Constraints,
+    /// The system is a large family whose accelerations are not solved for.
+    LargeFamily,
+    /// The claim contains accelerations.
+    Accelerations,
+}
+
+impl std::fmt::Display for Unanswered {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        f.write_str(match self {
+            Unanswered::Constraints => "the model has constraints, and rates on their surface are not decided yet",
+            Unanswered::LargeFamily => "the accelerations of a family of more than 64 members are not solved for",
+            Unanswered::Accelerations => "the claim contains accelerations",
+        })
+    }
+}
+
+/// The accelerations' linear system, made once for a model.
+pub fn motion(cx: &mut Context<'_>, model: &Model) -> Result<Motion, Stopped> {
+    let matrix = mass_matrix(cx, model)?;
+    let mut mass = Vec::new();
+    for row in &matrix {
+        let mut out = Vec::new();
+        for entry in row {
+            out.push(cx.build(entry)?);
+        }
+        mass.push(out);
+    }
+    let mut rhs = Vec::new();
+    for b in right_sides(cx, model)? {
+        rhs.push(cx.build(&b)?);
+    }
+    Ok(Motion { mass, rhs })
+}
+
+/// Decides whether `claim` is constant along motions.
+pub fn examine(
+    cx: &mut Context<'_>,
+    model: &Model,
+    motion: Option<&Motion>,
+    claim: Expr,
+) -> Result<Claim, Stopped> {
+    let rate = cx.arena.total(claim, cx.budget)?;
+    let refuse = |reason| Ok(Claim { rate, verdict: Err(reason) });
+    if matches!(cx.vanishes(&[(rate, leastwise_algebra::Rational::ONE)]), Verdict::Proved) {
+        // Constant on every curve, motion or not.
+        return Ok(Claim { rate, verdict: Ok(Verdict::Proved) });
+    }
+    if !model.constraints.is_empty() {
+        return refuse(Unanswered::Constraints);
+    }
+    let Some(motion) = motion else { return refuse(Unanswered::LargeFamily) };
+    if jet_order(cx.arena, claim) > 1 {
+        return refuse(Unanswered::Accelerations);
+    }
+    let still = coasting(cx, claim)?;
+    let mut slopes = Vec::new();
+    for q in &model.coordinates {
+        let v = q.jet(cx.arena, 1);
+        slopes.push(cx.arena.partial(claim, v, cx.budget)?);
+    }
+    let verdict = cx.zero.rate_is_zero(cx.arena, still, &slopes, motion, cx.budget);
+    Ok(Claim { rate, verdict: Ok(verdict) })
+}
+
+/// Whether a claim is ± a sum whose conservation is known already.
+pub fn is_multiple(cx: &mut Context<'_>, claim: Expr, known: Expr) -> bool {
+    for sign in [leastwise_algebra::Rational::MINUS_ONE, leastwise_algebra::Rational::ONE] {
+        let parts: Parts = vec![(claim, leastwise_algebra::Rational::ONE), (known, sign)];
+        if claim != Arena::ZERO && matches!(cx.vanishes(&parts), Verdict::Proved) {
+            return true;
+        }
+    }
+    false
+}

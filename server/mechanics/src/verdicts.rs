@@ -1,0 +1,451 @@
+//! All questions about a model, answered: what is cyclic, what is conserved, who breaks what. Nothing is printed here.
+
+use crate::blame::{Blamed, blame};
+use crate::claims::{self, Unanswered};
+use crate::context::{Context, Parts};
+use crate::energy::{Energy, energy};
+use crate::forms::aligned;
+use crate::gauge::gauge_term;
+use crate::lagrange::{constraints_at_rest, force, generalised, questions, residual, signed_parts};
+use crate::mass::{mass_matrix, without_inertia};
+use crate::model::{Image, Model};
+use crate::symmetry::{self, Generator, NoGenerator, Status, Symmetry};
+use leastwise_algebra::{Arena, Expr, Motion, Rational, Reason, Sign, Stopped, Verdict};
+
+/// A culprit: a term, and its additive parts that break something.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct Culprit {
+    /// Which term.
+    pub term: usize,
+    /// Which of its parts.
+    pub parts: Vec<usize>,
+}
+
+/// The verdict on one coordinate.
+#[derive(Clone, PartialEq, Debug)]
+pub struct Cyclic {
+    /// Whether ∂L/∂q ≡ 0.
+    pub cyclic: Verdict,
+    /// Whether ∂L/∂q + 𝒬 ≡ 0 and no reaction can act.
+    pub momentum: Verdict,
+    /// The parts that depend on it, where it is not cyclic.
+    pub culprits: Vec<Culprit>,
+}
+
+/// The answer to a symmetry claim.
+#[derive(Clone, PartialEq, Debug)]
+pub struct SymmetryAnswer {
+    /// Variation and status.
+    pub symmetry: Symmetry,
+    /// The charge, gauge term included.
+    pub charge: Expr,
+    /// F, where it is not zero.
+    pub gauge: Option<Expr>,
+    /// Whether F exists but no closed form was found.
+    pub gauge_unknown: bool,
+    /// dQ/dt along motions, unsummed.
+    pub rate: Parts,
+    /// Whether it vanishes.
+    pub conserved: Result<Verdict, Unanswered>,
+    /// Whom to blame, for a broken one.
+    pub culprits: Vec<Culprit>,
+    /// Whether the culprits are a smallest set.
+    pub smallest: bool,
+    /// What each force takes from the charge.
+    pub taken: Vec<Expr>,
+    /// Whether the flow preserves the constraints, where that is proved.
+    pub respects_constraints: Option<bool>,
+}
+
+/// What is said of the mass matrix.
+#[derive(Clone, PartialEq, Debug)]
+pub enum MassVerdict {
+    /// Regular, as far as is asked.
+    Regular,
+    /// det M ≡ 0; the coordinates without any kinetic term.
+    Singular(Vec<usize>),
+    /// A principal minor is nowhere positive: the coordinates of the minor.
+    NotPositive(Vec<usize>),
+    /// Not decided.
+    Undecided(String),
+}
+
+/// The model's own answers.
+pub struct Answers {
+    /// For each coordinate.
+    pub cyclic: Vec<Cyclic>,
+    /// The energy function.
+    pub energy: Energy,
+    /// The parts that depend on the time, where the energy function is not conserved for that reason.
+    pub timely: Vec<Culprit>,
+    /// The mass matrix.
+    pub mass: MassVerdict,
+    /// M and b of the accelerations, where they are solved for.
+    pub motion: Option<Motion>,
+}
+
+/// Answers what concerns the model alone.
+pub fn answer(cx: &mut Context<'_>, model: &Model, with_motion: bool) -> Result<Answers, Stopped> {
+    let signed = signed_parts(model);
+    let all: Parts = signed.concat();
+    let mut cyclic = Vec::new();
+    for q in &model.coordinates {
+        let mut parts = force(cx, &all, q)?;
+        let lists = questions(cx, q, &parts)?;
+        let verdict = cx.all_vanish(&lists);
+        let mut acted = false;
+        for f in &model.forces {
+            let more = generalised(cx, f, q)?;
+            acted |= !more.is_empty();
+            parts.extend(more);
+        }
+        let momentum = if acted {
+            let lists = questions(cx, q, &parts)?;
+            cx.all_vanish(&lists)
+        } else {
+            verdict.clone()
+        };
+        let culprits = if matches!(verdict, Verdict::Refuted(_)) {
+            let mut lists = Vec::new();
+            for t in &signed {
+                for p in t {
+                    lists.push(force(cx, &vec![p.clone()], q)?);
+                }
+            }
+            let (_, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
+            culprits(cx, model, rows)?.0
+        } else {
+            Vec::new()
+        };
+        cyclic.push(Cyclic { cyclic: verdict, momentum, culprits });
+    }
+    let energy = energy(cx, model)?;
+    let timely = if matches!(energy.autonomous, Verdict::Refuted(_)) {
+        let g = symmetry::delay(model);
+        let flat: Vec<Expr> = all.iter().map(|p| p.0).collect();
+        let v = symmetry::variations(cx, &model.coordinates, &g, &flat)?;
+        let mut rows = Vec::new();
+        for (v, (_, c)) in v.into_iter().zip(&all) {
+            rows.push(vec![cx.arena.scale(v, c)]);
+        }
+        culprits(cx, model, rows)?.0
+    } else {
+        Vec::new()
+    };
+    let large = model.coordinates.iter().any(|q| q.members.is_some());
+    let mut motion = None;
+    let mass = if large || model.coordinates.is_empty() {
+        MassVerdict::Regular
+    } else {
+        let matrix = mass_matrix(cx, model)?;
+        if with_motion {
+            motion = Some(claims::motion(cx, model)?);
+        }
+        mass_verdict(cx, &matrix)?
+    };
+    Ok(Answers { cyclic, energy, timely, mass, motion })
+}
+
+fn mass_verdict(cx: &mut Context<'_>, matrix: &[Vec<Parts>]) -> Result<MassVerdict, Stopped> {
+    let idle = without_inertia(matrix);
+    if !idle.is_empty() {
+        return Ok(MassVerdict::Singular(idle));
+    }
+    let mut built = Vec::new();
+    for row in matrix {
+        let mut out = Vec::new();
+        for entry in row {
+            out.push(cx.build(entry)?);
+        }
+        built.push(out);
+    }
+    match cx.zero.determinant_is_zero(cx.arena, &built, cx.budget) {
+        Verdict::Proved => return Ok(MassVerdict::Singular(Vec::new())),
+        Verdict::Undecided(r) => return Ok(MassVerdict::Undecided(r.to_string())),
+        Verdict::Refuted(_) => {}
+    }
+    // A positive definite matrix has positive principal minors [Sylvester]; one that is never positive refutes it.
+    for i in 0..built.len() {
+        if matches!(cx.zero.sign_of(cx.arena, built[i][i], cx.budget), Sign::Negative | Sign::NonPositive | Sign::Zero) {
+            return Ok(MassVerdict::NotPositive(vec![i]));
+        }
+    }
+    for i in 0..built.len().min(24) {
+        for j in 0..i {
+            if built[i][j] == Arena::ZERO {
+                continue;
+            }
+            let (a, b) = (cx.arena.mul(built[i][i], built[j][j]), cx.arena.pow(built[i][j], 2));
+            let minor = cx.arena.sub(a, b);
+            if matches!(cx.zero.sign_of(cx.arena, minor, cx.budget), Sign::Negative | Sign::NonPositive) {
+                return Ok(MassVerdict::NotPositive(vec![j, i]));
+            }
+        }
+    }
+    Ok(MassVerdict::Regular)
+}
+
+/// Whom to blame that the rows do not sum to zero. `rows` holds, for each additive part of each term in order, what
+/// should vanish in sum. Terms are blamed first, then parts inside them.
+fn culprits(cx: &mut Context<'_>, model: &Model, rows: Vec<Vec<Expr>>) -> Result<(Vec<Culprit>, bool), Stopped> {
+    let width = rows.first().map_or(0, Vec::len);
+    let mut first = 0;
+    let mut spans = Vec::new();
+    let mut terms = Vec::new();
+    for t in &model.terms {
+        let span = first..first + t.parts.len();
+        first = span.end;
+        let mut sums = Vec::with_capacity(width);
+        for place in 0..width {
+            let parts: Parts = rows[span.clone()].iter().map(|r| (r[place], Rational::ONE)).collect();
+            sums.push(cx.build(&parts)?);
+        }
+        terms.push(sums);
+        spans.push(span);
+    }
+    let Some(blamed) = blamed(cx, &terms)? else { return Ok((Vec::new(), true)) };
+    let pool: Vec<(usize, usize)> =
+        blamed.culprits.iter().flat_map(|&t| (0..spans[t].len()).map(move |p| (t, p))).collect();
+    let vectors: Vec<Vec<Expr>> = pool.iter().map(|&(t, p)| rows[spans[t].start + p].clone()).collect();
+    let inner = blamed_parts(cx, &vectors)?;
+    let out = blamed
+        .culprits
+        .iter()
+        .map(|&term| Culprit {
+            term,
+            parts: inner.iter().map(|&k| pool[k]).filter(|x| x.0 == term).map(|x| x.1).collect(),
+        })
+        .collect();
+    Ok((out, blamed.smallest))
+}
+
+/// Blames summands given by expressions; `None` where their residues cannot be told.
+fn blamed(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Option<Blamed>, Stopped> {
+    // As many residues as summands and some more tell every dependence.
+    let width = summands.first().map_or(1, Vec::len).max(1);
+    let length = (summands.len() + 4).div_ceil(width).max(2);
+    match cx.zero.residue_vectors(cx.arena, summands, length, cx.budget) {
+        Ok(residues) => Ok(Some(blame(&residues))),
+        Err(Reason::TooLarge) => Err(Stopped::TooLarge),
+        Err(Reason::Cancelled) => Err(Stopped::Cancelled),
+        Err(_) => Ok(None),
+    }
+}
+
+fn blamed_parts(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Vec<usize>, Stopped> {
+    Ok(blamed(cx, summands)?.map_or_else(|| (0..summands.len()).collect(), |b| b.culprits))
+}
+
+/// Answers a symmetry claim.
+pub fn answer_symmetry(
+    cx: &mut Context<'_>,
+    model: &Model,
+    images: &[Image],
+) -> Result<SymmetryAnswer, NoGenerator> {
+    let g = symmetry::generator(cx, model, images)?;
+    Ok(answer_generator(cx, model, g)?)
+}
+
+/// Answers for a generator.
+pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Result<SymmetryAnswer, Stopped> {
+    let symmetry = symmetry::examine(cx, model, g)?;
+    let g = &symmetry.generator;
+    let (mut culprit_list, mut smallest) = (Vec::new(), true);
+    if symmetry.status == Status::Broken {
+        let mut rows: Vec<Vec<Expr>> = vec![Vec::new(); symmetry.variations.iter().map(Vec::len).sum()];
+        for q in &model.coordinates {
+            let mut lists = Vec::new();
+            for v in symmetry.variations.iter().flatten() {
+                lists.push(if v.0 == Arena::ZERO { Vec::new() } else { residual(cx, &vec![v.clone()], q)? });
+            }
+            if lists.iter().all(Vec::is_empty) {
+                continue;
+            }
+            for (row, more) in rows.iter_mut().zip(aligned(cx.arena, q, &lists, cx.budget)?.1) {
+                row.extend(more);
+            }
+        }
+        (culprit_list, smallest) = culprits(cx, model, rows)?;
+    }
+    // V without the terms to blame is exact or a total derivative.
+    let kept: Parts = symmetry
+        .variations
+        .iter()
+        .enumerate()
+        .filter(|(t, _)| !culprit_list.iter().any(|c| c.term == *t))
+        .flat_map(|(_, v)| v.iter().cloned())
+        .filter(|p| p.0 != Arena::ZERO)
+        .collect();
+    let mut gauge = None;
+    let mut gauge_unknown = false;
+    let derivative_left = match symmetry.status {
+        Status::UpToGauge => true,
+        Status::Broken => !matches!(cx.vanishes(&kept), Verdict::Proved),
+        _ => false,
+    };
+    if derivative_left {
+        gauge = gauge_term(cx, model, &kept)?;
+        gauge_unknown = gauge.is_none();
+    }
+    let mut charge = symmetry::charge(cx, model, g)?;
+    if let Some(f) = gauge {
+        charge = cx.arena.sub(charge, f);
+    }
+    let mut rate = Parts::new();
+    let known = match symmetry.status {
+        Status::Exact => true,
+        Status::UpToGauge => gauge.is_some(),
+        _ => false,
+    };
+    if !known {
+        rate.extend(symmetry.variations.concat().into_iter().filter(|p| p.0 != Arena::ZERO));
+        if let Some(f) = gauge {
+            rate.push((cx.arena.total(f, cx.budget)?, Rational::MINUS_ONE));
+        }
+    }
+    let taken = symmetry::taken(cx, model, g)?;
+    rate.extend(taken.iter().filter(|&&e| e != Arena::ZERO).map(|&e| (e, Rational::ONE)));
+    // A delay meets reactions that do no work if the constraints are at rest; otherwise their work must vanish by itself.
+    let mut idle = true;
+    for w in symmetry::reaction_work(cx, model, g)? {
+        idle &= cx.vanishes(&[(w, Rational::ONE)]).is_proved();
+    }
+    let pure_delay = g.tau == Arena::ONE && g.eta.iter().all(|&e| e == Arena::ZERO);
+    if !idle && pure_delay {
+        idle = constraints_at_rest(cx, model)?;
+    }
+    let conserved = match cx.vanishes(&rate) {
+        Verdict::Proved if idle => Ok(Verdict::Proved),
+        _ if !model.constraints.is_empty() => Err(Unanswered::Constraints),
+        v => Ok(v),
+    };
+    let mut respects = None;
+    if !model.constraints.is_empty() {
+        let functions: Vec<Expr> = model.constraints.iter().map(|c| c.f).collect();
+        let mut all = true;
+        for v in symmetry::variations_of_functions(cx, model, g, &functions)? {
+            all &= cx.vanishes(&[(v, Rational::ONE)]).is_proved();
+        }
+        // A flow that moves the constraint functions may still preserve their zeros.
+        respects = all.then_some(true);
+    }
+    Ok(SymmetryAnswer {
+        charge,
+        gauge,
+        gauge_unknown,
+        rate,
+        conserved,
+        culprits: culprit_list,
+        smallest,
+        taken,
+        respects_constraints: respects,
+        symmetry,
+    })
+}
+
+/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, it is compared with
+/// what is known to be conserved.
+pub fn answer_claim(
+    cx: &mut Context<'_>,
+    model: &Model,
+    answers: &Answers,
+    known: &[Expr],
+    claim: Expr,
+) -> Result<claims::Claim, Stopped> {
+    let mut result = claims::examine(cx, model, answers.motion.as_ref(), claim)?;
+    if matches!(result.verdict, Err(Unanswered::LargeFamily)) {
+        let energy_holds = matches!(answers.energy.conserved, Verdict::Proved);
+        let energy = answers.energy.function;
+        if known.iter().any(|&k| claims::is_multiple(cx, claim, k))
+            || energy_holds && claims::is_multiple(cx, claim, energy)
+        {
+            result.verdict = Ok(Verdict::Proved);
+        }
+    }
+    Ok(result)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::fixture::{Fixture, double_pendulum, kepler};
+
+    fn check(f: &mut Fixture, images: &[Image], status: Status, blamed: &[usize]) -> SymmetryAnswer {
+        let model = f.model.clone();
+        let a = answer_symmetry(&mut f.cx(), &model, images).expect("a generator");
+        assert_eq!(a.symmetry.status, status);
+        assert_eq!(a.culprits.iter().map(|c| c.term).collect::<Vec<_>>(), blamed);
+        a
+    }
+
+    #[test]
+    fn both_weights_break_the_turn_of_a_double_pendulum() {
+        let mut f = double_pendulum();
+        let q: Vec<Expr> = f.model.coordinates.clone().iter().map(|q| q.jet(&mut f.arena, 0)).collect();
+        let images = f.shifts(&[(q[0], Arena::ONE), (q[1], Arena::ONE)]);
+        check(&mut f, &images, Status::Broken, &[1, 3]);
+    }
+
+    #[test]
+    fn a_rotation_leaves_the_orbit_problem_as_it_is() {
+        let mut f = kepler();
+        let q: Vec<Expr> = f.model.coordinates.clone().iter().map(|q| q.jet(&mut f.arena, 0)).collect();
+        let minus_y = f.arena.neg(q[1]);
+        let images = f.shifts(&[(q[0], minus_y), (q[1], q[0])]);
+        let a = check(&mut f, &images, Status::Exact, &[]);
+        assert!(matches!(a.conserved, Ok(Verdict::Proved)));
+        // A shift of x is broken by gravity alone.
+        let images = f.shifts(&[(q[0], Arena::ONE)]);
+        check(&mut f, &images, Status::Broken, &[1]);
+    }
+
+    #[test]
+    fn a_boost_holds_up_to_a_gauge_term() {
+        let mut f = kepler();
+        f.model.terms.pop();
+        let q: Vec<Expr> = f.model.coordinates.clone().iter().map(|q| q.jet(&mut f.arena, 0)).collect();
+        let t = f.time();
+        let images = f.shifts(&[(q[0], t)]);
+        let a = check(&mut f, &images, Status::UpToGauge, &[]);
+        // F = m x.
+        let m = f.parameter("m");
+        let want = f.arena.mul(m, q[0]);
+        assert_eq!(a.gauge, Some(want));
+    }
+
+    #[test]
+    fn a_family_that_is_not_the_identity_is_refused() {
+        let mut f = kepler();
+        let q = f.model.coordinates[0].clone().jet(&mut f.arena, 0);
+        let eps = f.epsilon();
+        let target = f.arena.mul(q, eps);
+        let model = f.model.clone();
+        let got = answer_symmetry(&mut f.cx(), &model, &[Image { source: q, target }]);
+        assert_eq!(got, Err(NoGenerator::NotTheIdentity(0)));
+    }
+
+    #[test]
+    fn the_energy_is_conserved_and_claims_are_told_apart() {
+        let mut f = kepler();
+        let model = f.model.clone();
+        let answers = answer(&mut f.cx(), &model, true).unwrap();
+        assert_eq!(answers.energy.conserved, Verdict::Proved);
+        assert_eq!(answers.mass, MassVerdict::Regular);
+        // The x component of the Laplace–Runge–Lenz vector [GPS §3.9], and one with a wrong sign.
+        let q: Vec<(Expr, Expr)> =
+            model.coordinates.iter().map(|q| (q.jet(&mut f.arena, 0), q.jet(&mut f.arena, 1))).collect();
+        let ((x, vx), (y, vy)) = (q[0], q[1]);
+        let (m, k) = (f.parameter("m"), f.parameter("k"));
+        let (a, b) = (f.arena.mul(x, vy), f.arena.mul(y, vx));
+        let l = f.arena.sub(a, b);
+        let first = f.arena.product(&[m, l, vy]);
+        let (x2, y2) = (f.arena.pow(x, 2), f.arena.pow(y, 2));
+        let r2 = f.arena.add(x2, y2);
+        let second = f.arena.monomial(&[(k, Rational::ONE), (x, Rational::ONE), (r2, Rational::HALF.neg())]);
+        let (right, wrong) = (f.arena.sub(first, second), f.arena.add(first, second));
+        let got = answer_claim(&mut f.cx(), &model, &answers, &[], right).unwrap();
+        assert!(matches!(got.verdict, Ok(Verdict::Proved)));
+        let got = answer_claim(&mut f.cx(), &model, &answers, &[], wrong).unwrap();
+        assert!(matches!(got.verdict, Ok(Verdict::Refuted(_))));
+    }
+}
