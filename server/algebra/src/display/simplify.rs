@@ -14,6 +14,8 @@ use hashbrown::{HashMap, HashSet};
 const MAX_INSIDE: u32 = 24;
 /// Sums of parameters and coordinates are multiplied out only if that gives no more terms than this.
 const MAX_WIDE: usize = 60;
+/// Polynomials with more terms are collected in two ways only.
+const MAX_WAYS: usize = 16;
 /// How many times longer a source may be whose sums are still tried as they are.
 const HOPELESS: usize = 3;
 
@@ -130,7 +132,10 @@ impl<'a> Simplifier<'a> {
             Rewriter { arena: self.arena, table: &mut self.table, cap: self.options.monomials }.versions(p, budget)?;
         for (p, expected) in &versions {
             let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
-            for collect in [Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing] {
+            let ways = [Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing];
+            // What is long gains nothing by being collected less.
+            let count = if p.len() > MAX_WAYS { 2 } else { ways.len() };
+            for collect in ways.into_iter().take(count) {
                 let e = self.factored(p, collect, budget)?;
                 let mut cost = self.cost(e);
                 if accelerated && matches!(collect, Collect::Parameters | Collect::Nothing) {

@@ -1,6 +1,7 @@
 //! What is printed reads back as what was meant, in all spellings.
 
 mod cases;
+mod properties;
 mod system;
 mod targets;
 mod verbatim;
