@@ -1,1 +1,30 @@
-//! analysis.
+//! From syntax trees to a model of mechanics, and findings about names and formulas.
+
+mod assemble;
+pub mod checked;
+pub mod codes;
+pub mod database;
+mod derive;
+mod finding;
+mod formula;
+mod hints;
+pub mod include;
+mod lower;
+mod names;
+pub mod quantities;
+pub mod report;
+pub mod scope;
+mod sheet;
+pub mod uses;
+mod values;
+mod verdicts;
+
+pub use checked::Checked;
+pub use database::Session;
+pub use derive::Derived;
+pub use include::Files;
+
+#[cfg(test)]
+mod fixture;
+#[cfg(test)]
+mod models;

@@ -1,0 +1,134 @@
+//! From a checked model to its derivation: the mechanics is asked. Printing comes after, where somebody looks.
+
+use crate::checked::Checked;
+use crate::database::Session;
+use crate::formula::Prints;
+use crate::report::{Finding, Sheet};
+use crate::sheet::Maker;
+use crate::verdicts as told;
+use leastwise_algebra::{Arena, Assumptions, Budget, Expr, Stopped, Verdict, ZeroTest};
+use leastwise_mechanics::claims::Claim;
+use leastwise_mechanics::context::{Context, Memory, Parts};
+use leastwise_mechanics::symmetry::NoGenerator;
+use leastwise_mechanics::verdicts::{self, Answers, SymmetryAnswer};
+
+/// Nodes that one model's derivation may visit or make.
+const NODES: u64 = 60_000_000;
+
+/// All verdicts on a model.
+pub struct Derived {
+    /// The model's own answers, or why there are none.
+    pub answers: Result<Answers, Stopped>,
+    /// One for each symmetry claim.
+    pub symmetries: Vec<Result<SymmetryAnswer, NoGenerator>>,
+    /// One for each claimed constant.
+    pub conserved: Vec<Result<Claim, Stopped>>,
+}
+
+/// What the derivations of an epoch leave behind for the next edit.
+pub(crate) struct Desk {
+    epoch: u64,
+    zero: ZeroTest,
+    memory: Memory,
+    prints: Prints,
+}
+
+impl Default for Desk {
+    fn default() -> Desk {
+        Desk {
+            epoch: 0,
+            zero: ZeroTest::new(Assumptions::new()),
+            memory: Memory::default(),
+            prints: Prints::default(),
+        }
+    }
+}
+
+impl Session {
+    /// Takes the desk out, cleared where the epoch has changed, under the model's assumptions.
+    fn desk_for(&mut self, checked: &Checked) -> Desk {
+        let mut desk = std::mem::take(&mut self.desk);
+        if desk.epoch != checked.epoch {
+            desk = Desk { epoch: checked.epoch, ..Desk::default() };
+        }
+        let mut facts = Assumptions::new();
+        for (difference, relation) in checked.assumptions() {
+            facts.assume(&mut self.arena, *difference, *relation);
+        }
+        desk.zero.set_assumptions(facts);
+        desk
+    }
+
+    /// Derives everything that verdicts need; prints nothing. The model must be of the session's last epoch.
+    pub fn derive(&mut self, checked: &Checked) -> Derived {
+        let mut desk = self.desk_for(checked);
+        let mut budget = Budget::new(NODES);
+        let mut cx = Context {
+            arena: &mut self.arena,
+            zero: &mut desk.zero,
+            budget: &mut budget,
+            memory: &mut desk.memory,
+        };
+        let derived = derive(&mut cx, checked);
+        self.desk = desk;
+        derived
+    }
+
+    /// All findings: of the text and of the mechanics, in the order of the file.
+    pub fn findings(&mut self, checked: &Checked, derived: &Derived) -> Vec<Finding> {
+        let mut out = checked.findings.clone();
+        self.with_maker(checked, |maker| out.extend(told::findings(maker, checked, derived)));
+        out.sort_by_key(|f| (f.range.start, f.range.end));
+        out
+    }
+
+    /// The sheet. Errors: where the model is too large to be derived.
+    pub fn sheet(&mut self, checked: &Checked, derived: &Derived) -> Result<Sheet, Stopped> {
+        self.with_maker(checked, |maker| maker.make(checked, derived))
+    }
+
+    fn with_maker<T>(&mut self, checked: &Checked, f: impl FnOnce(&mut Maker<'_>) -> T) -> T {
+        let mut desk = self.desk_for(checked);
+        let mut budget = Budget::new(NODES);
+        let mut maker = Maker {
+            arena: &mut self.arena,
+            zero: &mut desk.zero,
+            memory: &mut desk.memory,
+            prints: &mut desk.prints,
+            budget: &mut budget,
+        };
+        let result = f(&mut maker);
+        self.desk = desk;
+        result
+    }
+}
+
+fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
+    let model = checked.model();
+    let answers = verdicts::answer(cx, model, !checked.conserved().is_empty());
+    let mut symmetries = Vec::new();
+    for claim in checked.symmetries() {
+        symmetries.push(verdicts::answer_symmetry(cx, model, &claim.images));
+    }
+    let mut known = Vec::new();
+    if model.coordinates.iter().any(|q| q.members.is_some()) {
+        for s in symmetries.iter().flatten() {
+            if matches!(s.conserved, Ok(Verdict::Proved)) {
+                known.push(s.charge);
+            }
+        }
+    }
+    let mut conserved = Vec::new();
+    for claim in checked.conserved() {
+        conserved.push(match &answers {
+            Ok(a) => verdicts::answer_claim(cx, model, a, &known, claim.expr),
+            Err(s) => Err(*s),
+        });
+    }
+    Derived { answers, symmetries, conserved }
+}
+
+/// The sum of unsummed parts.
+pub(crate) fn total(arena: &mut Arena, parts: &Parts) -> Expr {
+    arena.linear(parts)
+}

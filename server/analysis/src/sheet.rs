@@ -1,0 +1,319 @@
+//! The sheet: everything derived, printed.
+
+use crate::checked::Checked;
+use crate::derive::{Derived, total};
+use crate::formula::Prints;
+use crate::report::{
+    Answer, BreakerRow, ConservedRow, CoordinateRow, EnergyRow, Formula, MassEntry, Members, Sheet, Status, SymmetryRow,
+    TermRow,
+};
+use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, Witness, ZeroTest};
+use leastwise_mechanics::context::{Context, Memory, Parts};
+use leastwise_mechanics::energy::is_total_energy;
+use leastwise_mechanics::forms::{aligned, at_member};
+use leastwise_mechanics::lagrange::{self, FormParts, signed_parts};
+use leastwise_mechanics::mass::{mass_matrix, sparse_mass_matrix};
+use leastwise_mechanics::model::{Coordinate, Model, TermKind};
+use leastwise_mechanics::symmetry;
+
+/// What a sheet is made with.
+pub(crate) struct Maker<'a> {
+    pub arena: &'a mut Arena,
+    pub zero: &'a mut ZeroTest,
+    pub memory: &'a mut Memory,
+    pub prints: &'a mut Prints,
+    pub budget: &'a mut Budget,
+}
+
+impl Maker<'_> {
+    fn cx(&mut self) -> Context<'_> {
+        Context { arena: self.arena, zero: self.zero, budget: self.budget, memory: self.memory }
+    }
+
+    fn print(&mut self, e: Expr) -> Formula {
+        self.prints.formula(self.arena, e)
+    }
+
+    fn print_parts(&mut self, parts: &Parts) -> Formula {
+        let e = total(self.arena, parts);
+        self.print(e)
+    }
+
+    /// The verdict in words, with the witness for what is being denied.
+    pub fn answer(&mut self, of: Expr, verdict: &Verdict) -> Answer {
+        match verdict {
+            Verdict::Proved => Answer::Yes,
+            Verdict::Refuted(w) => Answer::No(w.as_ref().map(|w| self.witness(of, w))),
+            Verdict::Undecided(r) => Answer::Undecided(r.to_string()),
+        }
+    }
+
+    fn witness(&mut self, of: Expr, w: &Witness) -> String {
+        let values: Vec<String> = self
+            .zero
+            .witness_values(self.arena, of, w)
+            .into_iter()
+            .map(|(atom, value)| format!("{} = {value}", self.prints.text(self.arena, atom)))
+            .collect();
+        let middle = 0.5 * (w.lower + w.upper);
+        if values.is_empty() { format!("{middle:.6}") } else { format!("{middle:.6} at {}", values.join(", ")) }
+    }
+
+    /// Makes the sheet. Errors: [`Stopped`] where even single parts are too large to be derived.
+    pub fn make(&mut self, checked: &Checked, derived: &Derived) -> Result<Sheet, Stopped> {
+        let model = checked.model();
+        let answers = derived.answers.as_ref().map_err(|s| *s)?;
+        let terms = model
+            .terms
+            .iter()
+            .map(|t| {
+                let parts: Parts = t.parts.iter().map(|&p| (p, Rational::ONE)).collect();
+                TermRow { name: t.name.clone(), kind: kind_name(t.kind), formula: self.print_parts(&parts) }
+            })
+            .collect();
+        let lagrangian = lagrange::lagrangian(&mut self.cx(), model)?;
+        let lagrangian = self.print(lagrangian);
+        let mut coordinates = Vec::new();
+        for (i, q) in model.coordinates.iter().enumerate() {
+            let verdict = &answers.cyclic[i];
+            self.coordinate_rows(checked, model, q, verdict, &mut coordinates)?;
+        }
+        let large = model.coordinates.iter().any(|q| q.members.is_some());
+        let (mut matrix, mut entries) = (Vec::new(), Vec::new());
+        if large {
+            entries = self.sparse_matrix(model)?;
+        } else {
+            for row in mass_matrix(&mut self.cx(), model)? {
+                matrix.push(row.iter().map(|e| self.print_parts(e)).collect());
+            }
+        }
+        let energy = self.energy(model, answers)?;
+        let mut symmetries = Vec::new();
+        for (claim, answer) in checked.symmetries().iter().zip(&derived.symmetries) {
+            // A claim without a generator has its own finding and no row.
+            if let Ok(answer) = answer {
+                symmetries.push(self.symmetry(model, claim, answer)?);
+            }
+        }
+        let mut conserved = Vec::new();
+        for (claim, answer) in checked.conserved().iter().zip(&derived.conserved) {
+            let formula = self.print(claim.expr);
+            let (holds, rate) = match answer {
+                Ok(c) => {
+                    let holds = match &c.verdict {
+                        Ok(v) => self.answer(c.rate, v),
+                        Err(reason) => Answer::Undecided(reason.to_string()),
+                    };
+                    let rate = if holds == Answer::Yes { Arena::ZERO } else { c.rate };
+                    (holds, self.print(rate))
+                }
+                Err(s) => (Answer::Undecided(s.to_string()), self.print(Arena::UNDEFINED)),
+            };
+            conserved.push(ConservedRow { name: claim.name.clone(), formula, holds, rate, range: claim.range.clone() });
+        }
+        Ok(Sheet {
+            system: checked.system_name(),
+            description: checked.description(),
+            lagrangian,
+            terms,
+            coordinates,
+            mass_matrix: matrix,
+            mass_entries: entries,
+            energy,
+            symmetries,
+            conserved,
+        })
+    }
+
+    fn coordinate_rows(
+        &mut self,
+        checked: &Checked,
+        model: &Model,
+        q: &Coordinate,
+        verdict: &leastwise_mechanics::verdicts::Cyclic,
+        out: &mut Vec<CoordinateRow>,
+    ) -> Result<(), Stopped> {
+        let signed = signed_parts(model);
+        let all: Parts = signed.concat();
+        let mut lists: Vec<FormParts> = Vec::new();
+        let mut cx = self.cx();
+        lists.push(lagrange::momentum(&mut cx, &all, q)?);
+        lists.push(lagrange::force(&mut cx, &all, q)?);
+        lists.push(lagrange::equation(&mut cx, model, q)?);
+        let mut names = Vec::new();
+        for (t, parts) in model.terms.iter().zip(&signed) {
+            lists.push(lagrange::residual(&mut cx, parts, q)?);
+            names.push(t.name.clone());
+        }
+        for f in &model.forces {
+            let minus: FormParts =
+                lagrange::generalised(&mut cx, f, q)?.into_iter().map(|(forms, c)| (forms, c.neg())).collect();
+            lists.push(minus);
+            names.push(f.name.clone());
+        }
+        let reaction = !model.constraints.is_empty();
+        if reaction {
+            lists.push(lagrange::reaction(&mut cx, model, q)?);
+        }
+        let (ranges, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
+        for (k, range) in ranges.iter().enumerate() {
+            let at = |i: usize| rows[i][k];
+            let by_term = names
+                .iter()
+                .enumerate()
+                .filter(|(n, _)| at(3 + n) != Arena::ZERO)
+                .map(|(n, name)| (name.clone(), self.print(at(3 + n))))
+                .collect();
+            let (name, members) = match (range, q.members) {
+                (Some((a, b)), Some(_)) if a == b => (format!("{}[{a}]", self.arena.name(q.symbol)), None),
+                (Some((a, b)), Some(m)) => (
+                    q.label(self.arena),
+                    Some(Members { index: self.arena.name(m.index), range: (*a, *b) }),
+                ),
+                _ => (q.label(self.arena), None),
+            };
+            let cyclic = match range {
+                // On a part of a family it may be cyclic though not on all.
+                Some(_) => at(1) == Arena::ZERO || verdict.cyclic.is_proved(),
+                None => verdict.cyclic.is_proved(),
+            };
+            out.push(CoordinateRow {
+                name,
+                members,
+                quantity: checked.quantity_of(q.symbol),
+                cyclic,
+                cyclic_undecided: match &verdict.cyclic {
+                    Verdict::Undecided(r) => Some(r.to_string()),
+                    _ => None,
+                },
+                momentum_conserved: verdict.momentum.is_proved() && !reaction,
+                momentum: self.print(at(0)),
+                force: self.print(if cyclic { Arena::ZERO } else { at(1) }),
+                equation: self.print(at(2)),
+                reaction: reaction.then(|| self.print(at(3 + names.len()))),
+                by_term,
+            });
+        }
+        Ok(())
+    }
+
+    fn sparse_matrix(&mut self, model: &Model) -> Result<Vec<MassEntry>, Stopped> {
+        let mut out = Vec::new();
+        let rows = sparse_mass_matrix(&mut self.cx(), model)?;
+        for row in rows {
+            let q = &model.coordinates[row.coordinate];
+            let name = match (row.range, q.members) {
+                (Some((a, b)), Some(_)) if a == b => format!("{}[{a}]", self.arena.name(q.symbol)),
+                _ => q.label(self.arena),
+            };
+            for (velocity, entry) in row.entries {
+                let mut column = velocity;
+                if let (Some((a, b)), Some(m)) = (row.range, q.members)
+                    && a == b
+                {
+                    column = at_member(self.arena, velocity, m.index, a, self.budget)?;
+                }
+                let column = self.print(column).plain.replace('\'', "");
+                out.push(MassEntry { row: name.clone(), column, formula: self.print(entry) });
+            }
+        }
+        Ok(out)
+    }
+
+    fn energy(
+        &mut self,
+        model: &Model,
+        answers: &leastwise_mechanics::verdicts::Answers,
+    ) -> Result<EnergyRow, Stopped> {
+        let e = &answers.energy;
+        let total_energy = is_total_energy(&mut self.cx(), model, e.function);
+        let rate = total(self.arena, &e.rate);
+        let conserved = if e.conserved.is_proved() {
+            if model.constraints.is_empty() {
+                Answer::Yes
+            } else {
+                // Constraints that move do work.
+                match lagrange::constraints_at_rest(&mut self.cx(), model)? {
+                    true => Answer::Yes,
+                    false => Answer::Undecided(leastwise_mechanics::claims::Unanswered::Constraints.to_string()),
+                }
+            }
+        } else {
+            self.answer(rate, &e.conserved)
+        };
+        let rate = if e.conserved.is_proved() { Arena::ZERO } else { rate };
+        Ok(EnergyRow {
+            formula: self.print(e.function),
+            conserved,
+            rate: self.print(rate),
+            is_total_energy: total_energy.is_some_and(Verdict::is_proved),
+        })
+    }
+
+    fn symmetry(
+        &mut self,
+        model: &Model,
+        claim: &crate::checked::SymmetryClaim,
+        a: &leastwise_mechanics::verdicts::SymmetryAnswer,
+    ) -> Result<SymmetryRow, Stopped> {
+        let g = &a.symmetry.generator;
+        let mut generator = vec![("t".to_string(), self.print(g.tau))];
+        for (q, eta) in model.coordinates.iter().zip(&g.eta) {
+            if *eta != Arena::ZERO {
+                generator.push((q.label(self.arena), self.print(*eta)));
+            }
+        }
+        let (status, undecided) = match &a.symmetry.status {
+            symmetry::Status::Exact => (Status::Exact, None),
+            symmetry::Status::UpToGauge => (Status::UpToGauge, None),
+            symmetry::Status::Broken => (Status::Broken, None),
+            symmetry::Status::Undecided(r) => (Status::Undecided, Some(r.clone())),
+        };
+        let broken_by = a
+            .culprits
+            .iter()
+            .map(|c| BreakerRow {
+                term: model.terms[c.term].name.clone(),
+                variation: self.print_parts(&a.symmetry.variations[c.term]),
+            })
+            .collect();
+        let rate = total(self.arena, &a.rate);
+        let conserved = match &a.conserved {
+            Ok(v) => self.answer(rate, v),
+            Err(r) => Answer::Undecided(r.to_string()),
+        };
+        let rate = if conserved == Answer::Yes { Arena::ZERO } else { rate };
+        let taken_by = model
+            .forces
+            .iter()
+            .zip(&a.taken)
+            .filter(|(_, e)| **e != Arena::ZERO)
+            .map(|(f, _)| f.name.clone())
+            .collect();
+        Ok(SymmetryRow {
+            name: claim.name.clone(),
+            expected_broken: claim.expected_broken,
+            status,
+            undecided,
+            generator,
+            charge: self.print(a.charge),
+            gauge: a.gauge.map(|f| self.print(f)),
+            gauge_unknown: a.gauge_unknown.then(|| "it exists, but no closed form was found".to_string()),
+            rate: self.print(rate),
+            conserved,
+            broken_by,
+            smallest: a.smallest,
+            taken_by,
+            respects_constraints: a.respects_constraints,
+            range: claim.range.clone(),
+        })
+    }
+}
+
+fn kind_name(kind: TermKind) -> &'static str {
+    match kind {
+        TermKind::Kinetic => "kinetic",
+        TermKind::Potential => "potential",
+        TermKind::Lagrangian => "lagrangian",
+    }
+}
