@@ -145,7 +145,9 @@ impl<'a> Builder<'a> {
         for (entry, lowered, name) in self.named() {
             let kind = &entry.parsed.item.kind;
             let body = match kind {
-                ItemKind::Term { body, .. } | ItemKind::Dissipation { body, .. } | ItemKind::Force { body, .. } => body.span,
+                ItemKind::Term { body, .. } | ItemKind::Dissipation { body, .. } | ItemKind::Force { body, .. } => {
+                    body.span
+                }
                 _ => entry.parsed.item.span,
             };
             let place = |parts: &[Part], written: Expr| TermPlace {
@@ -302,7 +304,9 @@ impl<'a> Builder<'a> {
                 kind: d.kind,
                 range: own.map(|(_, e)| at(e, d.span)),
                 item: own.and_then(|(k, _)| position.get(&k).copied()),
-                origin: entry.filter(|(_, e)| e.file != 0).map(|(_, e)| (self.reading.sources[e.file].path.clone(), at(e, d.span))),
+                origin: entry
+                    .filter(|(_, e)| e.file != 0)
+                    .map(|(_, e)| (self.reading.sources[e.file].path.clone(), at(e, d.span))),
                 description,
                 quantity: entry.and_then(|(_, e)| quantity_text(e, d)),
                 value: entry.and_then(|(k, _)| self.value(k, d)),
@@ -324,7 +328,9 @@ impl<'a> Builder<'a> {
 
 fn quantity_text(entry: &Entry, d: &Decl) -> Option<String> {
     let quantity = match &entry.parsed.item.kind {
-        ItemKind::Coordinate { quantity, .. } | ItemKind::Input { quantity, .. } | ItemKind::Function { quantity, .. } => quantity,
+        ItemKind::Coordinate { quantity, .. }
+        | ItemKind::Input { quantity, .. }
+        | ItemKind::Function { quantity, .. } => quantity,
         ItemKind::Parameter(list) => &list.get(d.place)?.quantity,
         _ => return None,
     };
@@ -404,7 +410,11 @@ fn included(reading: &Reading, via: usize, list: &[(usize, &LocalFinding)]) -> V
     }
     if list.len() > SHOWN {
         let message = format!("there are {} more findings in the included files", list.len() - SHOWN);
-        out.push(finding(reading, entry, &LocalFinding::new(codes::INCLUDED_FINDING, Severity::Information, span, message)));
+        out.push(finding(
+            reading,
+            entry,
+            &LocalFinding::new(codes::INCLUDED_FINDING, Severity::Information, span, message),
+        ));
     }
     out
 }

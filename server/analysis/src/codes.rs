@@ -99,6 +99,9 @@ mod tests {
             assert!(code.name.chars().all(|c| c.is_ascii_lowercase() || c == '-'), "{}", code.name);
             assert!(seen.insert(code.name), "{} stands twice", code.name);
         }
-        assert_eq!(explanation("two-vectors"), Some(CODES.iter().find(|c| c.name == "two-vectors").unwrap().explanation));
+        assert_eq!(
+            explanation("two-vectors"),
+            Some(CODES.iter().find(|c| c.name == "two-vectors").unwrap().explanation)
+        );
     }
 }

@@ -195,9 +195,9 @@ impl Session {
         let parsed: Vec<Option<Arc<Parsed>>> = reading.entries.iter().map(|e| Some(e.parsed.clone())).collect();
         for at in order {
             let decl = &reading.scope.decls[at];
-            let faulty = decl.entry.is_some_and(|e| {
-                reading.failed[e] && matches!(decl.kind, SymbolKind::Definition | SymbolKind::Index)
-            });
+            let faulty = decl
+                .entry
+                .is_some_and(|e| reading.failed[e] && matches!(decl.kind, SymbolKind::Definition | SymbolKind::Index));
             let mut failed = decl.failed || faulty;
             let mut range = None;
             let mut large = false;
@@ -252,8 +252,7 @@ impl Session {
             return Err(Vec::new());
         };
         let mut item = Budget::new(ITEM_NODES.min(budget.left()));
-        let mut lowerer =
-            Lowerer::new(&mut self.arena, &reading.scope, parsed, &mut self.definitions, &mut item);
+        let mut lowerer = Lowerer::new(&mut self.arena, &reading.scope, parsed, &mut self.definitions, &mut item);
         let (a, b) = (lowerer.whole_number(lower), lowerer.whole_number(upper));
         let mut findings = lowerer.findings;
         match (a, b) {
@@ -285,8 +284,7 @@ impl Session {
             let left = budget.left();
             let mut item = Budget::new(ITEM_NODES.min(left));
             let before = item.left();
-            let mut lowerer =
-                Lowerer::new(&mut self.arena, &reading.scope, parsed, &mut self.definitions, &mut item);
+            let mut lowerer = Lowerer::new(&mut self.arena, &reading.scope, parsed, &mut self.definitions, &mut item);
             let value = lowerer.definition(decl);
             let findings = lowerer.findings;
             let _ = budget.charge((before - item.left()) as usize);

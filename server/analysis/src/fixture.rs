@@ -40,7 +40,9 @@ pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -
                 let carets_at = line.chars().take_while(|c| *c != '^').count();
                 let carets = line.chars().filter(|c| *c == '^').count();
                 let source = &model[line_start..];
-                let byte = |column: usize| line_start + source.char_indices().nth(column).map_or(source.trim_end().len(), |(b, _)| b);
+                let byte = |column: usize| {
+                    line_start + source.char_indices().nth(column).map_or(source.trim_end().len(), |(b, _)| b)
+                };
                 let _ = indent;
                 let message = line[line.rfind('^').map_or(0, |k| k + 1)..].trim().to_owned();
                 expected.push((byte(carets_at), byte(carets_at + carets), message));
@@ -59,7 +61,8 @@ pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -
     };
     for (start, end, message) in &expected {
         let (code, words) = message.split_once(':').unwrap_or((message, ""));
-        let found = left.iter().position(|f| f.range == (*start..*end) && f.code == code && f.message.contains(words.trim()));
+        let found =
+            left.iter().position(|f| f.range == (*start..*end) && f.code == code && f.message.contains(words.trim()));
         match found {
             Some(k) => drop(left.remove(k)),
             None => panic!(

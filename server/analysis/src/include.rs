@@ -50,9 +50,8 @@ pub(crate) enum Inclusion {
 
 /// Reads what the file `from` includes.
 pub(crate) fn include(sources: &[Source], from: usize, file: &str, span: Span, files: &dyn Files) -> Inclusion {
-    let refuse = |code, message: String, help: &str| {
-        Inclusion::Refused(LocalFinding::error(code, span, message).help(help))
-    };
+    let refuse =
+        |code, message: String, help: &str| Inclusion::Refused(LocalFinding::error(code, span, message).help(help));
     if file.is_empty() {
         return refuse(codes::INCLUDE_FILE, "no file is named".into(), "write include \"FILE.least\"");
     }
@@ -68,7 +67,11 @@ pub(crate) fn include(sources: &[Source], from: usize, file: &str, span: Span, f
     let (path, text) = match files.read(&source.path, file) {
         Ok(read) => read,
         Err(why) => {
-            return refuse(codes::INCLUDE_FILE, format!("`{shown}` cannot be read: {why}"), "the name is relative to this file");
+            return refuse(
+                codes::INCLUDE_FILE,
+                format!("`{shown}` cannot be read: {why}"),
+                "the name is relative to this file",
+            );
         }
     };
     let mut at = from;

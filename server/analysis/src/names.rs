@@ -125,13 +125,17 @@ fn undeclared(reading: &mut Reading) {
         );
         let called = called_at(&entry.text, one.span);
         finding = finding.help(if unit {
-            format!("units do not stand in formulas: declare a parameter with this value, such as parameter a = 1 {name}")
+            format!(
+                "units do not stand in formulas: declare a parameter with this value, such as parameter a = 1 {name}"
+            )
         } else if let Some(argument) = &called {
             format!("declare it: function {name}({argument}), or parameter {name} for a product")
         } else if one.primed {
             format!("declare it: coordinate {name}, or let {name} = …")
         } else {
-            format!("declare it: parameter {name}, coordinate {name}, or let {name} = …; it is taken for a parameter here")
+            format!(
+                "declare it: parameter {name}, coordinate {name}, or let {name} = …; it is taken for a parameter here"
+            )
         });
         if let Some(near) = near {
             finding = finding.fix(format!("write {near}"), one.span, near.to_string());
@@ -370,7 +374,9 @@ fn quantities_of(at: usize, entry: &Entry, out: &mut Vec<(usize, LocalFinding)>)
         }
     };
     match &entry.parsed.item.kind {
-        ItemKind::Coordinate { quantity, .. } | ItemKind::Input { quantity, .. } | ItemKind::Function { quantity, .. } => {
+        ItemKind::Coordinate { quantity, .. }
+        | ItemKind::Input { quantity, .. }
+        | ItemKind::Function { quantity, .. } => {
             check(quantity.as_ref(), true);
         }
         ItemKind::Parameter(list) => {
@@ -399,7 +405,8 @@ fn unknown_unit(unit: &UnitText, declared: bool) -> Option<LocalFinding> {
     if declared && alone && quantities::quantity(&unit.factors[0].symbol.text).is_some() {
         return None;
     }
-    let wrong = unit.factors.iter().find(|f| quantities::unit(&f.symbol.text).is_none() && !f.symbol.text.is_empty())?;
+    let wrong =
+        unit.factors.iter().find(|f| quantities::unit(&f.symbol.text).is_none() && !f.symbol.text.is_empty())?;
     let (name, span) = (&wrong.symbol.text, wrong.symbol.span);
     let long = name.chars().count() > 3;
     let near = if declared && alone {
@@ -408,11 +415,8 @@ fn unknown_unit(unit: &UnitText, declared: bool) -> Option<LocalFinding> {
     } else {
         quantities::near_unit(name)
     };
-    let (code, what) = if declared && alone {
-        (codes::UNKNOWN_QUANTITY, "quantity or unit")
-    } else {
-        (codes::UNKNOWN_UNIT, "unit")
-    };
+    let (code, what) =
+        if declared && alone { (codes::UNKNOWN_QUANTITY, "quantity or unit") } else { (codes::UNKNOWN_UNIT, "unit") };
     let mut finding = LocalFinding::error(code, span, format!("`{name}` is no known {what}{}", meant(near)));
     if quantities::quantity(name).is_some() {
         finding.message = format!("`{name}` is a quantity; here stands a unit");
@@ -420,7 +424,11 @@ fn unknown_unit(unit: &UnitText, declared: bool) -> Option<LocalFinding> {
     if let Some(near) = near {
         finding = finding.fix(format!("write {near}"), span, near);
     } else {
-        finding = finding.help(if declared { "write a quantity such as length, or a unit such as N/m" } else { "write a unit of the SI, such as kg m^2" });
+        finding = finding.help(if declared {
+            "write a quantity such as length, or a unit such as N/m"
+        } else {
+            "write a unit of the SI, such as kg m^2"
+        });
     }
     Some(finding)
 }
@@ -456,7 +464,8 @@ pub(crate) fn unused(reading: &mut Reading) {
         if entry.file != 0 || used.contains(&*d.name) || d.kind == SymbolKind::Coordinate {
             continue;
         }
-        let message = format!("{} `{}` is not used", d.kind.described().split_once(' ').map_or("name", |p| p.1), d.name);
+        let message =
+            format!("{} `{}` is not used", d.kind.described().split_once(' ').map_or("name", |p| p.1), d.name);
         let mut finding = LocalFinding::new(codes::UNUSED_NAME, Severity::Warning, d.span, message);
         finding.message = format!("the {}", finding.message);
         found.push((at, finding));

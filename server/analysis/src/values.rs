@@ -170,9 +170,7 @@ pub fn transpose(rows: &[Vec<Expr>]) -> Vec<Vec<Expr>> {
 pub fn contract(arena: &mut Arena, a: &Value, b: &Value) -> Option<Value> {
     let (sa, sb) = (a.shape()?, b.shape()?);
     Some(match (sa, sb) {
-        (Shape::Vector(n), Shape::Vector(m)) if n == m => {
-            Value::Scalar(dot(arena, &a.components()?, &b.components()?))
-        }
+        (Shape::Vector(n), Shape::Vector(m)) if n == m => Value::Scalar(dot(arena, &a.components()?, &b.components()?)),
         (Shape::Matrix(_, n), Shape::Vector(m)) if n == m => {
             let v = b.components()?;
             Value::numbers(a.rows()?.iter().map(|r| dot(arena, r, &v)).collect::<Vec<_>>())
@@ -291,9 +289,7 @@ pub fn combined(arena: &mut Arena, terms: &[(bool, Value)]) -> Value {
         Value::Scalar(_) => {
             let list: Vec<(Expr, Rational)> = terms
                 .iter()
-                .filter_map(|(minus, v)| {
-                    Some((v.scalar()?, if *minus { Rational::MINUS_ONE } else { Rational::ONE }))
-                })
+                .filter_map(|(minus, v)| Some((v.scalar()?, if *minus { Rational::MINUS_ONE } else { Rational::ONE })))
                 .collect();
             Value::Scalar(arena.linear(&list))
         }

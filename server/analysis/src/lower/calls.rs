@@ -81,7 +81,11 @@ impl<'a> Lowerer<'a> {
                 if name.text == "dot" {
                     for (v, arg) in values.iter().zip(args) {
                         if let Some(Shape::Number) = v.shape() {
-                            return self.error(codes::SHAPE_MISMATCH, arg.span, "`dot` takes two vectors, and this is a number");
+                            return self.error(
+                                codes::SHAPE_MISMATCH,
+                                arg.span,
+                                "`dot` takes two vectors, and this is a number",
+                            );
                         }
                     }
                 }
@@ -167,7 +171,9 @@ impl<'a> Lowerer<'a> {
         let Some(axis) = axis else {
             let shape = values[0].shape().unwrap_or(Shape::Number);
             let message = format!("the axis of a turn is a unit vector in space, and this is {shape}");
-            self.report(LocalFinding::error(codes::SHAPE_MISMATCH, args[0].span, message).help("ex, ey and ez are built in"));
+            self.report(
+                LocalFinding::error(codes::SHAPE_MISMATCH, args[0].span, message).help("ex, ey and ez are built in"),
+            );
             return Value::Missing;
         };
         let Some(angle) = values[1].scalar() else {
@@ -175,8 +181,12 @@ impl<'a> Lowerer<'a> {
         };
         let square = crate::values::dot(self.arena, &axis, &axis);
         if square != Arena::ONE && self.arena.as_number(square).is_some() {
-            let finding = LocalFinding::error(codes::UNIT_VECTOR, args[0].span, "the axis of a turn has length one, and this has not")
-                .help("divide it by its length: n/|n|");
+            let finding = LocalFinding::error(
+                codes::UNIT_VECTOR,
+                args[0].span,
+                "the axis of a turn has length one, and this has not",
+            )
+            .help("divide it by its length: n/|n|");
             self.report(finding);
             return Value::Missing;
         }
@@ -230,7 +240,10 @@ impl<'a> Lowerer<'a> {
         }
         let value = self.expand(decl, at, &key.1, span);
         // A call without value says why at each place, so it is not kept.
-        if !self.stopped && !value.is_missing() && let Some(d) = self.definitions.get_mut(&decl.fingerprint) {
+        if !self.stopped
+            && !value.is_missing()
+            && let Some(d) = self.definitions.get_mut(&decl.fingerprint)
+        {
             d.calls.insert(key, value.clone());
         }
         value
@@ -249,7 +262,12 @@ impl<'a> Lowerer<'a> {
             }
             Derivative::Order(_) => {
                 let message = format!("`{}` has {count} arguments: by which of them is it differentiated?", decl.name);
-                let help = format!("write {}'[1]({}) for the derivative by `{}`", decl.name, decl.formals.join(", "), decl.formals[0]);
+                let help = format!(
+                    "write {}'[1]({}) for the derivative by `{}`",
+                    decl.name,
+                    decl.formals.join(", "),
+                    decl.formals[0]
+                );
                 self.report(LocalFinding::error(codes::FUNCTION_DERIVATIVE, span, message).help(help));
                 return None;
             }
@@ -288,7 +306,14 @@ impl<'a> Lowerer<'a> {
         Some(out)
     }
 
-    fn unspecified(&mut self, decl: &'a Decl, orders: &[u16], values: &[Value], args: &[Formula], at: Option<Expr>) -> Value {
+    fn unspecified(
+        &mut self,
+        decl: &'a Decl,
+        orders: &[u16],
+        values: &[Value],
+        args: &[Formula],
+        at: Option<Expr>,
+    ) -> Value {
         let Some(numbers) = self.numbers(decl, values, args) else { return Value::Missing };
         let symbol = self.arena.symbol(&decl.name, None, Role::Function);
         Value::Scalar(self.arena.unspecified(symbol, at, orders, &numbers))

@@ -11,8 +11,9 @@ impl Lowerer<'_> {
     /// p = ∂L/∂q̇, summed over the terms.
     pub(super) fn momentum(&mut self, q: &Formula, span: Span) -> Value {
         let Some(motion) = self.motion.filter(|_| self.foreign.is_empty()) else {
-            let finding = LocalFinding::error(codes::ONLY_IN_CONSERVED, span, "`momentum` stands in a `conserved` claim only")
-                .help("elsewhere write the momentum out");
+            let finding =
+                LocalFinding::error(codes::ONLY_IN_CONSERVED, span, "`momentum` stands in a `conserved` claim only")
+                    .help("elsewhere write the momentum out");
             self.report(finding);
             return Value::Missing;
         };
@@ -29,7 +30,8 @@ impl Lowerer<'_> {
             }
             return Value::Missing;
         };
-        let result = linear_in_parts(self.arena, motion.parts, &mut |arena, part| arena.partial(part, atom, self.budget));
+        let result =
+            linear_in_parts(self.arena, motion.parts, &mut |arena, part| arena.partial(part, atom, self.budget));
         self.checked(result.map(Value::Scalar), span)
     }
 

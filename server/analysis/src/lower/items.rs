@@ -36,9 +36,19 @@ pub(crate) struct RunMeaning {
 pub(crate) enum Meaning {
     /// Nothing beyond names.
     Nothing,
-    Term { kind: Kind, parts: Vec<Part>, written: Expr },
-    Dissipation { parts: Vec<Part>, written: Expr },
-    Force { pairs: Vec<(Expr, Expr)>, parts: Vec<Part> },
+    Term {
+        kind: Kind,
+        parts: Vec<Part>,
+        written: Expr,
+    },
+    Dissipation {
+        parts: Vec<Part>,
+        written: Expr,
+    },
+    Force {
+        pairs: Vec<(Expr, Expr)>,
+        parts: Vec<Part>,
+    },
     /// Each with the suffix of its name.
     Constraint(Vec<(String, Expr)>),
     /// The difference of the two sides, compared with zero.
@@ -123,8 +133,12 @@ impl<'a> Lowerer<'a> {
         }
         let pairs: Vec<(Expr, Expr)> = target.flat().into_iter().zip(force.flat()).collect();
         if !pairs.iter().any(|(e, _)| self.moves(*e)) {
-            let finding = LocalFinding::error(codes::FORCE_TARGET, on.span, "a force acts on a coordinate, and this does not move")
-                .help("write a coordinate, or a quantity made from coordinates");
+            let finding = LocalFinding::error(
+                codes::FORCE_TARGET,
+                on.span,
+                "a force acts on a coordinate, and this does not move",
+            )
+            .help("write a coordinate, or a quantity made from coordinates");
             self.report(finding);
             return None;
         }
@@ -173,8 +187,12 @@ impl<'a> Lowerer<'a> {
         } else if sa == sb {
             b
         } else {
-            let finding = LocalFinding::error(codes::SHAPE_MISMATCH, right.span, format!("the left side is {sa}, the right side is {sb}"))
-                .related(Place::Here(left.span), format!("this is {sa}"));
+            let finding = LocalFinding::error(
+                codes::SHAPE_MISMATCH,
+                right.span,
+                format!("the left side is {sa}, the right side is {sb}"),
+            )
+            .related(Place::Here(left.span), format!("this is {sa}"));
             self.report(finding);
             return None;
         };
@@ -189,7 +207,8 @@ impl<'a> Lowerer<'a> {
     }
 
     fn index_range(&mut self, index: &Name) -> Option<(i64, i64)> {
-        let range = self.scope.get(&index.text).filter(|d| d.kind == SymbolKind::Index && !d.failed).and_then(|d| d.range);
+        let range =
+            self.scope.get(&index.text).filter(|d| d.kind == SymbolKind::Index && !d.failed).and_then(|d| d.range);
         self.failed |= range.is_none();
         range
     }
@@ -217,8 +236,9 @@ impl<'a> Lowerer<'a> {
             let b = self.scalar(right, "what is compared")?;
             let span = left.span.to(right.span);
             if *relation == Relation::Equal {
-                let finding = LocalFinding::error(codes::ASSUMED_EQUALITY, span, "an assumption compares with <, ≤, >, ≥ or ≠")
-                    .help("for an equality write a definition: let a = b");
+                let finding =
+                    LocalFinding::error(codes::ASSUMED_EQUALITY, span, "an assumption compares with <, ≤, >, ≥ or ≠")
+                        .help("for an equality write a definition: let a = b");
                 self.report(finding);
                 return None;
             }
@@ -268,9 +288,11 @@ impl<'a> Lowerer<'a> {
             let parts = self.parts(body, "a claimed constant")?;
             return Some(Meaning::Conserved(vec![(String::new(), value.scalar()?, parts)]));
         }
-        let claims = value.flat().into_iter().enumerate().map(|(k, expr)| {
-            (format!("[{}]", k + 1), expr, vec![Part { expr, span: body.span }])
-        });
+        let claims = value
+            .flat()
+            .into_iter()
+            .enumerate()
+            .map(|(k, expr)| (format!("[{}]", k + 1), expr, vec![Part { expr, span: body.span }]));
         Some(Meaning::Conserved(claims.collect()))
     }
 
@@ -310,7 +332,8 @@ impl<'a> Lowerer<'a> {
             return None;
         }
         if decl.kind != SymbolKind::Coordinate {
-            let message = format!("`{name}` is {}: a transformation changes coordinates and the time", decl.kind.described());
+            let message =
+                format!("`{name}` is {}: a transformation changes coordinates and the time", decl.kind.described());
             let finding = LocalFinding::error(codes::NOT_A_COORDINATE, source.span, message)
                 .help("what is made from coordinates changes with them")
                 .related(Place::Declaration(decl.name.clone()), format!("`{name}` is declared here"));
@@ -331,7 +354,8 @@ impl<'a> Lowerer<'a> {
             let message = format!("`{free}` runs from {a} to {b}, the index of `{name}` from {lower} to {upper}");
             let place = Place::Declaration(decl.name.clone());
             self.report(
-                LocalFinding::error(codes::INDEX_OUT_OF_RANGE, source.span, message).related(place, format!("`{name}` is declared here")),
+                LocalFinding::error(codes::INDEX_OUT_OF_RANGE, source.span, message)
+                    .related(place, format!("`{name}` is declared here")),
             );
             return None;
         }
@@ -358,7 +382,13 @@ impl<'a> Lowerer<'a> {
         })
     }
 
-    fn push_image(&mut self, e: Expr, source: &Formula, target: &Formula, images: &mut Vec<(Image, Span)>) -> Option<()> {
+    fn push_image(
+        &mut self,
+        e: Expr,
+        source: &Formula,
+        target: &Formula,
+        images: &mut Vec<(Image, Span)>,
+    ) -> Option<()> {
         if let Some((_, first)) = images.iter().find(|(image, _)| image.source == e) {
             let first = *first;
             let finding = LocalFinding::error(codes::TRANSFORMED_TWICE, source.span, "this is transformed twice")
@@ -390,10 +420,17 @@ impl<'a> Lowerer<'a> {
                 _ => None,
             };
             if order.is_none_or(|n| n > 1) {
-                let declared = crate::uses::names_in(what).iter().all(|n| self.scope.get(n).is_some_and(|d| d.entry.is_some()));
+                let declared =
+                    crate::uses::names_in(what).iter().all(|n| self.scope.get(n).is_some_and(|d| d.entry.is_some()));
                 if declared {
-                    let finding = LocalFinding::error(codes::NOT_A_COORDINATE, what.span, "a run begins from coordinates and velocities")
-                        .help("formulas of inputs and functions stand behind `with`; a parameter's value in its declaration");
+                    let finding = LocalFinding::error(
+                        codes::NOT_A_COORDINATE,
+                        what.span,
+                        "a run begins from coordinates and velocities",
+                    )
+                    .help(
+                        "formulas of inputs and functions stand behind `with`; a parameter's value in its declaration",
+                    );
                     self.report(finding);
                 }
                 self.failed = true;
@@ -462,10 +499,15 @@ impl<'a> Lowerer<'a> {
             _ => false,
         };
         if !fits {
-            let declared = crate::uses::names_in(what).iter().all(|n| self.scope.get(n).is_some_and(|d| d.entry.is_some()));
+            let declared =
+                crate::uses::names_in(what).iter().all(|n| self.scope.get(n).is_some_and(|d| d.entry.is_some()));
             if declared {
-                let finding = LocalFinding::error(codes::RUN_VALUE, what.span, "behind `with` stand formulas of inputs and functions")
-                    .help("initial values of coordinates stand behind `from`");
+                let finding = LocalFinding::error(
+                    codes::RUN_VALUE,
+                    what.span,
+                    "behind `with` stand formulas of inputs and functions",
+                )
+                .help("initial values of coordinates stand behind `from`");
                 self.report(finding);
             }
             self.failed = true;
@@ -502,7 +544,9 @@ impl<'a> Lowerer<'a> {
                         break;
                     }
                     let at = self.arena.integer(k);
-                    if decl.formals.is_empty() && let Some(d) = self.definitions.get_mut(&decl.fingerprint) {
+                    if decl.formals.is_empty()
+                        && let Some(d) = self.definitions.get_mut(&decl.fingerprint)
+                    {
                         d.calls.insert((Some(at), Vec::new()), value);
                     }
                 }
@@ -530,8 +574,12 @@ impl<'a> Lowerer<'a> {
         }
         let n = value.scalar().and_then(|e| self.arena.as_i64(e));
         if n.is_none() {
-            let finding = LocalFinding::error(codes::SUM_RANGE, f.span, "the range of an index goes from a whole number to a whole number")
-                .help("write numbers, or an integer definition such as let N = 8");
+            let finding = LocalFinding::error(
+                codes::SUM_RANGE,
+                f.span,
+                "the range of an index goes from a whole number to a whole number",
+            )
+            .help("write numbers, or an integer definition such as let N = 8");
             self.report(finding);
         }
         n
@@ -567,7 +615,11 @@ impl<'a> Lowerer<'a> {
                         return None;
                     }
                     (Some(_), Some(n)) if n != items.len() as i64 => {
-                        let message = format!("`{}` has {n} members, and here stand {} values", d.declared.name.text, items.len());
+                        let message = format!(
+                            "`{}` has {n} members, and here stand {} values",
+                            d.declared.name.text,
+                            items.len()
+                        );
                         self.error(codes::FAMILY_VALUES, value.number.span, message);
                         return None;
                     }
@@ -582,7 +634,11 @@ impl<'a> Lowerer<'a> {
         let dimensioned = match &d.quantity {
             None => false,
             Some(q) => dimension.map_or_else(
-                || q.factors.iter().any(|f| crate::quantities::unit(&f.symbol.text).is_some_and(|d| d != crate::quantities::ONE)),
+                || {
+                    q.factors
+                        .iter()
+                        .any(|f| crate::quantities::unit(&f.symbol.text).is_some_and(|d| d != crate::quantities::ONE))
+                },
                 |d| d != crate::quantities::ONE,
             ),
         };

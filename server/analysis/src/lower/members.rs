@@ -45,7 +45,10 @@ impl<'a> Lowerer<'a> {
                     (None, Some(l), Some(h)) => format!("; the index here runs from {l} to {h}"),
                     _ => self.circumstances(),
                 };
-                let message = format!("`{which}` does not exist: the index of `{}` runs from {lower} to {upper}{reach}", decl.name);
+                let message = format!(
+                    "`{which}` does not exist: the index of `{}` runs from {lower} to {upper}{reach}",
+                    decl.name
+                );
                 let finding = LocalFinding::error(codes::INDEX_OUT_OF_RANGE, f.span, message)
                     .related(Place::Declaration(decl.name.clone()), format!("`{}` is declared here", decl.name));
                 self.report(finding);
@@ -88,7 +91,9 @@ impl<'a> Lowerer<'a> {
             return v.clone();
         }
         let value = self.expand(decl, Some(at), &[], span);
-        if !self.stopped && let Some(d) = self.definitions.get_mut(&decl.fingerprint) {
+        if !self.stopped
+            && let Some(d) = self.definitions.get_mut(&decl.fingerprint)
+        {
             d.calls.insert((Some(at), Vec::new()), value.clone());
         }
         value
@@ -152,14 +157,20 @@ impl<'a> Lowerer<'a> {
         }
         let e = value.scalar()?;
         let whole = self.arena.summands(e).iter().all(|(x, c)| {
-            c.is_integer() && (*x == Arena::ONE || matches!(self.arena.node(*x), Node::Symbol(s) if self.arena.info(*s).role == Role::Index))
+            c.is_integer()
+                && (*x == Arena::ONE
+                    || matches!(self.arena.node(*x), Node::Symbol(s) if self.arena.info(*s).role == Role::Index))
         });
         let fits = self.arena.summands(e).iter().all(|(_, c)| c.to_i64().is_some_and(|n| n.unsigned_abs() < 1 << 40));
         if whole && fits {
             return Some(e);
         }
-        let finding = LocalFinding::error(codes::INDEX_FORM, f.span, "an index is a whole number, or an index plus a whole number")
-            .help("write x[3], x[i] or x[i+1]");
+        let finding = LocalFinding::error(
+            codes::INDEX_FORM,
+            f.span,
+            "an index is a whole number, or an index plus a whole number",
+        )
+        .help("write x[3], x[i] or x[i+1]");
         self.report(finding);
         None
     }
@@ -173,10 +184,8 @@ impl<'a> Lowerer<'a> {
             let terms = self.arena.summands(e);
             let Some((_, c)) = terms.iter().find(|(x, _)| *x == open.symbol) else { continue };
             let bound = if c.is_negative() == greatest { open.lower } else { open.upper };
-            let rest: Vec<(Expr, Rational)> = terms
-                .iter()
-                .map(|(x, c)| (if *x == open.symbol { bound } else { *x }, c.clone()))
-                .collect();
+            let rest: Vec<(Expr, Rational)> =
+                terms.iter().map(|(x, c)| (if *x == open.symbol { bound } else { *x }, c.clone())).collect();
             e = self.arena.linear(&rest);
         }
         self.arena.as_i64(e)
@@ -205,10 +214,5 @@ impl<'a> Lowerer<'a> {
         let out = f(self);
         self.bindings.pop();
         out
-    }
-
-    /// Stops where a range is larger than can be written out.
-    pub(super) fn too_many(&mut self, span: Span) -> Value {
-        self.stop(Stopped::TooLarge, span)
     }
 }

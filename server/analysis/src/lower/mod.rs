@@ -162,7 +162,8 @@ impl<'a> Lowerer<'a> {
                 Stopped::TooLarge => "this is too large to be derived",
             };
             self.report(
-                LocalFinding::error(codes::TOO_LARGE, span, message).help("the rest of the model is derived without it"),
+                LocalFinding::error(codes::TOO_LARGE, span, message)
+                    .help("the rest of the model is derived without it"),
             );
         }
         Value::Missing
@@ -290,10 +291,8 @@ impl<'a> Lowerer<'a> {
         }
         match decl.kind {
             SymbolKind::Index => {
-                let (message, help) = (
-                    format!("the index `{name}` is free here"),
-                    format!("sum over it: sum({name}: …)"),
-                );
+                let (message, help) =
+                    (format!("the index `{name}` is free here"), format!("sum over it: sum({name}: …)"));
                 self.report(LocalFinding::error(codes::FREE_INDEX, span, message).help(help));
                 Value::Missing
             }
@@ -388,7 +387,11 @@ impl<'a> Lowerer<'a> {
     fn power(&mut self, base: &Formula, exponent: &Formula, span: Span) -> Value {
         let (b, e) = (self.lower(base), self.lower(exponent));
         if let Some(shape) = e.shape().filter(|s| *s != crate::values::Shape::Number) {
-            return self.error(codes::NOT_A_NUMBER, exponent.span, format!("an exponent is a number, and this is {shape}"));
+            return self.error(
+                codes::NOT_A_NUMBER,
+                exponent.span,
+                format!("an exponent is a number, and this is {shape}"),
+            );
         }
         match b.shape() {
             Some(crate::values::Shape::Number) => {}
@@ -417,7 +420,11 @@ impl<'a> Lowerer<'a> {
             return self.error(codes::SHAPE_MISMATCH, items[k].span, message);
         }
         if matches!(first, Some(crate::values::Shape::Matrix(..))) {
-            return self.error(codes::SHAPE_MISMATCH, span, "the components of a vector are numbers, or vectors for a matrix");
+            return self.error(
+                codes::SHAPE_MISMATCH,
+                span,
+                "the components of a vector are numbers, or vectors for a matrix",
+            );
         }
         Value::vector(values)
     }
@@ -442,7 +449,9 @@ impl<'a> Lowerer<'a> {
                 let components = value.components().unwrap_or_default();
                 Value::Scalar(norm(self.arena, &components))
             }
-            Some(shape) => self.error(codes::SHAPE_MISMATCH, span, format!("the length of a vector is meant, and this is {shape}")),
+            Some(shape) => {
+                self.error(codes::SHAPE_MISMATCH, span, format!("the length of a vector is meant, and this is {shape}"))
+            }
         }
     }
 }

@@ -139,7 +139,11 @@ impl Lowerer<'_> {
                     false
                 }
                 None => {
-                    self.error(codes::SHAPE_MISMATCH, operand.span, format!("a divisor is a number, and this is {shape}"));
+                    self.error(
+                        codes::SHAPE_MISMATCH,
+                        operand.span,
+                        format!("a divisor is a number, and this is {shape}"),
+                    );
                     true
                 }
             },
