@@ -12,6 +12,7 @@ mod print;
 use output::{Page, Quiet, Streams};
 use std::io::{self, BufWriter, Write};
 use std::process::ExitCode;
+use std::sync::Mutex;
 use std::thread;
 
 /// Bytes of stack for the analysis: models may nest 256 levels deep, and the algebra recurses.
@@ -19,16 +20,21 @@ const STACK: usize = 256 << 20;
 /// Exit status where the program could not run.
 const COULD_NOT_RUN: u8 = 2;
 
+/// What a panic said and where, for the report below.
+static PANIC: Mutex<String> = Mutex::new(String::new());
+
 fn main() -> ExitCode {
-    // A panic is reported below, in words.
-    std::panic::set_hook(Box::new(|_| ()));
+    std::panic::set_hook(Box::new(|panic| {
+        if let Ok(mut text) = PANIC.lock() {
+            let place = panic.location().map(|l| format!(" ({}:{})", l.file(), l.line())).unwrap_or_default();
+            *text = format!("{}{place}", panic.payload_as_str().unwrap_or("no details"));
+        }
+    }));
     let worker = thread::Builder::new().stack_size(STACK).spawn(run);
-    let done = worker.map(thread::JoinHandle::join);
-    match done {
+    match worker.map(thread::JoinHandle::join) {
         Ok(Ok(code)) => ExitCode::from(code),
-        Ok(Err(panic)) => {
-            let what = panic.downcast_ref::<String>().map(String::as_str);
-            let what = what.or_else(|| panic.downcast_ref::<&str>().copied()).unwrap_or("no details");
+        Ok(Err(_)) => {
+            let what = PANIC.lock().map(|text| text.clone()).unwrap_or_default();
             complain(&format!(
                 "internal error: {what}\nThis is a defect of leastwise, not of the model; please report it with the file."
             ))
@@ -46,16 +52,16 @@ fn complain(message: &str) -> ExitCode {
 /// Reads the command line and does what it says. The exit status.
 fn run() -> u8 {
     let mut out = BufWriter::new(Quiet::new(io::stdout()));
-    let mut streams =
-        Streams { input: &mut io::stdin(), out: &mut out, err: &mut Quiet::new(io::stderr()), page: Page::of_stdout() };
-    let code = arguments::read(std::env::args_os().skip(1))
-        .and_then(|command| commands::run(command, &mut streams).map_err(|e| format!("cannot write: {e}")));
-    let code = code.unwrap_or_else(|message| {
-        let _ = writeln!(streams.err, "leastwise: {message}");
-        COULD_NOT_RUN
+    let mut err = Quiet::new(io::stderr());
+    let mut streams = Streams { input: &mut io::stdin(), out: &mut out, err: &mut err, page: Page::of_stdout() };
+    let unwritten = |e: io::Error| format!("cannot write: {e}");
+    let done = arguments::read(std::env::args_os().skip(1)).and_then(|command| {
+        let code = commands::run(command, &mut streams).map_err(unwritten)?;
+        streams.out.flush().map_err(unwritten).map(|()| code)
     });
-    match out.flush() {
-        Ok(()) => code,
-        Err(_) => COULD_NOT_RUN,
-    }
+    done.unwrap_or_else(|message| {
+        // Nobody is left to tell when even this fails.
+        let _ = writeln!(err, "leastwise: {message}");
+        COULD_NOT_RUN
+    })
 }

@@ -82,9 +82,9 @@ impl Session {
         out
     }
 
-    /// The sheet. Errors: where the model is too large to be derived.
-    pub fn sheet(&mut self, checked: &Checked, derived: &Derived) -> Result<Sheet, Stopped> {
-        self.with_maker(checked, |maker| maker.make(checked, derived))
+    /// The sheet. Of a model that is too large to be derived it has the terms only; a finding says so.
+    pub fn sheet(&mut self, checked: &Checked, derived: &Derived) -> Sheet {
+        self.with_maker(checked, |maker| maker.make(checked, derived).unwrap_or_else(|_| maker.terms_only(checked)))
     }
 
     fn with_maker<T>(&mut self, checked: &Checked, f: impl FnOnce(&mut Maker<'_>) -> T) -> T {

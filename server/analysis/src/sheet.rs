@@ -63,14 +63,7 @@ impl Maker<'_> {
     pub fn make(&mut self, checked: &Checked, derived: &Derived) -> Result<Sheet, Stopped> {
         let model = checked.model();
         let answers = derived.answers.as_ref().map_err(|s| *s)?;
-        let terms = model
-            .terms
-            .iter()
-            .map(|t| {
-                let parts: Parts = t.parts.iter().map(|&p| (p, Rational::ONE)).collect();
-                TermRow { name: t.name.clone(), kind: kind_name(t.kind), formula: self.print_parts(&parts) }
-            })
-            .collect();
+        let terms = self.terms(model);
         let lagrangian = lagrange::lagrangian(&mut self.cx(), model)?;
         let lagrangian = self.print(lagrangian);
         let mut coordinates = Vec::new();
@@ -123,6 +116,37 @@ impl Maker<'_> {
             symmetries,
             conserved,
         })
+    }
+
+    fn terms(&mut self, model: &Model) -> Vec<TermRow> {
+        let rows = model.terms.iter().map(|t| {
+            let parts: Parts = t.parts.iter().map(|&p| (p, Rational::ONE)).collect();
+            TermRow { name: t.name.clone(), kind: kind_name(t.kind), formula: self.print_parts(&parts) }
+        });
+        rows.collect()
+    }
+
+    /// What can be said of a model that is too large to be derived.
+    pub fn terms_only(&mut self, checked: &Checked) -> Sheet {
+        let nothing = self.print(Arena::UNDEFINED);
+        let energy = EnergyRow {
+            formula: nothing.clone(),
+            conserved: Answer::Undecided(Stopped::TooLarge.to_string()),
+            rate: nothing.clone(),
+            is_total_energy: false,
+        };
+        Sheet {
+            system: checked.system_name(),
+            description: checked.description(),
+            lagrangian: nothing,
+            terms: self.terms(checked.model()),
+            coordinates: Vec::new(),
+            mass_matrix: Vec::new(),
+            mass_entries: Vec::new(),
+            energy,
+            symmetries: Vec::new(),
+            conserved: Vec::new(),
+        }
     }
 
     fn coordinate_rows(

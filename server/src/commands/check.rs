@@ -33,7 +33,7 @@ pub fn run(sources: &[Source], form: CheckForm, streams: &mut Streams<'_>) -> io
         }
         CheckForm::Sarif => {
             let folder = std::env::current_dir().ok();
-            let log = sarif::log(&outcomes, &engine::codes(), folder.as_deref());
+            let log = sarif::log(&outcomes, &engine::all_codes(), folder.as_deref());
             serde_json::to_writer_pretty(&mut *streams.out, &log)?;
             writeln!(streams.out)?;
         }

@@ -8,7 +8,7 @@ use std::io;
 
 /// Explains a code, or lists all of them.
 pub fn run(code: Option<&str>, streams: &mut Streams<'_>) -> io::Result<u8> {
-    let codes = engine::codes();
+    let codes = engine::all_codes();
     let Some(code) = code else {
         let column = codes.iter().map(|(name, _)| name.len()).max().unwrap_or(0) + 2;
         for (name, text) in &codes {

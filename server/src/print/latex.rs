@@ -31,7 +31,7 @@ const PREAMBLE: &str = r"\documentclass[11pt,a4paper]{article}
 /// The article.
 pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
     let mut a = Article { out: PREAMBLE.to_string() };
-    let _ = writeln!(a.out, "\\title{{{}}}\n\\author{{}}\n\\date{{}}\n\\maketitle", escape(&sheet.system));
+    let _ = writeln!(a.out, "\\begin{{center}}\n{{\\Large {}}}\n\\end{{center}}", escape(&sheet.system));
     if let Some(description) = &sheet.description {
         a.text(description);
     }
@@ -40,7 +40,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
         a.section("Lagrangian");
         a.align(&[Row::new("L", &sheet.lagrangian)]);
         let term = |t: &leastwise_analysis::report::TermRow| {
-            Row::new(&format!("\\text{{{} {}}}", escape(t.kind), escape(&t.name)), &t.formula)
+            Row::new(&format!("\\text{{{} \\textit{{{}}}}}", t.kind, escape(&t.name)), &t.formula)
         };
         a.align(&sheet.terms.iter().map(term).collect::<Vec<Row>>());
     }
@@ -216,7 +216,7 @@ impl Article {
             if !s.broken_by.is_empty() {
                 self.out.push_str("Broken by the variations of\n");
                 let row = |b: &leastwise_analysis::report::BreakerRow| {
-                    Row::new(&format!("\\text{{{}}}", escape(&b.term)), &b.variation)
+                    Row::new(&format!("\\textit{{{}}}", escape(&b.term)), &b.variation)
                 };
                 self.align(&s.broken_by.iter().map(row).collect::<Vec<Row>>());
             }
@@ -233,7 +233,7 @@ impl Article {
         }
         self.section("Constants of the motion");
         for c in &sheet.conserved {
-            let name = format!("\\text{{{}}}", escape(&c.name));
+            let name = format!("\\textit{{{}}}", escape(&c.name));
             let mut rows = vec![Row::new(&name, &c.formula)];
             if c.holds != Answer::Yes {
                 rows.push(Row::new(&format!("\\frac{{d}}{{dt}} {name}"), &c.rate));
@@ -396,9 +396,9 @@ impl Glyphs<'_> {
             "\\," | "\\;" | "\\:" | "\\ " => 0.3,
             "\\quad" => 2.0,
             "\\left" | "\\right" => 0.0,
-            "\\text" | "\\mathrm" | "\\dot" | "\\ddot" | "\\mathbf" | "\\operatorname" => self.argument(),
+            "\\text" | "\\mathrm" | "\\mathit" | "\\dot" | "\\ddot" | "\\mathbf" | "\\operatorname" => self.argument(),
             "\\sum" => 2.5,
-            "\\sin" | "\\cos" | "\\tan" | "\\exp" | "\\log" => 3.0,
+            "\\sin" | "\\cos" | "\\tan" | "\\exp" | "\\ln" => 3.0,
             "\\arcsin" | "\\arccos" | "\\arctan" | "\\sinh" | "\\cosh" | "\\tanh" => 4.5,
             _ => 1.2,
         }
