@@ -254,10 +254,13 @@ impl<'a> Composer<'a> {
         let rest = list.iter().filter(|p| p.key.kind != 1).all(|p| matches!(p.key.kind, 2 | 3));
         match coordinates.as_slice() {
             // An elongation: the later coordinate is positive, x₂ − x₁ − l.
-            [a, b] if rest && a.coefficient == b.coefficient.neg() && a.key.same_kind(&b.key) => {
-                if parameters > 0 || !odd {
-                    return by(b);
-                }
+            [a, b]
+                if rest
+                    && (parameters > 0 || !odd)
+                    && a.coefficient == b.coefficient.neg()
+                    && a.key.same_kind(&b.key) =>
+            {
+                return by(b);
             }
             // A coordinate against parameters, r − l₀.
             [a] if rest => return by(a),

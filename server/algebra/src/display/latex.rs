@@ -137,9 +137,6 @@ impl Latex<'_> {
                 p.braces(|p| p.form(upper, Place::Sum));
                 p.out.push(' ');
                 p.form(body, Place::Summand);
-                if matches!(**body, Form::Sum(_)) {
-                    return;
-                }
             }),
             Form::Abbreviation(k) => {
                 let name = self.abbreviations.get(*k).map_or("?", String::as_str).to_string();

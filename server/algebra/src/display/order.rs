@@ -101,6 +101,9 @@ pub(crate) struct FactorKey {
     degree: Rational,
 }
 
+/// Class, whether it is a sum, first name, function, exponent.
+type FactorName = (Reverse<u8>, bool, Arc<NameKey>, u8, Reverse<Rational>);
+
 /// How a term sorts among the summands of a sum.
 #[derive(Clone, PartialEq, Eq, PartialOrd, Ord, Debug)]
 pub(crate) struct TermKey {
@@ -112,7 +115,7 @@ pub(crate) struct TermKey {
     pub kind: u8,
     functions: usize,
     coordinates: Rational,
-    names: Vec<(Reverse<u8>, bool, Arc<NameKey>, u8, Reverse<Rational>)>,
+    names: Vec<FactorName>,
     structure: u64,
 }
 
