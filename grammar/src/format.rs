@@ -16,6 +16,9 @@ use crate::tree::Severity;
 /// Between the longest line of a block and its comments.
 const COMMENT_GAP: usize = 3;
 
+/// A comment farther away is moved nearer.
+const MOST_GAP: usize = 60;
+
 /// Formats a file.
 pub fn format(text: &str) -> String {
     format_with(text, &callable_names(split(text).iter()))
@@ -56,10 +59,17 @@ enum Row {
     },
     Code {
         code: String,
-        comment: Option<String>,
+        comment: Option<Comment>,
         term: Option<Term>,
     },
     Verbatim(String),
+}
+
+/// A comment behind code.
+struct Comment {
+    text: String,
+    /// The column where it was typed; none where tabs stand before it.
+    typed: Option<usize>,
 }
 
 /// The first line of a term, dissipation or force: these are aligned in a block.
@@ -93,6 +103,8 @@ struct Typesetter<'t> {
     roles: HashMap<u32, &'t Token>,
     /// The parentheses of calls.
     calls: HashSet<u32>,
+    /// Signs in indices and ranges, which stand without spaces: `x[i+1]`.
+    tight: HashSet<u32>,
     includes: bool,
 }
 
@@ -111,7 +123,8 @@ impl<'t> Typesetter<'t> {
                 _ => {}
             }
         }
-        Typesetter { text, item, roles, calls, includes }
+        let tight = tight_signs(tokens);
+        Typesetter { text, item, roles, calls, tight, includes }
     }
 
     fn rows(&self) -> Vec<Row> {
@@ -130,16 +143,23 @@ impl<'t> Typesetter<'t> {
 
     fn row(&self, line: &mut Vec<Lexeme>, rows: &mut Vec<Row>) {
         let mut lexemes = std::mem::take(line);
-        let comment = lexemes.pop_if(|l| l.kind == Kind::Comment).map(|l| self.of(l).trim_end().to_owned());
+        let comment = lexemes.pop_if(|l| l.kind == Kind::Comment).map(|l| self.comment(l));
         let first = rows.is_empty();
         if lexemes.is_empty() {
-            rows.extend(comment.map(|text| Row::Comment { text, indented: true }));
+            rows.extend(comment.map(|comment| Row::Comment { text: comment.text, indented: true }));
             return;
         }
         let code = self.line(&lexemes);
         let term = if first { self.term(&lexemes) } else { None };
         let code = if first { code } else { format!("    {code}") };
         rows.push(Row::Code { code, comment, term });
+    }
+
+    fn comment(&self, lexeme: Lexeme) -> Comment {
+        let before = &self.text[..lexeme.span.start as usize];
+        let line = &before[before.rfind(['\n', '\r']).map_or(0, |at| at + 1)..];
+        let typed = (!line.contains('\t')).then(|| width(line));
+        Comment { text: self.of(lexeme).trim_end().to_owned(), typed }
     }
 
     fn of(&self, lexeme: Lexeme) -> &'t str {
@@ -162,6 +182,10 @@ impl<'t> Typesetter<'t> {
         if !matches!(self.item, Token::Term(_) | Token::Dissipation | Token::Force) || lexemes.len() < 2 {
             return None;
         }
+        // Forces stand beside the energies only where the writer set them so.
+        if self.item == Token::Force && lexemes[1].span.start < lexemes[0].span.end + 2 {
+            return None;
+        }
         let keyword = self.of(lexemes[0]).to_owned();
         let named = self.item != Token::Force && lexemes.get(2).is_some_and(|l| l.kind == Kind::Equals);
         let (name, rest) = if named { (Some(self.of(lexemes[1]).to_owned()), 2) } else { (None, 1) };
@@ -176,7 +200,7 @@ impl<'t> Typesetter<'t> {
         match next.kind {
             Comma | Colon | Close | CloseIndex | Superscript | Prime(_) | OpenIndex => return false,
             Bar if role(next) == Some(&Token::CloseBar) => return false,
-            Degree if last.kind == Number => return false,
+            Degree if last.kind == Number => return self.of(next) != "°",
             _ => {}
         }
         match last.kind {
@@ -187,7 +211,8 @@ impl<'t> Typesetter<'t> {
             _ => {}
         }
         let tight = |kind| matches!(kind, Caret | Slash | Dot | Cross | Range);
-        if tight(last.kind) || tight(next.kind) {
+        let in_index = |l: Lexeme| self.tight.contains(&l.span.start);
+        if tight(last.kind) || tight(next.kind) || in_index(*last) || in_index(next) {
             return false;
         }
         if next.kind == Open {
@@ -196,6 +221,27 @@ impl<'t> Typesetter<'t> {
         }
         true
     }
+}
+
+/// The places of `+` and `-` in indices and ranges.
+fn tight_signs(tokens: &[Spanned]) -> HashSet<u32> {
+    let mut tight = HashSet::new();
+    // For every open bracket, whether signs in it are tight; a range is so up to its colon.
+    let mut open = vec![false];
+    for token in tokens {
+        match token.token {
+            Token::Open | Token::OpenBar => open.push(false),
+            Token::OpenIndex => open.push(true),
+            Token::Close | Token::CloseBar | Token::CloseIndex => drop(open.pop()),
+            Token::In | Token::Colon => {
+                open.pop();
+                open.push(token.token == Token::In || tokens[0].token == Token::Index);
+            }
+            Token::Plus | Token::Minus if open.last() == Some(&true) => drop(tight.insert(token.span.start)),
+            _ => {}
+        }
+    }
+    tight
 }
 
 /// The opening parenthesis of a call's arguments, behind its marks.
@@ -273,8 +319,9 @@ fn write(rows: &[Row], end: &str, mark: bool) -> String {
                 }
                 out.push_str(code);
                 if let Some(comment) = comment {
-                    out.push_str(&" ".repeat(column.saturating_sub(width(code))));
-                    out.push_str(comment);
+                    let width = width(code);
+                    out.push_str(&" ".repeat(if width < column { column - width } else { COMMENT_GAP }));
+                    out.push_str(&comment.text);
                 }
             }
         }
@@ -283,11 +330,23 @@ fn write(rows: &[Row], end: &str, mark: bool) -> String {
     out
 }
 
-/// The column of the comments in the block that begins these rows.
+/// The column of the comments in the block that begins these rows: the writer's where most of them stand in one and fit,
+/// or else a little behind the longest line.
 fn comment_column(rows: &[Row]) -> usize {
-    let widths = rows.iter().map_while(|row| match row {
-        Row::Code { code, comment, .. } => Some(if comment.is_some() { width(code) } else { 0 }),
+    let block = rows.iter().map_while(|row| match row {
+        Row::Code { code, comment, .. } => Some(comment.as_ref().map(|c| (width(code), c.typed))),
         _ => None,
     });
-    widths.max().unwrap_or(0) + COMMENT_GAP
+    let commented: Vec<(usize, Option<usize>)> = block.flatten().collect();
+    let typed_there = |column: usize| {
+        let fits = |&&(width, typed): &&(usize, Option<usize>)| typed == Some(column) && width < column;
+        commented.iter().filter(fits).count()
+    };
+    let longest = commented.iter().map(|(width, _)| *width).max().unwrap_or(0);
+    let columns = commented.iter().filter_map(|(_, typed)| *typed).filter(|c| *c < longest + MOST_GAP);
+    let most = columns.map(|column| (typed_there(column), column)).max();
+    match most {
+        Some((count, column)) if 2 * count > commented.len() => column,
+        _ => longest + COMMENT_GAP,
+    }
 }

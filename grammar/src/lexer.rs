@@ -90,7 +90,8 @@ pub enum Kind {
     CloseBar,
     /// `√`
     Root,
-    /// `°` or `°C`
+    /// A unit's sign: `°`, `°C`, `%`
+    #[token("%")]
     Degree,
     #[token("==")]
     #[token("===")]

@@ -19,7 +19,9 @@ fn one_way_to_space() {
     check("let a = k(x-l) + sin  ( x ) - sin² (x)", "let a = k (x - l) + sin(x) - sin²(x)\n");
     check("let a = - x +-y", "let a = -x + -y\n");
     check("let a = | P ' |² + 2θ", "let a = |P'|² + 2 θ\n");
-    check("let a=sum( i in 1 .. 7 : x [ i + 1 ] )", "let a = sum(i in 1..7: x[i + 1])\n");
+    check("let a=sum( i in 1 .. 7 : x [ i + 1 ] )", "let a = sum(i in 1..7: x[i+1])\n");
+    check("let a=sum(j in i + 1..8- k : x [ (j + 1) ]-b)", "let a = sum(j in i+1..8-k: x[(j + 1)] - b)\n");
+    check("index i: 1 .. N - 1", "index i: 1..N-1\n");
     check("let f (x,y) = x", "let f(x, y) = x\n");
     check("function U (r) :energy\nlet a = U (r) + U' (r)", "function U(r): energy\nlet a = U(r) + U'(r)\n");
     check("cyclic   coordinate x,y:N/m", "cyclic coordinate x, y: N/m\n");
@@ -27,6 +29,8 @@ fn one_way_to_space() {
     check("symmetry a:(x,y)->(x,y+ε)", "symmetry a: (x, y) -> (x, y + ε)\n");
     check("assume a>0,b<=2", "assume a > 0, b <= 2\n");
     check("run a:from x=1m,over 2 s", "run a: from x = 1 m, over 2 s\n");
+    check("parameter a = 5%, T = 21°C", "parameter a = 5 %, T = 21 °C\n");
+    check("dissipation a = b\nforce c on x = F", "dissipation a = b\nforce c on x = F\n");
     check("include   \"a b.least\"", "include \"a b.least\"\n");
 }
 
@@ -39,7 +43,7 @@ fn spellings_are_kept() {
 #[test]
 fn terms_of_a_block_are_aligned() {
     check(
-        "kinetic bob = a\npotential weight = b\ndissipation 1/2 c\nforce push on x = F\n\nkinetic c = d",
+        "kinetic bob = a\npotential weight = b\ndissipation 1/2 c\nforce  push on x = F\n\nkinetic c = d",
         "kinetic     bob    = a\npotential   weight = b\ndissipation 1/2 c\nforce       push on x = F\n\nkinetic c = d\n",
     );
 }
@@ -47,16 +51,22 @@ fn terms_of_a_block_are_aligned() {
 #[test]
 fn comments_of_a_block_are_aligned() {
     check(
-        "coordinate x # one\ncoordinate long_name: length#two\nlet a = b\n\nlet c = d       # three",
-        "coordinate x                   # one\ncoordinate long_name: length   #two\nlet a = b\n\nlet c = d   # three\n",
+        "coordinate x # one\ncoordinate long_name: length#two\nlet a = b\n\nlet c = d     # three\nlet e = f # four\n\nlet g = h    # five",
+        "coordinate x                   # one\ncoordinate long_name: length   #two\nlet a = b\n\nlet c = d   # three\nlet e = f   # four\n\nlet g = h    # five\n",
     );
+    // One column for most of a block is kept.
+    check(
+        "let a=b      # one\nlet c = d    # two\nlet efghij = klmn # three",
+        "let a = b    # one\nlet c = d    # two\nlet efghij = klmn   # three\n",
+    );
+    check("let a=b      # one\nlet c = d    # two", "let a = b    # one\nlet c = d    # two\n");
 }
 
 #[test]
 fn lines_and_comments_stay_where_they_are() {
     check(
         "# head\n\n\n\nsymmetry a: # one\n# two\n x -> x,\n\n\t# three\n      y -> y # four\n  # five\n# six\nlet a = b\n\n",
-        "# head\n\nsymmetry a:   # one\n    # two\n    x -> x,\n    # three\n    y -> y   # four\n    # five\n# six\nlet a = b\n",
+        "# head\n\nsymmetry a: # one\n    # two\n    x -> x,\n    # three\n    y -> y   # four\n    # five\n# six\nlet a = b\n",
     );
     check("", "");
     check("\n\n# only\n", "# only\n");
