@@ -288,6 +288,16 @@ impl FieldPoint {
             let v = defined(values, t.base)?;
             match &t.kind {
                 Kind::Integer(k) => power(v, *k, &mut num, &mut den),
+                Kind::Absolute(k) if self.point.loose => power(self.drawn_of(v, 0xAB), *k, &mut num, &mut den),
+                Kind::Signum if self.point.loose => {
+                    // sign x = |x|/x.
+                    num = f.mul2(num, self.drawn_of(v, 0xAB));
+                    power(v, -1, &mut num, &mut den);
+                }
+                Kind::Root(k) if self.point.loose => {
+                    num = f.mul2(num, self.seeded(&[v.re, v.im, 0x2007]));
+                    power(v, *k, &mut num, &mut den);
+                }
                 Kind::Absolute(k) => {
                     let v = if real_sign(f, v)? < 0 { f.neg2(v) } else { v };
                     power(v, *k, &mut num, &mut den);
@@ -304,6 +314,10 @@ impl FieldPoint {
                     num = f.mul2(num, f.sqrt(v.re));
                     power(v, *k, &mut num, &mut den);
                 }
+                Kind::Other(r) if self.point.loose && r.small().is_none_or(|(_, d)| d % 2 == 0) => {
+                    let (n, d) = r.small()?;
+                    power(self.seeded(&[v.re, v.im, d as u64, 0x2008]), n, &mut num, &mut den);
+                }
                 Kind::Other(r) => num = f.mul2(num, root(f, v, r)?),
             }
         }
@@ -314,6 +328,13 @@ impl FieldPoint {
         } else {
             Some(f.mul2(num, f.inv2(den)))
         }
+    }
+
+    /// A residue drawn from v or from −v, the same for both.
+    fn drawn_of(&self, v: Element, tag: u64) -> Element {
+        let minus = self.field.neg2(v);
+        let w = if (v.re, v.im) <= (minus.re, minus.im) { v } else { minus };
+        self.seeded(&[w.re, w.im, tag])
     }
 
     fn call(&self, values: &Values<Element>, g: Function, args: &[Expr]) -> Option<Element> {
@@ -343,6 +364,13 @@ impl FieldPoint {
                 let list: Option<Vec<Element>> = args.iter().map(|a| defined(values, *a)).collect();
                 let mut list = list?;
                 if let [a, b] = list.as_slice() {
+                    if self.point.loose {
+                        // (a + b ± |a − b|)/2.
+                        let gap = self.drawn_of(f.sub2(*a, *b), 0xAB);
+                        let sum = f.add2(*a, *b);
+                        let s = if g == Function::Max { f.add2(sum, gap) } else { f.sub2(sum, gap) };
+                        return Some(f.scale2(s, f.inv(2)));
+                    }
                     // max(a, b) = a where a − b is positive.
                     let first = (real_sign(f, f.sub2(*a, *b))? >= 0) == (g == Function::Max);
                     return Some(if first { *a } else { *b });

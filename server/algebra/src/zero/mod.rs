@@ -6,17 +6,25 @@
 mod evaluate;
 mod field;
 mod interval;
+mod linear;
 mod notes;
 mod plan;
 mod points;
+mod refute;
 mod roots;
+mod sample;
 mod signs;
 mod table;
+mod target;
+mod test;
 #[cfg(test)]
 mod tests;
 mod verdict;
 mod witness;
 
+pub use linear::Residues;
 pub use signs::{Assumptions, Relation, Sign};
-pub use verdict::{Reason, Verdict, ZeroTest};
+pub use target::Motion;
+pub use test::ZeroTest;
+pub use verdict::{Reason, Verdict};
 pub use witness::Witness;

@@ -278,7 +278,7 @@ impl Notes {
             }
         }
         if let Some(p) = &plan {
-            self.plan_bounds(arena, &mut n, p);
+            self.plan_bounds(arena, e, &mut n, p);
         }
         if let Some(p) = plan {
             self.plans.push(p);
@@ -299,7 +299,7 @@ impl Notes {
         Ok(())
     }
 
-    fn plan_bounds(&self, arena: &Arena, n: &mut Note, p: &Plan) {
+    fn plan_bounds(&self, arena: &Arena, e: Expr, n: &mut Note, p: &Plan) {
         let inherit = |n: &mut Note, x: Expr| {
             let x = self.note(x);
             n.flags |= x.flags & !Self::DONE;
@@ -324,16 +324,14 @@ impl Notes {
                     inherit(n, t.0);
                 });
                 let d = linear(n, terms);
-                (n.num, n.den) = (2.0 * d, 2.0 * d);
-                (n.tall, n.deep) = (1.0, 1.0);
+                angle_bounds(n, d, matches!(arena.node(e), Node::Call(Function::Tan, _)));
             }
             Plan::Exponential { terms, factors } => {
                 terms.iter().for_each(|t| {
                     inherit(n, t.0);
                 });
                 let d = linear(n, terms);
-                (n.num, n.den) = (2.0 * d, d);
-                (n.tall, n.deep) = (1.0, 1.0);
+                angle_bounds(n, d, matches!(arena.node(e), Node::Call(Function::Tanh, _)));
                 self.factors_bounds(arena, n, factors);
             }
             Plan::Power { factors, terms, logs } => {
@@ -490,6 +488,14 @@ pub(crate) fn sum_bounds<'a>(n: &mut Note, k: &Rational, list: impl Iterator<Ite
     n.num = den + gain;
     n.deep = deep;
     n.tall = deep + gain_tall + count.log2();
+}
+
+/// sin, cos of d times a base angle are polynomials of degree d in its sine and cosine, with coefficients whose sum is
+/// at most 2^(d−1); powers of the cosine are reduced by cos² = 1 − sin², which doubles the sum for every two of them.
+/// The same for cosh and sinh, of which exp is the sum.
+fn angle_bounds(n: &mut Note, d: f32, quotient: bool) {
+    (n.num, n.den) = (d, if quotient { d } else { 0.0 });
+    (n.tall, n.deep) = (1.5 * d, if quotient { 1.5 * d } else { 0.0 });
 }
 
 fn factor_bounds(n: &mut Note, b: &Note, k: f32) {

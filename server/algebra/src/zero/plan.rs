@@ -245,7 +245,10 @@ impl Maker<'_> {
                     push(base, coefficient.clone(), false);
                 }
             }
-            return if rest == Arena::ONE { () } else { self.logarithm(rest, coefficient, out, level + 1) };
+            if rest != Arena::ONE {
+                self.logarithm(rest, coefficient, out, level + 1);
+            }
+            return;
         }
         if c.is_one() && level < 16 {
             match self.arena.node(x).clone() {

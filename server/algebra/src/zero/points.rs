@@ -14,54 +14,67 @@ pub(crate) struct Point {
     pub seed: u64,
     /// Whether atoms of known sign are drawn like all others, so that their Legendre symbols tell them apart.
     pub free: bool,
+    /// Whether roots and absolute values are drawn like atoms, by what stands in them.
+    pub loose: bool,
 }
 
 /// The fields in use. The first two are fixed, further ones are drawn when many primes are needed.
 pub(crate) struct Fields {
-    list: Vec<Arc<Field>>,
+    list: Vec<Option<Arc<Field>>>,
 }
 
 const SEED: u64 = 0x1ea5_7015_e5ee_d001;
 
 impl Fields {
     pub fn new() -> Fields {
-        Fields { list: FIRST.iter().map(|c| Arc::new(Field::new(*c))).collect() }
+        Fields { list: FIRST.iter().map(|c| Some(Arc::new(Field::new(*c)))).collect() }
     }
 
     pub fn get(&self, k: u32) -> Arc<Field> {
-        Arc::clone(&self.list[k as usize])
+        self.list[k as usize].clone().unwrap_or_else(|| Arc::new(Field::new(FIRST[0])))
+    }
+
+    /// Forgets a field that will not be used again; its tables must go too.
+    pub fn forget(&mut self, k: u32) {
+        if k > 1 {
+            self.list[k as usize] = None;
+        }
     }
 
     /// The field of a prime drawn from a key; a prime that is there already is not made twice.
     pub fn drawn(&mut self, key: u64) -> u32 {
         let c = next_prime(mix(SEED, key) >> 24);
         let p = (1u64 << 62) - c;
-        if let Some(k) = self.list.iter().position(|f| f.p == p) {
+        if let Some(k) = self.list.iter().position(|f| f.as_ref().is_some_and(|f| f.p == p)) {
             return k as u32;
         }
-        self.list.push(Arc::new(Field::new(c)));
+        if let Some(k) = self.list.iter().position(Option::is_none) {
+            self.list[k] = Some(Arc::new(Field::new(c)));
+            return k as u32;
+        }
+        self.list.push(Some(Arc::new(Field::new(c))));
         self.list.len() as u32 - 1
     }
 }
 
 /// The standard points, by turns over the first two primes.
 pub(crate) fn standard(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false }
 }
 
-/// A point of one prime only, for linear algebra.
-pub(crate) fn of_first_prime(k: u32) -> Point {
-    Point { field: 0, seed: mix(SEED, k as u64 + 0x10001), free: false }
+/// A point where roots and absolute values are atoms: what vanishes there vanishes whatever their values are.
+pub(crate) fn loose(k: u32) -> Point {
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true }
 }
 
 /// A point where assumptions do not narrow the draw.
 pub(crate) fn unconstrained(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false }
 }
 
 /// A point over a field of its own.
 pub(crate) fn over(field: u32, k: u32) -> Point {
-    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false }
+    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false }
 }
 
 /// A hash that depends on every bit of a list of words.

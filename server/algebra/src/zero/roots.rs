@@ -7,7 +7,8 @@
 use super::notes::Notes;
 use super::plan::{Kind, Plan};
 use super::points;
-use super::verdict::{Reason, ZeroTest};
+use super::test::ZeroTest;
+use super::verdict::Reason;
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
 use crate::function::Function;
@@ -81,8 +82,10 @@ impl Radicals {
                         Kind::Absolute(_) | Kind::Signum => {
                             signs.insert(f.base);
                         }
+                        // A root of a number, or one that the field knows, hides nothing.
                         Kind::Root(_) if constant => {
-                            if test.notes.note(x).flags & Notes::HIDDEN != 0 && arena.as_number(f.base).is_none() {
+                            let hides = test.notes.note(x).flags & Notes::HIDDEN != 0;
+                            if hides && arena.as_number(f.base).is_none() {
                                 constants.insert(f.base);
                             }
                         }

@@ -1,74 +1,7 @@
-//! The traps of the zero test, and random expressions.
+//! Identities, each proved, and near misses, each refuted with a point: the traps of the zero test.
 
-use super::{Assumptions, Reason, Relation, Verdict, ZeroTest};
-use crate::arena::{Arena, Expr, Role};
-use crate::budget::Budget;
-use crate::function::Function;
-use crate::rational::Rational;
-
-struct Lab {
-    arena: Arena,
-    facts: Assumptions,
-}
-
-impl Lab {
-    fn new() -> Lab {
-        Lab { arena: Arena::new(), facts: Assumptions::new() }
-    }
-
-    fn x(&mut self, name: &str) -> Expr {
-        let s = self.arena.symbol(name, None, Role::Coordinate);
-        self.arena.sym(s)
-    }
-
-    fn n(&mut self, n: i64) -> Expr {
-        self.arena.integer(n)
-    }
-
-    fn times(&mut self, n: i64, e: Expr) -> Expr {
-        self.arena.scale(e, &Rational::integer(n))
-    }
-
-    fn over(&mut self, e: Expr, d: i64) -> Expr {
-        self.arena.scale(e, &Rational::new(1, d).unwrap())
-    }
-
-    fn call(&mut self, f: Function, x: Expr) -> Expr {
-        self.arena.call(f, &[x])
-    }
-
-    fn function(&mut self, name: &str, order: u16, x: Expr) -> Expr {
-        let f = self.arena.symbol(name, None, Role::Function);
-        self.arena.unspecified(f, None, &[order], &[x])
-    }
-
-    fn positive(&mut self, e: Expr) {
-        self.facts.assume(&mut self.arena, e, Relation::Greater);
-    }
-
-    fn difference(&mut self, a: Expr, b: Expr) -> Verdict {
-        let e = self.arena.sub(a, b);
-        self.verdict(e)
-    }
-
-    fn verdict(&mut self, e: Expr) -> Verdict {
-        let mut test = ZeroTest::new(self.facts.clone());
-        test.is_zero(&mut self.arena, e, &mut Budget::new(3_000_000))
-    }
-}
-
-fn equal(lab: &mut Lab, a: Expr, b: Expr) {
-    assert_eq!(lab.difference(a, b), Verdict::Proved);
-}
-
-fn different(lab: &mut Lab, a: Expr, b: Expr) {
-    let v = lab.difference(a, b);
-    assert!(matches!(v, Verdict::Refuted(Some(_))), "{v:?}");
-}
-
-fn undecided(lab: &mut Lab, a: Expr, b: Expr, reason: Reason) {
-    assert_eq!(lab.difference(a, b), Verdict::Undecided(reason));
-}
+use super::super::field;
+use super::*;
 
 #[test]
 fn polynomials_unexpanded() {
@@ -254,13 +187,13 @@ fn derivative_of_a_function_and_rate() {
 
 #[test]
 fn multiples_of_the_primes_in_use() {
-    for c in super::field::FIRST {
+    for c in field::FIRST {
         let p = (1i64 << 62) - c as i64;
         let l = &mut Lab::new();
         let x = l.x("x");
         let px = l.times(p, x);
         different(l, px, Arena::ZERO);
-        let q = (1i64 << 62) - super::field::FIRST[0] as i64;
+        let q = (1i64 << 62) - field::FIRST[0] as i64;
         let both = l.times(q, px);
         different(l, both, Arena::ZERO);
         // x^(p−1) − 1 vanishes at every point of the field.
@@ -268,7 +201,7 @@ fn multiples_of_the_primes_in_use() {
         different(l, e, Arena::ONE);
     }
     // (x + p y)(x + q y) − x² − (p + q) x y = p q y² vanishes over both primes.
-    let [p, q] = super::field::FIRST.map(|c| (1i64 << 62) - c as i64);
+    let [p, q] = field::FIRST.map(|c| (1i64 << 62) - c as i64);
     let l = &mut Lab::new();
     let (x, y) = (l.x("x"), l.x("y"));
     let (py, qy) = (l.times(p, y), l.times(q, y));
