@@ -185,8 +185,8 @@ impl Factoriser<'_> {
                 let factor = common(terms, &set, clear.then_some(atom));
                 let candidate = self.weigh(terms, &costs, set.clone(), factor);
                 tried.push((set, clear));
-                let versine = candidate.saving == 0 && self.is_versine(terms, &candidate);
-                if candidate.saving <= 0 && !versine || !self.suits(terms, &candidate) {
+                let free = candidate.saving == 0 && (clear || self.is_versine(terms, &candidate));
+                if candidate.saving <= 0 && !free || !self.suits(terms, &candidate) {
                     continue;
                 }
                 let better = match &best {
@@ -229,6 +229,12 @@ impl Factoriser<'_> {
         }
         let mut out: Vec<Vec<usize>> = whole.into_iter().map(|p| p.1).collect();
         out.extend(parts.into_iter().map(|p| p.1));
+        if !self.accelerated {
+            let number = |i: usize| terms[i].coefficient.abs();
+            let first = number(set[0]);
+            let (same, other): (Vec<usize>, Vec<usize>) = set.iter().partition(|&&i| number(i) == first);
+            out.extend([same, other]);
+        }
         out.retain(|p| p.len() > 1 && p.len() < set.len());
         out.dedup();
         out
@@ -252,12 +258,22 @@ impl Factoriser<'_> {
         if motion(&c.factor).0 != 0 && quotients.iter().any(|q| motion(q).0 != 0 || motion(q).1) {
             return false;
         }
+        let nested = |q: &Monomial| q.iter().any(|f| f.1 < 0 && c.factor.iter().any(|g| g.0 == f.0 && g.1 < 0));
+        if quotients.iter().any(nested) {
+            // No fraction in a fraction.
+            return false;
+        }
+        let first = terms[c.terms[0]].coefficient.abs();
+        let equal = c.terms.iter().all(|&i| terms[i].coefficient.abs() == first);
         let coordinate = |f: &(u32, i32)| self.table.kind(f.0) == Kind::Coordinate && f.1 > 0;
-        if !self.accelerated
-            && c.factor.iter().any(coordinate)
-            && quotients.iter().any(|q| q.iter().any(coordinate))
-            && c.terms.iter().all(|&i| motion(&terms[i].monomial).0 == 0)
-        {
+        let again = |f: &(u32, i32)| coordinate(f) && quotients.iter().any(|q| q.iter().any(|g| g.0 == f.0));
+        let other = c.factor.iter().any(coordinate) && quotients.iter().any(|q| q.iter().any(coordinate));
+        let at_rest = c.terms.iter().all(|&i| motion(&terms[i].monomial).0 == 0);
+        if !self.accelerated && (other && at_rest || c.factor.iter().any(again) && !equal) {
+            return false;
+        }
+        if !self.accelerated && c.saving == 1 && quotients.iter().all(|q| q.len() > 2) {
+            // One operation is no reason to take two long products apart.
             return false;
         }
         let degrees: Vec<(i32, bool)> = c.terms.iter().map(|&i| motion(&terms[i].monomial)).collect();
@@ -274,8 +290,6 @@ impl Factoriser<'_> {
             return true;
         }
         let highest = degrees.iter().map(|d| d.0).max().unwrap_or(0);
-        let first = terms[c.terms[0]].coefficient.abs();
-        let equal = c.terms.iter().all(|&i| terms[i].coefficient.abs() == first);
         if mixed {
             let bare = |q: &Monomial| q.iter().all(|f| self.table.kind(f.0) != Kind::Parameter);
             return equal && quotients.iter().zip(&degrees).all(|(q, d)| d.0 < highest || bare(q));

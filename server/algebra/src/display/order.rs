@@ -1,7 +1,7 @@
 //! The order in which a physicist writes factors and summands. It depends on names only, never on declaration order.
 //!
 //! Factors: numbers, parameters, time and inputs, coordinates, functions, velocities, accelerations. Among parameters:
-//! G, masses (m, M), moments of inertia (I, J), stiffnesses and dampings (k, K, κ, c), then lower case, upper case,
+//! G, masses (M, m), moments of inertia (I, J), stiffnesses and dampings (k, K, κ, c), then lower case, upper case,
 //! Greek; each alphabetically, subscripts by their number. A sum in parentheses stands after the names of its class,
 //! a sum of parameters after those of its leading name's kind.
 //!
@@ -59,10 +59,11 @@ impl NameKey {
         let mut letters = self.head.chars();
         match letters.next() {
             Some('G') if letters.next().is_none() => 0,
-            Some('m' | 'M') => 1,
-            Some('I' | 'J') => 2,
-            Some('k' | 'K' | 'κ' | 'c') => 3,
-            _ => 4,
+            Some('M') => 1,
+            Some('m') => 2,
+            Some('I' | 'J') => 3,
+            Some('k' | 'K' | 'κ' | 'c') => 4,
+            _ => 5,
         }
     }
 }
@@ -101,8 +102,8 @@ pub(crate) struct FactorKey {
     degree: Rational,
 }
 
-/// Class, whether it is a sum, first name, function, exponent.
-type FactorName = (Reverse<u8>, bool, Arc<NameKey>, u8, Reverse<Rational>);
+/// Class, whether it is a sum, preference of a lone parameter, first name, function, exponent.
+type FactorName = (Reverse<u8>, bool, u8, Arc<NameKey>, u8, Reverse<Rational>);
 
 /// How a term sorts among the summands of a sum.
 #[derive(Clone, PartialEq, Eq, PartialOrd, Ord, Debug)]
@@ -131,7 +132,7 @@ impl TermKey {
     /// The name where the term is one name.
     pub fn only(&self) -> Option<&NameKey> {
         match self.names.as_slice() {
-            [(_, false, name, 0, exponent)] if exponent.0.is_one() => Some(name),
+            [(_, false, _, name, 0, exponent)] if exponent.0.is_one() => Some(name),
             _ => None,
         }
     }
@@ -300,7 +301,9 @@ impl Keys {
             names: Vec::new(),
             structure: arena.key(e),
         };
-        for (base, exponent) in arena.factors(e) {
+        let factors = arena.factors(e);
+        let lone = factors.len() == 1 && factors[0].1.is_one();
+        for (base, exponent) in factors {
             let f = self.factor(arena, base);
             match f.class {
                 class::ACCELERATION => k.level = Reverse(2),
@@ -321,7 +324,9 @@ impl Keys {
                 class::PARAMETER if k.kind == 2 => k.kind = 3,
                 _ => {}
             }
-            k.names.push((Reverse(f.class), f.compound, f.name.clone(), f.function, Reverse(exponent)));
+            // Masses first where they stand alone: M + m, m + J/a², but k + m Ω².
+            let preference = if lone { f.preference } else { u8::MAX };
+            k.names.push((Reverse(f.class), f.compound, preference, f.name.clone(), f.function, Reverse(exponent)));
         }
         if k.level.0 > 0 {
             k.kind = 0;
@@ -349,7 +354,7 @@ mod tests {
 
     #[test]
     fn what_physicists_put_first() {
-        let order = ["G", "m₁", "J", "k", "g", "R", "Ω"].map(|n| {
+        let order = ["G", "M", "m₁", "J", "k", "g", "R", "Ω"].map(|n| {
             let k = NameKey::new(n, None);
             (k.preference(), k)
         });

@@ -54,13 +54,13 @@ fn fractions() {
     check("1/2 m x'^2", "1/2 m ẋ²");
     check("k x/(x^2+y^2)^(3/2)", "k x/(x² + y²)^(3/2)");
     check("k/sqrt(x^2+y^2)", "k/√(x² + y²)");
-    check("J/a^2 + m", "J/a² + m");
+    check("J/a^2 + m", "m + J/a²");
     check("1/x", "1/x");
     check("3/(2 x)", "3/(2 x)");
     check("1/2 (x'^2 + y'^2)/y^2", "(ẋ² + ẏ²)/(2 y²)");
     check("1/2 (x^2 + y^2) + x^2 y - y^3/3", "1/2 (x² + y²) + x² y - 1/3 y³");
     check("2^(1/2) x", "√(2) x");
-    check("a^n + 2^n + x^(n+1)", "a^n + 2^n + x^(1 + n)");
+    check("a^n + 2^n + x^(n+1)", "2^n + x^(1 + n) + a^n");
     check("exp(-x/a)", "exp(-x/a)");
     check("1/sin(θ)^2", "1/sin² θ");
 }
