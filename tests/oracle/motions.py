@@ -68,8 +68,18 @@ class Balance:
     def __init__(self, what, quantity, rate, conserved):
         self.what, self.tree, self.conserved = what, plain.read(quantity), conserved
         self.rate = plain.read(rate if rate is not None else "0")
-        parts = self.tree[1:] if self.tree[0] == "add" else ((1, self.tree),)
-        self.summands = [x for _, x in parts]
+        self.size = size_of(self.tree)
+
+
+def size_of(tree):
+    """The formula with every sum made a sum of absolute values: how large its parts are where they cancel."""
+    if tree[0] == "add":
+        return ("add", *[(1, size_of(x)) for _, x in tree[1:]])
+    if tree[0] == "mul":
+        return ("mul", *[(power, size_of(x) if power > 0 else x) for power, x in tree[1:]])
+    if tree[0] == "neg":
+        return size_of(tree[1])
+    return ("call", "abs", (tree,))
 
 
 def balances(sheet, claims):
@@ -95,7 +105,7 @@ def integrate(sheet, file, run, seconds, extra, signals, functions, rows):
     matrix = plain.Function([plain.read(x) for row in sheets.dense(sheet) for x in row], plain.Floats)
     force = plain.Function([plain.read(c["equation"]) for c in sheet["coordinates"]], plain.Floats)
     rates = plain.Function([b.rate for b in rows], plain.Floats)
-    values = plain.Function([b.tree for b in rows] + [x for b in rows for x in b.summands], plain.Floats)
+    values = plain.Function([b.tree for b in rows] + [b.size for b in rows], plain.Floats)
 
     def unknown(name, orders, args):
         return functions[name](orders, args)
@@ -141,7 +151,7 @@ def integrate(sheet, file, run, seconds, extra, signals, functions, rows):
     rough = solve(lambda t, y: right(t, y)[:2 * n], y0, np.full(2 * n, 1e-3 * max(np.max(np.abs(y0)), 1e-3)))
     state = np.maximum(np.max(np.abs(rough.y), axis=1), 1e-3 * np.max(np.abs(y0)) + 1e-12)
     samples = [call(values, t, y, accelerations(t, y)) for t, y in zip(rough.t, rough.y.T)]
-    weight = np.maximum.reduce([scale_of(rows, v) for v in samples])
+    weight = np.maximum.reduce([np.abs(v[len(rows):]) for v in samples]) + 1e-300
     end = solve(right, np.concatenate([y0, np.zeros(len(rows))]), np.concatenate([state, weight]))
     drift, went, first = np.zeros(len(rows)), np.zeros(len(rows)), np.array(samples[0][:len(rows)])
     for t, y in zip(end.t, end.y.T):
@@ -149,15 +159,6 @@ def integrate(sheet, file, run, seconds, extra, signals, functions, rows):
         drift = np.maximum(drift, np.abs(change - y[2 * n:]))
         went = np.maximum(went, np.abs(change))
     return drift / weight, went / weight
-
-
-def scale_of(rows, values):
-    """The sum of the absolute values of a quantity's summands."""
-    out, i = [], len(rows)
-    for b in rows:
-        out.append(max(sum(abs(v) for v in values[i:i + len(b.summands)]), 1e-300))
-        i += len(b.summands)
-    return out
 
 
 def check(prog, entry):

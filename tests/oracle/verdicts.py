@@ -21,7 +21,7 @@ import sheets
 
 HERE = os.path.dirname(os.path.abspath(__file__))
 FOLDERS = [os.path.join(HERE, "..", "..", "grammar", "examples"), os.path.join(HERE, "models")]
-WORD = re.compile(r"[^\W\d]\w*")
+WORD = re.compile(r"[^\W\d](?:(?![⁰¹²³⁴⁵⁶⁷⁸⁹])\w)*")      # a superscript is a power, not part of the name
 TERMS = ("kinetic", "potential", "lagrangian")
 RESERVED = {"sin", "cos", "tan", "asin", "acos", "atan", "atan2", "sinh", "cosh", "tanh", "exp", "log", "sqrt", "abs", "sign", "min", "max", "norm", "dot",
             "cross", "sum", "in", "on", "diag", "transpose", "turn", "spin", "momentum", "energy", "t", "pi", "π", "ε", "eps", "ex", "ey", "ez", "ħ"}
