@@ -2,7 +2,7 @@
 
     reprint.py PROGRAM [--only MODEL]
 
-For every example and every model of models/ (and the shared cases, see verdicts.py): its declarations, forces and claims stay,
+For every example and every model of models/ (and the worked cases, see verdicts.py): its declarations, forces and claims stay,
 its energies are replaced by one `lagrangian` with the sheet's own `text`, then `plain`; each charge is claimed as it is printed.
 """
 import argparse

@@ -2,7 +2,7 @@
 
     verdicts.py PROGRAM [--only MODEL] [--seeds 2]
 
-Every example, every model of models/ and, where LEASTWISE_SHARED names a folder with cases/, every case is rewritten and
+Every example, every model of models/ and, where the folder of worked cases is at hand (LEASTWISE_CASES), every case is rewritten and
 its sheet compared: statuses, blamed terms, `cyclic`, `momentum_conserved`, `energy`, `holds`, and for new names the findings' codes.
 """
 import argparse
@@ -214,9 +214,9 @@ def check(job):
 
 
 def shared_cases():
-    """The folder of shared cases, or nothing."""
-    folder = os.path.join(os.environ.get("LEASTWISE_SHARED", ""), "cases")
-    return folder if os.environ.get("LEASTWISE_SHARED") and os.path.isdir(folder) else None
+    """The folder of worked cases, or nothing: LEASTWISE_CASES, else ../shared/cases beside the repository."""
+    folder = os.environ.get("LEASTWISE_CASES") or os.path.join(HERE, "..", "..", "..", "shared", "cases")
+    return folder if os.path.isdir(folder) else None
 
 
 def models(only=None):
@@ -234,7 +234,7 @@ def main(arguments=None):
     o = ap.parse_args(arguments)
     paths, without = models(o.only), not shared_cases()
     if without:
-        print("not run: verdicts on the shared cases (LEASTWISE_SHARED names no folder)")
+        print("not run: verdicts on the worked cases (no folder; LEASTWISE_CASES names it)")
     with multiprocessing.Pool(2) as pool:
         reports = pool.map(check, [(o.program, p, o.seeds) for p in paths], chunksize=2)
     for r in reports:
