@@ -1,5 +1,6 @@
 //! What the zero test knows of each node before any evaluation: bounds on degree and height, sign, flags, plan.
 
+use super::field::TURN;
 use super::plan::{self, Kind, Made, Plan};
 use super::signs::{self, Assumptions, Sign};
 use crate::arena::{Arena, Expr, Node, Role};
@@ -217,6 +218,9 @@ impl Notes {
                 sum_bounds(&mut n, k, list);
             }
             Node::Product(list) => {
+                if list.iter().any(|(_, r)| r.is_integer() && r.to_i64().is_none()) {
+                    n.flags |= Self::TOO_LARGE;
+                }
                 if plan.is_none() {
                     for (b, r) in list.iter() {
                         let b = self.note(*b);
@@ -319,7 +323,10 @@ impl Notes {
             total.max(1.0)
         };
         match p {
-            Plan::Angle { terms, .. } => {
+            Plan::Angle { terms, turn } => {
+                if !turn.small().is_some_and(|(_, d)| (TURN / 2).is_multiple_of(d as u64)) {
+                    n.flags |= Self::INCOMPLETE;
+                }
                 terms.iter().for_each(|t| {
                     inherit(n, t.0);
                 });

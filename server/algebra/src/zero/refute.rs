@@ -1,13 +1,16 @@
 //! Refutation: a real point where the value is not zero, or atoms without relations.
 
 use super::notes::{Note, Notes};
+use super::plan::Plan;
+use super::roots::Radicals;
 use super::signs::Relation;
 use super::target::Target;
 use super::test::ZeroTest;
 use super::verdict::{Reason, Verdict};
 use super::witness::{ATTEMPTS, Witness};
-use crate::arena::{Arena, Node};
+use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
+use hashbrown::HashSet;
 
 impl ZeroTest {
     /// A real point where the value is not zero, or another proof that it is not.
@@ -23,7 +26,7 @@ impl ZeroTest {
             return Ok(Verdict::Refuted(Some(w)));
         }
         if reason == Reason::NoWitness {
-            if self.atoms_are_independent(note) {
+            if self.atoms_are_independent(arena, target, note, budget)? {
                 return Ok(Verdict::Refuted(None));
             }
             let named = [
@@ -43,20 +46,55 @@ impl ZeroTest {
         Ok(Verdict::Undecided(reason))
     }
 
-    /// Whether a value that is nonzero in a field is nonzero: the atoms satisfy no relation but those in use.
-    fn atoms_are_independent(&self, note: &Note) -> bool {
-        let related = Notes::EXPONENTIAL
-            | Notes::ANGLE
-            | Notes::ROOT
-            | Notes::SIGN
+    /// Whether a value that is nonzero in a field is nonzero: its atoms satisfy no relation but those in use. These
+    /// are names; sines and exponentials of different monomials in names, which are independent over the rationals
+    /// modulo constants; values of unspecified functions; roots without relations.
+    fn atoms_are_independent(
+        &mut self,
+        arena: &mut Arena,
+        target: &Target<'_>,
+        note: &Note,
+        budget: &mut Budget,
+    ) -> Result<bool, Stopped> {
+        let related = Notes::SIGN
             | Notes::OPAQUE
             | Notes::HIDDEN
             | Notes::INCOMPLETE
             | Notes::SYMBOLIC
             | Notes::CONSTANTS
-            | Notes::TOO_LARGE
-            | Notes::UNSPECIFIED;
-        note.flags & related == 0 && note.lcm == 1
+            | Notes::TOO_LARGE;
+        if note.flags & related != 0 {
+            return Ok(false);
+        }
+        let list = target.expressions();
+        if note.flags & (Notes::ANGLE | Notes::EXPONENTIAL) != 0 {
+            let name = |e: Expr| matches!(arena.node(e), Node::Symbol(_) | Node::Jet(..));
+            let monomial = |e: Expr| match arena.node(e) {
+                Node::Product(f) => f.iter().all(|(b, r)| name(*b) && r.is_integer()),
+                _ => name(e),
+            };
+            let mut pure = true;
+            let mut seen = HashSet::new();
+            let mut stack = list.clone();
+            while let Some(x) = stack.pop() {
+                if self.notes.note(x).flags & (Notes::ANGLE | Notes::EXPONENTIAL) == 0 || !seen.insert(x) {
+                    continue;
+                }
+                budget.charge(1)?;
+                if let Some(Plan::Angle { terms, .. } | Plan::Exponential { terms, .. }) = self.notes.plan(x) {
+                    pure &= terms.iter().all(|t| monomial(t.0));
+                }
+                arena.for_children(x, &mut |c| stack.push(c));
+            }
+            if !pure {
+                return Ok(false);
+            }
+        }
+        if note.flags & Notes::ROOT != 0 {
+            let Ok(found) = Radicals::collect(self, arena, &list, budget)? else { return Ok(false) };
+            return Ok(self.relations(arena, &found, budget)? == 0);
+        }
+        Ok(true)
     }
 
     /// A real point that satisfies the assumptions and where the value is enclosed away from zero.

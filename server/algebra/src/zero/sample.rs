@@ -59,7 +59,7 @@ pub(super) fn need(note: &Note, lost: usize) -> Result<Need, Reason> {
     let points = ((BITS / bits).ceil() as u32).max(2);
     // Primes above 2⁶¹ whose product exceeds every coefficient cannot divide all of them.
     let tall = note.tall * if narrow { note.lcm as f32 } else { 1.0 };
-    if !(tall < MAX_BITS) {
+    if tall.is_nan() || tall > MAX_BITS {
         return Err(Reason::DegreeTooHigh);
     }
     let primes = ((tall / 61.0).floor() as u32 + 1).saturating_sub(2);

@@ -7,6 +7,9 @@ use super::signs::Assumptions;
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
 
+/// Ranges from this length on are first looked at with a free index.
+const LONG: i64 = 64;
+
 /// What an evaluation reads beside the values.
 #[derive(Clone, Copy)]
 pub(crate) struct Place<'a> {
@@ -124,22 +127,24 @@ impl<D: Domain> Table<D> {
         let mut inner = *env;
         let mut sum = D::ZERO;
         let mut stopped = None;
-        'range: for v in a..=b {
+        if b.saturating_sub(a) >= LONG && D::PLANNED {
+            // A summand that vanishes at a free index vanishes at every number.
+            inner[k] = None;
+            let v = self.summand(at, *body, order, &inner, budget);
+            order.iter().for_each(|x| self.values.list[x.index()] = D::UNSET);
+            if v? == D::ZERO {
+                return Ok(D::ZERO);
+            }
+        }
+        for v in a..=b {
             inner[k] = Some(v);
-            if let Err(s) = budget.charge(order.len() + 1) {
-                stopped = Some(s);
-                break;
-            }
-            for &x in order {
-                match self.compute(at, x, &inner, budget) {
-                    Ok(v) => self.values.list[x.index()] = v,
-                    Err(s) => {
-                        stopped = Some(s);
-                        break 'range;
-                    }
+            let v = match self.summand(at, *body, order, &inner, budget) {
+                Ok(v) => v,
+                Err(s) => {
+                    stopped = Some(s);
+                    break;
                 }
-            }
-            let v = self.values.get(*body);
+            };
             if !D::exists(v) {
                 sum = D::NOWHERE;
                 break;
@@ -149,5 +154,22 @@ impl<D: Domain> Table<D> {
         // A value that depends on the index is no value of the node.
         order.iter().for_each(|x| self.values.list[x.index()] = D::UNSET);
         stopped.map_or(Ok(sum), Err)
+    }
+
+    /// The summand at a value of the index, or at a free index.
+    fn summand(
+        &mut self,
+        at: Place<'_>,
+        body: Expr,
+        order: &[Expr],
+        env: &Env,
+        budget: &mut Budget,
+    ) -> Result<D::Value, Stopped> {
+        budget.charge(order.len() + 1)?;
+        for &x in order {
+            let v = self.compute(at, x, env, budget)?;
+            self.values.list[x.index()] = v;
+        }
+        Ok(self.values.get(body))
     }
 }

@@ -207,6 +207,9 @@ impl ZeroTest {
         if note.flags & Notes::UNDEFINED != 0 {
             return Ok(Verdict::Undecided(Reason::Undefined));
         }
+        if note.flags & Notes::TOO_LARGE != 0 {
+            return self.refute(arena, target, &note, Reason::DegreeTooHigh, budget);
+        }
         // Nearly everything that is not zero shows it at the first point where it has a value.
         let (mut k, mut poles, mut singular) = (0, 0, 0);
         loop {

@@ -448,3 +448,84 @@ fn assumptions_narrow_the_witness() {
     equal(l, r, p);
     different(l, r, a);
 }
+
+#[test]
+fn refuted_without_a_real_point() {
+    // No real point satisfies x² < −1, yet different atoms stay different.
+    let l = &mut Lab::new();
+    let (x, y) = (l.x("x"), l.x("y"));
+    let x2 = l.arena.pow(x, 2);
+    let never = l.arena.linear(&[(x2, Rational::MINUS_ONE), (Arena::ONE, Rational::MINUS_ONE)]);
+    l.positive(never);
+    let (s, c) = (l.call(Function::Sin, x), l.call(Function::Cos, x));
+    let (u, r) = (l.function("U", 0, y), l.arena.sqrt(y));
+    for (a, b) in [(x, y), (s, c), (u, r), (s, u)] {
+        assert_eq!(l.difference(a, b), Verdict::Refuted(None));
+    }
+    let (s2, c2) = (l.arena.pow(s, 2), l.arena.pow(c, 2));
+    let one = l.arena.add(s2, c2);
+    equal(l, one, Arena::ONE);
+    let log = l.call(Function::Log, y);
+    undecided(l, log, y, Reason::Functions);
+}
+
+#[test]
+fn free_roots_and_signs() {
+    // Σ |xₖ| − Σ |xₖ| in another order of many unknown signs; the same with roots that are related.
+    let l = &mut Lab::new();
+    let (mut sum, mut other) = (Arena::ZERO, Arena::ZERO);
+    for k in 0..12 {
+        let x = l.x(&format!("x{k}"));
+        let (abs, x2) = (l.call(Function::Abs, x), l.arena.pow(x, 2));
+        let wide = l.arena.add(x2, Arena::ONE);
+        let r = l.arena.sqrt(wide);
+        let t = l.arena.mul(abs, r);
+        sum = l.arena.add(sum, t);
+        let (w2, half) = (l.arena.mul(wide, abs), l.arena.pow_rational(wide, &Rational::HALF.neg()));
+        let t = l.arena.mul(w2, half);
+        other = l.arena.add(other, t);
+        let minus = l.arena.neg(x);
+        let again = l.call(Function::Abs, minus);
+        let t = l.arena.mul(again, Arena::ONE);
+        sum = l.arena.add(sum, t);
+        other = l.arena.add(other, abs);
+    }
+    equal(l, sum, other);
+    let half = l.over(other, 2);
+    different(l, sum, half);
+}
+
+#[test]
+fn long_ranges() {
+    let l = &mut Lab::new();
+    let family = l.arena.symbol("x", None, Role::Coordinate);
+    let i = l.arena.symbol("i", None, Role::Index);
+    let ie = l.arena.sym(i);
+    let next = l.arena.add(ie, Arena::ONE);
+    let (xi, xn) = (l.arena.member(family, ie, 0), l.arena.member(family, next, 0));
+    let (d, s) = (l.arena.sub(xn, xi), l.arena.add(xn, xi));
+    let p = l.arena.mul(d, s);
+    let (a2, b2) = (l.arena.pow(xn, 2), l.arena.pow(xi, 2));
+    let zero = l.arena.linear(&[(p, Rational::ONE), (a2, Rational::MINUS_ONE), (b2, Rational::ONE)]);
+    let n = l.n(1_000_000_000);
+    let body = l.arena.mul(xi, zero);
+    let sum = l.arena.bound(i, Arena::ONE, n, body, &mut Budget::new(1000)).unwrap();
+    assert!(sum != Arena::ZERO);
+    equal(l, sum, Arena::ZERO);
+    // A telescope of a thousand members, and one that is out of all budgets.
+    for (last, proved) in [(1000, true), (1_000_000_000, false)] {
+        let n = l.n(last);
+        let sum = l.arena.bound(i, Arena::ONE, n, d, &mut Budget::new(1000)).unwrap();
+        let mut member = |k: i64| {
+            let s = l.arena.symbol("x", Some(k), Role::Coordinate);
+            l.arena.sym(s)
+        };
+        let (first, end) = (member(1), member(last + 1));
+        let ends = l.arena.sub(end, first);
+        if proved {
+            equal(l, sum, ends);
+        } else {
+            undecided(l, sum, ends, Reason::TooLarge);
+        }
+    }
+}

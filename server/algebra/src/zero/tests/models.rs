@@ -111,8 +111,8 @@ fn the_energy_of_a_chain_is_conserved() {
     let residual = m.lab.arena.sub(rate, force);
     let c: Vec<Expr> = (0..4).map(|j| m.partial(residual, m.a[j])).collect();
     let mut c0 = residual;
-    for j in 0..4 {
-        let t = m.lab.arena.mul(c[j], m.a[j]);
+    for (c, a) in c.iter().zip(m.a.clone()) {
+        let t = m.lab.arena.mul(*c, a);
         c0 = m.lab.arena.sub(c0, t);
     }
     let v = test.rate_is_zero(&mut m.lab.arena, c0, &c, &motion, &mut Budget::new(10_000_000));
