@@ -80,7 +80,15 @@ impl Report<'_> {
                     .help("write what it works on, or take it away")
                     .mend(format!("take {shown} away"), span, "");
             }
-            (Token::Prime(_), _) if self.at == 2 => self.unexpected(),
+            (Token::Name(_), Some(Token::Name(_))) if self.two_words() => {
+                let (first, second) = (before.span, self.span);
+                let joined = format!("{}_{}", &self.text[first.range()], &self.text[second.range()]);
+                self.slips.error(codes::HEAD_NAME, first.to(second), "a name is one word").mend(
+                    format!("write {joined}"),
+                    first.to(second),
+                    joined,
+                );
+            }
             _ if self.names_only(&before.token) && !matches!(here, Some(Token::Name(_))) => self.missing_name(here),
             _ if ends => self.nothing_behind(&before),
             (Token::Equals | Token::Arrow | Token::Relation(_) | Token::Colon | Token::On, Some(next))
@@ -94,6 +102,11 @@ impl Report<'_> {
 
     fn shown(&self, span: Span) -> String {
         format!("`{}`", &self.text[span.range()])
+    }
+
+    /// Whether the item's name goes on with another word.
+    fn two_words(&self) -> bool {
+        matches!(self.tokens[..self.at - 1], [.., Spanned { token: Token::Named | Token::System, .. }])
     }
 
     /// Whether the innermost open bracket is a sum's whose colon has not come yet.

@@ -44,7 +44,7 @@ pub(crate) fn parse_with_tokens(text: &str, callable: &CallableNames) -> (Parsed
         item_hints(text, &kind, &mut slips);
     }
     let item = Item { kind, keyword: reading.keyword, span: reading.span };
-    (ParsedItem { item, slips: slips.finish() }, reading.tokens)
+    (ParsedItem { item, slips: slips.finish(text) }, reading.tokens)
 }
 
 /// Reads a formula alone.
@@ -58,7 +58,7 @@ pub fn parse_formula(text: &str, callable: &CallableNames) -> (Formula, Vec<Slip
     if !slips.any_error() {
         hints(text, &formula, &mut slips);
     }
-    (formula, slips.finish())
+    (formula, slips.finish(text))
 }
 
 fn parse(text: &str, reading: &Reading, slips: &mut Slips) -> Option<Entry> {

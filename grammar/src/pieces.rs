@@ -179,7 +179,7 @@ impl Balance<'_> {
                         self.open(lexeme, begins_line);
                     }
                 }
-                Kind::Bar if self.stack.last().is_some_and(|top| top.kind == Kind::OpenBar) => {
+                Kind::Bar if self.closes(lexeme) => {
                     self.close(Lexeme { kind: Kind::CloseBar, ..lexeme }, begins_line);
                 }
                 Kind::Bar => {
@@ -197,6 +197,14 @@ impl Balance<'_> {
         }
         self.close_all();
         self.out
+    }
+
+    /// Whether a bar closes one: the innermost, or, behind an operand, one outside of brackets left open.
+    fn closes(&self, bar: Lexeme) -> bool {
+        let behind_operand =
+            self.out.last().is_some_and(|last| last.kind.ends_operand() && last.span.end <= bar.span.start);
+        let open = |lexeme: &Lexeme| lexeme.kind == Kind::OpenBar;
+        self.stack.last().is_some_and(open) || behind_operand && self.stack.iter().any(open)
     }
 
     fn push(&mut self, kind: Kind, span: Span, begins_line: bool) {
@@ -339,7 +347,7 @@ mod tests {
         let mut slips = Slips::default();
         let found: Vec<Kind> = pieces(text, &mut slips).iter().map(|p| p.kind).collect();
         assert_eq!(found, kinds, "{text}");
-        let codes: Vec<&str> = slips.finish().iter().map(|s| s.code).collect();
+        let codes: Vec<&str> = slips.finish(text).iter().map(|s| s.code).collect();
         assert_eq!(codes, Vec::from_iter(code), "{text}");
     }
 
@@ -376,6 +384,6 @@ mod tests {
         let text = format!("{}x{}", "(".repeat(100_000), ")".repeat(100_000));
         let mut slips = Slips::default();
         assert_eq!(pieces(&text, &mut slips).len(), 2 * NESTING + 1);
-        assert_eq!(slips.finish().len(), 1);
+        assert_eq!(slips.finish(&text).len(), 1);
     }
 }

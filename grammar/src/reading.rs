@@ -478,6 +478,9 @@ impl<'t> Reader<'t> {
                     .help("give the term a name, or leave out the `=` too")
                     .mend("leave out the `=`", span, "");
                 self.at += 1;
+                if self.find(Kind::Equals).is_some() {
+                    return self.term(keyword);
+                }
             } else if self.single_name(equals) {
                 self.emit(Token::Named, point(keyword.end));
                 self.plain();

@@ -1,5 +1,6 @@
 //! Slips as they are made, in a few words each.
 
+use crate::codes;
 use crate::tree::{Mend, Severity, Slip, Span};
 
 /// At most so many slips per item: beyond, more messages help nobody.
@@ -54,11 +55,63 @@ impl Slips {
         self.list.iter().any(|s| s.severity == Severity::Error)
     }
 
-    /// All slips, in the order of the text.
-    pub fn finish(mut self) -> Vec<Slip> {
+    /// All slips, in the order of the text; those that only follow from another are left out.
+    ///
+    /// `text` is the item's text.
+    pub fn finish(mut self, text: &str) -> Vec<Slip> {
         self.list.sort_by_key(|s| (s.span.start, s.span.end));
-        self.list
+        let mut kept: Vec<Slip> = Vec::with_capacity(self.list.len());
+        // Behind these the rest of the item is read by guess.
+        let unknown = self.has(codes::UNKNOWN_CHARACTER);
+        let guessed = unknown || self.has(codes::UNBALANCED_BRACKET);
+        for slip in self.list {
+            let follows = match slip.code {
+                codes::UNBALANCED_BRACKET => unknown || kept.iter().any(|s| s.code == slip.code),
+                codes::NESTED_BARS => guessed,
+                code if structural(code) => guessed || kept.iter().any(|before| follows(&slip, before, text)),
+                _ => false,
+            };
+            if !follows {
+                kept.push(slip);
+            }
+        }
+        kept
     }
+}
+
+/// Whether a slip is likely to come from one before it.
+fn follows(slip: &Slip, before: &Slip, text: &str) -> bool {
+    if before.severity != Severity::Error {
+        return false;
+    }
+    let of_the_whole = matches!(slip.code, codes::TRANSFORMATION_COUNT | codes::MISSING_EQUALS);
+    if of_the_whole && structural(before.code) {
+        return true;
+    }
+    let between = text.get(before.span.end as usize..slip.span.start as usize).unwrap_or("");
+    between.chars().filter(|c| !c.is_whitespace()).take(2).count() <= 1
+}
+
+/// Whether the slip is in how an item is put together, not in a single sign of it.
+fn structural(code: &str) -> bool {
+    matches!(
+        code,
+        codes::MISSING_OPERAND
+            | codes::MISSING_EQUALS
+            | codes::MISSING_NAME
+            | codes::MISSING_PART
+            | codes::MISSING_SEPARATOR
+            | codes::UNEXPECTED
+            | codes::VALUE_FORM
+            | codes::HEAD_NAME
+            | codes::UNIT_IN_FORMULA
+            | codes::FUNCTION_ARGUMENT
+            | codes::FUNCTION_POWER
+            | codes::DERIVATIVE_MARK
+            | codes::TRANSFORMATION_COUNT
+            | codes::TRANSFORMATION_SOURCE
+            | codes::QUOTIENT_UNIT
+    )
 }
 
 /// Shorthands to complete a slip.

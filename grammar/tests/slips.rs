@@ -188,7 +188,8 @@ fn heads() {
     check("let P ⟦(⟧r sin θ, r)", "missing-equals", "let P = (r sin θ, r)");
     check("let f(x) ⟦x⟧", "missing-equals", "let f(x) = x");
     check("function ⟦U⟧: energy", "missing-part", "-");
-    check("system a ⟦b⟧", "unexpected", "-");
+    check("system ⟦a b⟧", "head-name", "system a_b");
+    check("symmetry ⟦a b⟧: x -> x", "head-name", "symmetry a_b: x -> x");
     check("system a, ⟦dimensionles⟧", "system-option", "system a, dimensionless");
     check("system a, with c = ⟦2⟧", "system-option", "-");
     check("⟦index i⟧", "missing-part", "-");
@@ -240,4 +241,15 @@ fn nesting_beyond_256_levels() {
     }
     let text = format!("kinetic a = {}x{}", "(".repeat(256), ")".repeat(256));
     assert_eq!(read_all(&text)[0].1.slips, []);
+}
+
+#[test]
+fn what_follows_from_a_slip_is_not_told() {
+    check("kinetic a = 1/2 m ⟦§⟧P'|^2", "unknown-character", "-");
+    check("kinetic a = |⟦(⟧r'|^2", "unbalanced-bracket", "kinetic a = |(r')|^2");
+    check("kinetic a = |(⟦|⟧b|)|", "nested-bars", "-");
+    check("kinetic ⟦=⟧ a = b", "missing-name", "kinetic  a = b");
+    check("symmetry a: (x, y) -> (x ⟦+⟧, y)", "missing-operand", "symmetry a: (x, y) -> (x , y)");
+    check("force a on r ⟦,⟧ F", "unexpected", "-");
+    check("let a = b cos ⟦^⟧ φ", "function-power", "-");
 }
