@@ -312,10 +312,12 @@ impl Session {
         let mut parts: Vec<(Expr, i64)> = Vec::new();
         for at in 0..reading.entries.len() {
             let entry = &reading.entries[at];
-            if reading.failed[at] && !matches!(entry.parsed.item.kind, ItemKind::Parameter(_)) {
-                continue;
-            }
-            if entry.file != 0 && !matches!(entry.parsed.item.kind, ItemKind::Assume(_) | ItemKind::Parameter(_)) {
+            let needed = match entry.parsed.item.kind {
+                ItemKind::Parameter(_) => true,
+                ItemKind::Assume(_) => !reading.failed[at],
+                _ => entry.file == 0 && !reading.failed[at] && has_meaning(&entry.parsed.item.kind),
+            };
+            if !needed {
                 continue;
             }
             if entry.parsed.uses.motion {
@@ -385,6 +387,21 @@ impl Session {
         self.lowered.retain(|_, (_, used)| *used >= oldest);
         self.definitions.retain(|_, d| d.generation >= oldest);
     }
+}
+
+/// Whether an item means more than the names that it declares.
+fn has_meaning(kind: &ItemKind) -> bool {
+    !matches!(
+        kind,
+        ItemKind::System { .. }
+            | ItemKind::Coordinate { .. }
+            | ItemKind::Input { .. }
+            | ItemKind::Index { .. }
+            | ItemKind::Let { .. }
+            | ItemKind::Function { .. }
+            | ItemKind::Include { .. }
+            | ItemKind::Broken
+    )
 }
 
 /// Adds the identity of an item and of all that it names. Whether one of the names is a large family.

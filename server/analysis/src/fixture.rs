@@ -15,8 +15,7 @@ impl Files for Folder {
     }
 }
 
-/// Checks a model. Under a line stand, as comments, the findings on it: `#   ^^^ code: words` with the carets under
-/// their range; the message has the words. Hints and warnings are findings like all others.
+/// Checks a model. Under a line stand the findings on it: `#   ^^^ code: words` with the carets under their range; the message has the words. Hints and warnings are findings like all others.
 pub(crate) fn check(text: &str) -> Checked {
     check_in(text, &NoFiles)
 }
@@ -34,16 +33,14 @@ pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -
     let mut line_start = 0;
     for line in text.lines() {
         let marked = line.trim_start();
-        match marked.strip_prefix('#').filter(|rest| rest.trim_start().starts_with('^')) {
-            Some(rest) => {
-                let indent = line.len() - rest.len();
+        let rest = marked.strip_prefix('#').unwrap_or(marked).trim_start();
+        match rest.starts_with('^').then_some(()) {
+            Some(()) => {
                 let carets_at = line.chars().take_while(|c| *c != '^').count();
                 let carets = line.chars().filter(|c| *c == '^').count();
-                let source = &model[line_start..];
-                let byte = |column: usize| {
-                    line_start + source.char_indices().nth(column).map_or(source.trim_end().len(), |(b, _)| b)
-                };
-                let _ = indent;
+                let source = model[line_start..].trim_end().to_owned();
+                let byte =
+                    |column: usize| line_start + source.char_indices().nth(column).map_or(source.len(), |(b, _)| b);
                 let message = line[line.rfind('^').map_or(0, |k| k + 1)..].trim().to_owned();
                 expected.push((byte(carets_at), byte(carets_at + carets), message));
             }

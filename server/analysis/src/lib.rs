@@ -28,3 +28,5 @@ pub use include::Files;
 mod fixture;
 #[cfg(test)]
 mod models;
+#[cfg(test)]
+mod tests;

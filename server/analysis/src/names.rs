@@ -443,8 +443,12 @@ pub(crate) fn is_dimensionless(reading: &Reading) -> bool {
     })
 }
 
-/// Names that nothing uses.
+/// Names that nothing uses. A file without terms, claims or runs is there to be included: others use its names.
 pub(crate) fn unused(reading: &mut Reading) {
+    let model = |e: &Entry| e.file == 0 && !is_taken_in(&e.parsed.item.kind);
+    if !reading.entries.iter().any(model) {
+        return;
+    }
     let mut used: HashSet<&str> = HashSet::new();
     for entry in &reading.entries {
         used.extend(entry.parsed.uses.names.iter().map(|u| u.name.as_str()));

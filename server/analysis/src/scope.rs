@@ -99,6 +99,8 @@ pub(crate) struct Decl {
     pub large: bool,
     pub fingerprint: u64,
     pub failed: bool,
+    /// Whether it is declared again elsewhere.
+    pub disputed: bool,
 }
 
 impl Decl {
@@ -201,6 +203,7 @@ impl Scope {
             return;
         }
         if let Some(&first) = self.by_name.get(name.as_str()) {
+            self.decls[first].disputed = true;
             let first = &self.decls[first];
             let mut finding = LocalFinding::error(codes::DECLARED_TWICE, span, format!("`{name}` is declared twice"))
                 .help("a name is declared once; choose another name, or take one declaration out");
@@ -232,6 +235,7 @@ impl Scope {
             large: false,
             fingerprint: 0,
             failed: false,
+            disputed: false,
         });
     }
 
@@ -252,6 +256,7 @@ impl Scope {
             large: false,
             fingerprint: 1,
             failed: false,
+            disputed: false,
         });
     }
 

@@ -33,7 +33,7 @@ impl<'a> Lowerer<'a> {
         self.existing(e, f.span)
     }
 
-    fn count(&mut self, name: &Name, args: &[Formula], least: usize, most: usize, form: &str) -> bool {
+    fn count(&mut self, name: &Name, args: &[Formula], (least, most): (usize, usize), form: &str, span: Span) -> bool {
         if (least..=most).contains(&args.len()) {
             return true;
         }
@@ -42,7 +42,6 @@ impl<'a> Lowerer<'a> {
             (a, b) if a == b => format!("{a} arguments"),
             (a, _) => format!("{a} arguments or more"),
         };
-        let span = args.iter().fold(name.span, |s, a| s.to(a.span));
         let message = format!("`{}` has {needs}, and here stand {}", name.text, args.len());
         let mut finding = LocalFinding::error(codes::ARGUMENT_COUNT, span, message);
         if !form.is_empty() {
@@ -62,7 +61,7 @@ impl<'a> Lowerer<'a> {
             "diag" => (2, MAX_ROWS, "diag(A, B, C)"),
             _ => (1, 1, ""),
         };
-        if !self.count(name, args, least, most, form) {
+        if !self.count(name, args, (least, most), form, span) {
             return Value::Missing;
         }
         if name.text == "momentum" {
@@ -210,7 +209,7 @@ impl<'a> Lowerer<'a> {
             return Value::Missing;
         }
         let form = format!("{}({})", decl.name, decl.formals.join(", "));
-        if !self.count(name, args, decl.formals.len(), decl.formals.len(), &form) {
+        if !self.count(name, args, (decl.formals.len(), decl.formals.len()), &form, span) {
             return Value::Missing;
         }
         if decl.is_family() && at.is_none() {
@@ -231,6 +230,10 @@ impl<'a> Lowerer<'a> {
         }
         if orders.iter().any(|o| *o > 0) {
             return self.derived_definition(decl, &orders, &values, args, at, span);
+        }
+        // Without an argument there is no value; what is wrong with the definition is told there.
+        if values.iter().any(Value::is_missing) {
+            return Value::Missing;
         }
         let key = (at, values);
         let known = self.definitions.get(&decl.fingerprint).and_then(|d| d.calls.get(&key));

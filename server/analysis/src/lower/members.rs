@@ -5,7 +5,7 @@ use crate::codes;
 use crate::finding::{LocalFinding, Place};
 use crate::scope::{Decl, SymbolKind};
 use crate::values::{Shape, Value};
-use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped};
+use leastwise_algebra::{Arena, Expr, Node, Rational, Role};
 use leastwise_grammar::tree::*;
 
 impl<'a> Lowerer<'a> {

@@ -93,6 +93,8 @@ pub(crate) struct Lowerer<'a> {
     open: Vec<OpenIndex>,
     foreign: Vec<Foreign>,
     level: u32,
+    /// The outermost formula that is being lowered.
+    whole: Span,
     stopped: bool,
     failed: bool,
 }
@@ -120,6 +122,7 @@ impl<'a> Lowerer<'a> {
             open: Vec::new(),
             foreign: Vec::new(),
             level: 0,
+            whole: Span::default(),
             stopped: false,
             failed: false,
         }
@@ -151,10 +154,12 @@ impl<'a> Lowerer<'a> {
         Value::Missing
     }
 
-    /// Ends the item: it is too large. Only one finding says so.
+    /// Ends the item: it is too large. Only one finding says so, on the whole formula where no part is to blame.
     fn stop(&mut self, why: Stopped, span: Span) -> Value {
         if !self.stopped {
             self.stopped = true;
+            self.foreign.clear();
+            let span = if why == Stopped::FreeIndex { span } else { self.whole };
             let message = match why {
                 Stopped::TooDeep => "this is nested too deeply to be derived",
                 Stopped::Cancelled => "the derivation was cancelled",
@@ -206,6 +211,9 @@ impl<'a> Lowerer<'a> {
 
     /// The value of a formula. Recursion is bounded by the nesting limit and by [`MAX_LEVEL`].
     pub fn lower(&mut self, f: &Formula) -> Value {
+        if self.level == 0 {
+            self.whole = f.span;
+        }
         if !self.charge(1, f.span) {
             return Value::Missing;
         }
@@ -356,7 +364,7 @@ impl<'a> Lowerer<'a> {
             }
         }
         let constant = order > 0 && out.flat().iter().all(|e| *e == Arena::ZERO);
-        if constant && self.constant_name(base).is_some_and(|d| d.kind != SymbolKind::Undeclared) {
+        if constant && self.constant_name(base).is_some_and(|d| d.kind != SymbolKind::Undeclared && !d.disputed) {
             let name = self.constant_name(base).map(|d| d.name.clone()).unwrap_or_default();
             self.report(LocalFinding::new(
                 codes::PRIME_OF_CONSTANT,

@@ -1,0 +1,7 @@
+//! Every rule about names and formulas, once.
+
+mod formulas;
+mod incremental;
+mod lowering;
+mod names;
+mod values;
