@@ -326,9 +326,12 @@ impl Reader<'_> {
             Some(Kind::Minus) => self.operand_end(start + 1, end),
             Some(kind) if kind.begins_operand() || kind == Kind::Root => self.operand_end(start, end),
             _ => {
-                self.slips
-                    .error(codes::FUNCTION_ARGUMENT, span, format!("`{written}` has no argument"))
-                    .help(format!("write its argument in parentheses: {written}(…)"));
+                // Where a power between the two could not be read, the argument went with it.
+                if !self.slips.touches(span) {
+                    self.slips
+                        .error(codes::FUNCTION_ARGUMENT, span, format!("`{written}` has no argument"))
+                        .help(format!("write its argument in parentheses: {written}(…)"));
+                }
                 return self.emit_call(name, span, power, None);
             }
         }

@@ -251,5 +251,5 @@ fn what_follows_from_a_slip_is_not_told() {
     check("kinetic ⟦=⟧ a = b", "missing-name", "kinetic  a = b");
     check("symmetry a: (x, y) -> (x ⟦+⟧, y)", "missing-operand", "symmetry a: (x, y) -> (x , y)");
     check("force a on r ⟦,⟧ F", "unexpected", "-");
-    check("let a = b cos ⟦^⟧ φ", "function-power", "-");
+    check("let a = b ⟦cos ^⟧ φ", "function-power", "-");
 }
