@@ -284,6 +284,16 @@ impl Report<'_> {
         });
         let span = self.span;
         let first = &self.tokens[0].token;
+        let first_span = self.tokens[0].span;
+        if here.token == Token::Comma && unit == Some(true) && matches!(first, Token::Coordinate(_) | Token::Input) {
+            let keyword = &self.text[first_span.range()];
+            let behind = self.tokens.get(self.at + 1).map_or(span.end, |next| next.span.start);
+            self.slips
+                .error(codes::UNEXPECTED, span, "the names of one item share one quantity")
+                .help("begin another item for another quantity")
+                .mend("begin another item", Span { start: span.start, end: behind }, format!("\n{keyword} "));
+            return;
+        }
         let help = match here.token {
             Token::Comma if unit == Some(true) => self.form(),
             Token::Comma => "a vector stands in parentheses: (a, b)".to_owned(),

@@ -178,6 +178,7 @@ fn heads() {
     check("coordinate ⟦x y⟧: length", "missing-separator", "coordinate x, y: length");
     check("coordinate ⟦x length⟧", "missing-separator", "coordinate x: length");
     check("coordinate x⟦:⟧", "missing-part", "-");
+    check("coordinate x: length⟦,⟧ y: angle", "unexpected", "coordinate x: length\ncoordinate y: angle");
     check("coordinate ⟦2⟧x: length", "missing-name", "-");
     check("coordinate ⟦:⟧ length", "missing-name", "-");
     check("⟦coordinate⟧", "missing-name", "-");
