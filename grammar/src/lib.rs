@@ -7,6 +7,7 @@ mod build;
 pub mod codes;
 mod format;
 mod formulas;
+mod heads;
 mod hints;
 mod items;
 mod keywords;

@@ -14,7 +14,8 @@ fn check(text: &str) -> Vec<&'static str> {
         parsed.slips.into_iter().map(|s| s.code)
     });
     let codes = slips.collect();
-    assert_eq!(format(&format(text)), format(text));
+    let formatted = format(text);
+    assert!(format(&formatted) == formatted, "formatting is idempotent");
     codes
 }
 
