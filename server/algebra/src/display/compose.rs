@@ -26,12 +26,57 @@ struct Piece {
     key: TermKey,
 }
 
-/// How a sum in a product likes to be oriented.
-#[derive(Clone, Copy, PartialEq, Eq)]
-enum Orientation {
-    Keep,
-    Flip,
-    Either,
+/// A summand laid out, with what decides its place.
+#[derive(Clone)]
+struct Part {
+    summand: Summand,
+    key: TermKey,
+    /// The number in front of it.
+    size: Rational,
+    /// Where it has a sum that may take the sign.
+    free: Free,
+}
+
+/// Whether below the line, and which factor.
+type Free = Option<(bool, usize)>;
+
+impl Part {
+    /// Changes the sign, inside where that makes it positive.
+    fn negate(&mut self) {
+        let s = &mut self.summand;
+        if s.negative {
+            s.negative = false;
+            return;
+        }
+        let place = match (&mut s.form, self.free) {
+            (Form::Product { bottom, .. }, Some((true, i))) => bottom.get_mut(i),
+            (Form::Product { top, .. }, Some((false, i))) => top.get_mut(i),
+            (form, Some(_)) => Some(form),
+            (_, None) => None,
+        };
+        s.negative = !place.is_some_and(flip);
+    }
+}
+
+/// Changes the sign of a sum of both signs, or of its odd power.
+fn flip(form: &mut Form) -> bool {
+    match form {
+        Form::Sum(list) if list.iter().any(|s| s.negative) && list.len() > 1 => {
+            let taken = std::mem::take(list);
+            *form = lead_positive(Form::Sum(taken).signed(true));
+            true
+        }
+        Form::Power(base, e) if e.is_integer() && !e.is_even_integer() => flip(base),
+        _ => false,
+    }
+}
+
+/// A sum laid out.
+enum Parts {
+    /// One product, with its sign.
+    Whole(bool, Form),
+    /// Two summands or more.
+    Sum(Vec<Part>),
 }
 
 impl<'a> Composer<'a> {
@@ -56,7 +101,8 @@ impl<'a> Composer<'a> {
             Node::Number(r) => (r.is_negative(), Form::Number(r.abs())),
             Node::Sum(c, terms) if c.is_zero() && terms.len() == 1 => {
                 let (core, c) = terms[0].clone();
-                self.product(core, &c)
+                let (negative, form, _) = self.product(core, &c);
+                (negative, form)
             }
             Node::Sum(c, terms) => {
                 let (c, terms) = (c.clone(), terms.clone());
@@ -66,7 +112,10 @@ impl<'a> Composer<'a> {
                     form => form.unsigned(),
                 }
             }
-            Node::Product(_) => self.product(e, &Rational::ONE),
+            Node::Product(_) => {
+                let (negative, form, _) = self.product(e, &Rational::ONE);
+                (negative, form)
+            }
             _ => {
                 let e = (e, Rational::ONE);
                 self.power(e.0, &e.1)
@@ -90,6 +139,21 @@ impl<'a> Composer<'a> {
 
     /// A sum in its order, a positive summand first if there is one.
     fn sum(&mut self, constant: &Rational, terms: &[(Expr, Rational)], scale: &Rational) -> Form {
+        let mut parts = match self.parts(constant, terms, scale) {
+            Parts::Whole(negative, form) => return form.signed(negative),
+            Parts::Sum(parts) => parts,
+        };
+        if parts.iter().all(|p| p.summand.negative) {
+            // The first product that can take the sign into one of its sums leads.
+            if let Some(p) = parts.iter_mut().find_map(|p| turn(&mut p.summand.form).then_some(p)) {
+                p.summand.negative = false;
+            }
+        }
+        assemble(parts)
+    }
+
+    /// The summands in their order; a sum that is one product with a number in front as that.
+    fn parts(&mut self, constant: &Rational, terms: &[(Expr, Rational)], scale: &Rational) -> Parts {
         let list = self.pieces(constant, terms, scale);
         let pure = |p: &Piece| p.core != Arena::ONE && !p.key.has_parameters();
         // A number in front of all: 2 (x + y) instead of 2 x + 2 y.
@@ -102,18 +166,15 @@ impl<'a> Composer<'a> {
             let inverse = content.recip().unwrap_or(Rational::ONE);
             let taken: usize = list.iter().map(|p| coefficient_cost(&p.coefficient.mul(&inverse))).sum();
             if taken + coefficient_cost(&content) < bare {
-                let inner = self.sum(constant, terms, &scale.mul(&inverse));
-                return match inner {
-                    Form::Sum(list) if list.iter().all(|s| s.negative) => {
-                        let inner = Form::Sum(list).signed(true);
-                        Form::Product { coefficient: content, top: vec![inner], bottom: vec![] }.signed(true)
-                    }
-                    inner => Form::Product { coefficient: content, top: vec![inner], bottom: vec![] },
+                let (negative, inner) = match self.sum(constant, terms, &scale.mul(&inverse)) {
+                    Form::Sum(list) if list.iter().all(|s| s.negative) => (true, Form::Sum(list).signed(true)),
+                    inner => (false, inner),
                 };
+                return Parts::Whole(negative, product(content, vec![inner], vec![]));
             }
         }
         // Like terms without parameters share a number: 1/2 (x² + y²) + x² y.
-        let mut out: Vec<Summand> = Vec::with_capacity(list.len());
+        let mut out: Vec<Part> = Vec::with_capacity(list.len());
         let mut done = vec![false; list.len()];
         for i in 0..list.len() {
             if done[i] {
@@ -130,44 +191,35 @@ impl<'a> Composer<'a> {
                 })
                 .collect();
             if c.is_one() || group.len() < 2 || group.len() == list.len() {
-                let (negative, form) = self.product(list[i].core, &list[i].coefficient);
-                out.push(Summand { negative, form });
+                let (negative, form, free) = self.product(list[i].core, &list[i].coefficient);
+                out.push(Part { summand: Summand { negative, form }, key: list[i].key.clone(), size: c, free });
                 continue;
             }
             let mut inner = Vec::new();
             let lead = list[i].coefficient.is_negative();
             for j in group {
                 done[j] = true;
-                let (negative, form) = self.product(list[j].core, &Rational::ONE);
+                let (negative, form, _) = self.product(list[j].core, &Rational::ONE);
                 inner.push(Summand { negative: negative ^ list[j].coefficient.is_negative() ^ lead, form });
             }
-            let form = Form::Product { coefficient: c, top: vec![Form::Sum(inner)], bottom: vec![] };
-            out.push(Summand { negative: lead, form });
+            let form = Form::Product { coefficient: c.clone(), top: vec![Form::Sum(inner)], bottom: vec![] };
+            out.push(Part { summand: Summand { negative: lead, form }, key: list[i].key.clone(), size: c, free: None });
         }
         if out.len() == 1 {
-            let s = out.remove(0);
-            return s.form.signed(s.negative);
+            let s = out.remove(0).summand;
+            return Parts::Whole(s.negative, s.form);
         }
-        if out.iter().all(|s| s.negative) {
-            // The first product that can take the sign into one of its sums leads.
-            if let Some(s) = out.iter_mut().find_map(|s| turn(&mut s.form).then_some(s)) {
-                s.negative = false;
-            }
-        }
-        if let Some(first) = out.iter().position(|s| !s.negative) {
-            out[..=first].rotate_right(1);
-        }
-        Form::Sum(out)
+        Parts::Sum(out)
     }
 
     /// `c · core` as a product of powers and a fraction.
-    fn product(&mut self, core: Expr, c: &Rational) -> (bool, Form) {
+    fn product(&mut self, core: Expr, c: &Rational) -> (bool, Form, Free) {
         if core == Arena::ONE {
-            return (c.is_negative(), Form::Number(c.abs()));
+            return (c.is_negative(), Form::Number(c.abs()), None);
         }
         if let Some(k) = self.abbreviations.get(&core) {
             let form = Form::Abbreviation(*k);
-            return (c.is_negative(), product(c.abs(), vec![form], vec![]));
+            return (c.is_negative(), product(c.abs(), vec![form], vec![]), None);
         }
         let mut negative = c.is_negative();
         let mut c = c.abs();
@@ -177,6 +229,7 @@ impl<'a> Composer<'a> {
         let sums = keyed.iter().filter(|(_, b, e)| e.is_one() && self.is_sum(*b)).count();
         let mut top = Vec::new();
         let mut bottom = Vec::new();
+        let mut turnable = None;
         for (_, base, exponent) in keyed {
             let below = exponent.is_negative();
             let e = exponent.abs();
@@ -188,18 +241,28 @@ impl<'a> Composer<'a> {
                     if sums == 1 && exponent.is_one() && !c.is_one() && self.absorbs(&k, &terms, &c) {
                         scale = std::mem::replace(&mut c, Rational::ONE);
                     }
-                    let orientation = self.orientation(&k, &terms, odd);
-                    let flip = match orientation {
-                        Orientation::Keep => false,
-                        Orientation::Flip => true,
-                        Orientation::Either => odd && negative,
-                    };
-                    if flip {
-                        scale = scale.neg();
-                        negative ^= odd;
+                    match self.parts(&k, &terms, &scale) {
+                        Parts::Whole(minus, form) => {
+                            negative ^= minus && odd;
+                            raise(form, &e)
+                        }
+                        Parts::Sum(mut parts) => {
+                            let (flip, free) = orientation(&parts, odd);
+                            if flip {
+                                parts.iter_mut().for_each(Part::negate);
+                                negative ^= odd;
+                            }
+                            if free {
+                                turnable = Some((
+                                    below,
+                                    if below { bottom.len() } else { top.len() },
+                                    parts.clone(),
+                                    e.clone(),
+                                ));
+                            }
+                            raise(assemble(parts), &e)
+                        }
                     }
-                    let form = self.sum(&k, &terms, &scale);
-                    raise(form, &e)
                 }
                 _ => {
                     let (minus, form) = self.power(base, &e);
@@ -209,7 +272,15 @@ impl<'a> Composer<'a> {
             };
             if below { bottom.push(form) } else { top.push(form) }
         }
-        (negative, product(c, top, bottom))
+        let free = turnable.as_ref().map(|t| (t.0, t.1));
+        if negative && let Some((below, i, mut parts, e)) = turnable {
+            // −k (x₁ − x₂) = k (x₂ − x₁).
+            parts.iter_mut().for_each(Part::negate);
+            let place = if below { &mut bottom[i] } else { &mut top[i] };
+            *place = raise(assemble(parts), &e);
+            negative = false;
+        }
+        (negative, product(c, top, bottom), free)
     }
 
     fn is_sum(&self, e: Expr) -> bool {
@@ -233,40 +304,6 @@ impl<'a> Composer<'a> {
             inside += cost(&t.1, true);
         }
         inside < outside
-    }
-
-    /// How a sum in a product is oriented.
-    fn orientation(&mut self, constant: &Rational, terms: &[(Expr, Rational)], odd: bool) -> Orientation {
-        let list = self.pieces(constant, terms, &Rational::ONE);
-        let negatives = list.iter().filter(|p| p.coefficient.is_negative()).count();
-        if negatives == 0 {
-            return Orientation::Keep;
-        }
-        if negatives == list.len() {
-            return Orientation::Flip;
-        }
-        let by = |p: &Piece| if p.coefficient.is_negative() { Orientation::Flip } else { Orientation::Keep };
-        if list[0].key.level.0 == 2 {
-            return by(&list[0]);
-        }
-        let coordinates: Vec<&Piece> = list.iter().filter(|p| p.key.kind == 1).collect();
-        let parameters = list.len() - coordinates.len();
-        let rest = list.iter().filter(|p| p.key.kind != 1).all(|p| matches!(p.key.kind, 2 | 3));
-        match coordinates.as_slice() {
-            // An elongation: the later coordinate is positive, x₂ − x₁ − l.
-            [a, b]
-                if rest
-                    && (parameters > 0 || !odd)
-                    && a.coefficient == b.coefficient.neg()
-                    && a.key.same_kind(&b.key) =>
-            {
-                return by(b);
-            }
-            // A coordinate against parameters, r − l₀.
-            [a] if rest => return by(a),
-            _ => {}
-        }
-        if odd { Orientation::Either } else { by(&list[0]) }
     }
 
     /// `base ^ exponent` for a positive exponent, with the sign that came out of an odd function.
@@ -376,17 +413,58 @@ impl<'a> Composer<'a> {
     }
 }
 
+/// Whether a sum in a product is turned, and whether it may be turned again to make the product positive.
+fn orientation(parts: &[Part], odd: bool) -> (bool, bool) {
+    let minus = |p: &Part| p.summand.negative;
+    let negatives = parts.iter().filter(|p| minus(p)).count();
+    if negatives == 0 || negatives == parts.len() {
+        return (negatives > 0, false);
+    }
+    if parts[0].key.level.0 == 2 {
+        return (minus(&parts[0]), false);
+    }
+    let coordinates: Vec<&Part> = parts.iter().filter(|p| p.key.kind == 1).collect();
+    let rest = parts.iter().filter(|p| p.key.kind != 1).all(|p| matches!(p.key.kind, 2 | 3));
+    match coordinates.as_slice() {
+        // An elongation: the later coordinate is positive, x₂ − x₁ − l.
+        [a, b]
+            if rest
+                && (parts.len() > 2 || !odd)
+                && a.size == b.size
+                && minus(a) != minus(b)
+                && a.key.same_kind(&b.key) =>
+        {
+            return (minus(b), false);
+        }
+        // A coordinate against parameters, r − l₀.
+        [a] if rest => return (minus(a), false),
+        _ => {}
+    }
+    if odd {
+        return (minus(&parts[0]), true);
+    }
+    // √(x² + y²) − l₀, not l₀ − √(x² + y²).
+    (minus(parts.iter().find(|p| p.key.kind != 3).unwrap_or(&parts[0])), false)
+}
+
+/// A sum of parts, a positive one first if there is one.
+fn assemble(parts: Vec<Part>) -> Form {
+    lead_positive(Form::Sum(parts.into_iter().map(|p| p.summand).collect()))
+}
+
 /// Turns a sum of both signs in a product, and says whether it did: −k (x₁ − x₂) = k (x₂ − x₁). Sums that begin with an
 /// acceleration stay as they are.
 fn turn(form: &mut Form) -> bool {
     fn sum(form: &mut Form) -> bool {
         match form {
             Form::Sum(list) if list.len() > 1 && list.iter().any(|s| s.negative) => {
-                if list[0].form.begins_with_acceleration() {
+                let kept = list[0].form.begins_with_acceleration();
+                if kept && !turn(&mut list[0].form) {
                     return false;
                 }
+                list.iter_mut().skip(usize::from(kept)).for_each(|s| s.negative = !s.negative);
                 let taken = std::mem::take(list);
-                *form = lead_positive(Form::Sum(taken).signed(true));
+                *form = lead_positive(Form::Sum(taken));
                 true
             }
             // No minus here, but one further in that can be turned: g (1 − cos θ) − b.

@@ -272,8 +272,9 @@ impl Factoriser<'_> {
         if !self.accelerated && (other && at_rest || c.factor.iter().any(again) && !equal) {
             return false;
         }
-        if !self.accelerated && c.saving == 1 && quotients.iter().all(|q| q.len() > 2) {
-            // One operation is no reason to take two long products apart.
+        let same = |q: &Monomial| c.factor.iter().any(|f| f.1 > 0 && q.iter().any(|g| g.0 == f.0));
+        if !self.accelerated && c.saving == 1 && (quotients.iter().all(|q| q.len() > 2) || quotients.iter().any(same)) {
+            // One operation is no reason to take two long products apart, or h² − 2 h p.
             return false;
         }
         let degrees: Vec<(i32, bool)> = c.terms.iter().map(|&i| motion(&terms[i].monomial)).collect();
@@ -292,7 +293,7 @@ impl Factoriser<'_> {
         let highest = degrees.iter().map(|d| d.0).max().unwrap_or(0);
         if mixed {
             let bare = |q: &Monomial| q.iter().all(|f| self.table.kind(f.0) != Kind::Parameter);
-            return equal && quotients.iter().zip(&degrees).all(|(q, d)| d.0 < highest || bare(q));
+            return equal && !first.is_one() && quotients.iter().zip(&degrees).all(|(q, d)| d.0 < highest || bare(q));
         }
         highest < 2 || equal || c.terms.len() == terms.iter().filter(|t| motion(&t.monomial).0 == highest).count()
     }

@@ -68,7 +68,7 @@ impl<'a> Simplifier<'a> {
         let own = self.cost(source);
         let mut best = None;
         match self.expanded(source, &HashSet::new(), false, budget) {
-            Ok(p) => self.candidates(&p, &mut best, budget)?,
+            Ok(p) => self.candidates(&p, false, &mut best, budget)?,
             Err(Stopped::TooLarge) if budget.left() > 0 => {}
             Err(other) => return Err(other),
         }
@@ -82,7 +82,7 @@ impl<'a> Simplifier<'a> {
                     continue;
                 }
                 match self.expanded(source, &opaque, false, budget) {
-                    Ok(p) => self.candidates(&p, &mut best, budget)?,
+                    Ok(p) => self.candidates(&p, true, &mut best, budget)?,
                     Err(Stopped::TooLarge) if budget.left() > 0 => {}
                     Err(other) => return Err(other),
                 }
@@ -91,7 +91,7 @@ impl<'a> Simplifier<'a> {
         }
         if self.has_closed_sums(source) {
             match self.expanded(source, &HashSet::new(), true, budget) {
-                Ok(p) if p.len() <= MAX_WIDE => self.candidates(&p, &mut best, budget)?,
+                Ok(p) if p.len() <= MAX_WIDE => self.candidates(&p, false, &mut best, budget)?,
                 Ok(_) => {}
                 Err(Stopped::TooLarge) if budget.left() > 0 => {}
                 Err(other) => return Err(other),
@@ -125,6 +125,7 @@ impl<'a> Simplifier<'a> {
     fn candidates(
         &mut self,
         p: &Polynomial,
+        kept: bool,
         best: &mut Option<(usize, Expr)>,
         budget: &mut Budget,
     ) -> Result<(), Stopped> {
@@ -132,12 +133,17 @@ impl<'a> Simplifier<'a> {
             Rewriter { arena: self.arena, table: &mut self.table, cap: self.options.monomials }.versions(p, budget)?;
         for (p, expected) in &versions {
             let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
+            let degree = p.iter().map(|t| self.table.motion(&t.monomial).0).max().unwrap_or(0);
             let ways = [Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing];
             // What is long gains nothing by being collected less.
             let count = if p.len() > MAX_WAYS { 2 } else { ways.len() };
             for collect in ways.into_iter().take(count) {
                 let e = self.factored(p, collect, budget)?;
                 let mut cost = self.cost(e);
+                if !accelerated && degree == 1 && collect != Collect::Motion {
+                    // A momentum is linear in the velocities, and so it reads.
+                    cost += 2;
+                }
                 if accelerated && matches!(collect, Collect::Parameters | Collect::Nothing) {
                     // An acceleration in two places must be worth it.
                     cost += 1;
@@ -145,6 +151,10 @@ impl<'a> Simplifier<'a> {
                 if !expected {
                     // Forms that a reader would not expect must be clearly shorter.
                     cost += cost / 5 + 1;
+                }
+                if kept {
+                    // A quadratic form is what a reader expects; sums kept in it must be worth it.
+                    cost += cost / 10;
                 }
                 if best.as_ref().is_none_or(|b| cost < b.0) {
                     *best = Some((cost, e));
@@ -182,7 +192,7 @@ impl<'a> Simplifier<'a> {
             let t = self.arena.scale(t, &c);
             let mut best = None;
             match self.expanded(t, &HashSet::new(), false, budget) {
-                Ok(p) if p.len() <= 64 => self.candidates(&p, &mut best, budget)?,
+                Ok(p) if p.len() <= 64 => self.candidates(&p, false, &mut best, budget)?,
                 Ok(_) | Err(Stopped::TooLarge) if budget.left() > 0 => {}
                 Err(other) => return Err(other),
                 Ok(_) => return Err(Stopped::TooLarge),
