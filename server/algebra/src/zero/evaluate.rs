@@ -13,6 +13,8 @@ use std::sync::Arc;
 pub(crate) struct FieldPoint {
     pub point: Point,
     pub field: Arc<Field>,
+    /// What stands under the roots that take their other value.
+    pub negated: Vec<Expr>,
 }
 
 impl Domain for FieldPoint {
@@ -95,7 +97,7 @@ impl Domain for FieldPoint {
             }
             Node::Call(g, args) => self.call(values, *g, args).unwrap_or(NOWHERE),
             Node::Unspecified { function, index: i, orders, args } => {
-                let name = super::signs::atom_key;
+                let name = super::assumptions::atom_key;
                 let key = match i.map(|i| index(at.arena, i, env)) {
                     None => name(at.arena, *function, None, 0),
                     Some(Index::At(k)) => name(at.arena, *function, Some(k), 0),
@@ -312,6 +314,9 @@ impl FieldPoint {
                         return None;
                     }
                     num = f.mul2(num, f.sqrt(v.re));
+                    if self.negated.contains(&t.base) {
+                        num = f.neg2(num);
+                    }
                     power(v, *k, &mut num, &mut den);
                 }
                 Kind::Other(r) if self.point.loose && r.small().is_none_or(|(_, d)| d % 2 == 0) => {

@@ -3,6 +3,7 @@
 //! Expressions are mapped to finite fields and evaluated there at random points [Schwartz 1980, Zippel 1979].
 //! A value that is not zero at a real point, by interval arithmetic, refutes.
 
+mod assumptions;
 mod evaluate;
 mod field;
 mod interval;
@@ -10,6 +11,7 @@ mod linear;
 mod notes;
 mod plan;
 mod points;
+mod ranges;
 mod refute;
 mod roots;
 mod sample;
@@ -22,8 +24,9 @@ mod tests;
 mod verdict;
 mod witness;
 
+pub use assumptions::{Assumptions, Relation};
 pub use linear::Residues;
-pub use signs::{Assumptions, Relation, Sign};
+pub use signs::Sign;
 pub use target::Motion;
 pub use test::ZeroTest;
 pub use verdict::{Reason, Verdict};

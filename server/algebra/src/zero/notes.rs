@@ -1,8 +1,9 @@
 //! What the zero test knows of each node before any evaluation: bounds on degree and height, sign, flags, plan.
 
+use super::assumptions::Assumptions;
 use super::field::TURN;
 use super::plan::{self, Kind, Made, Plan};
-use super::signs::{self, Assumptions, Sign};
+use super::signs::{self, Sign};
 use crate::arena::{Arena, Expr, Node, Role};
 use crate::budget::{Budget, Stopped};
 use crate::function::Function;

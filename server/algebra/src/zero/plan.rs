@@ -3,8 +3,9 @@
 //! A plan rewrites the node by identities that hold wherever the node has a real value:
 //! angles as rational multiples of base monomials, roots and absolute values factor by factor, logarithms as sums.
 
+use super::assumptions::Assumptions;
 use super::notes::Notes;
-use super::signs::{self, Assumptions, Sign};
+use super::signs::{self, Sign};
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::Budget;
 use crate::function::Function;

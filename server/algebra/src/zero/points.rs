@@ -1,7 +1,8 @@
 //! Points of the finite fields, drawn from keyed hashes of names: never from allocation order.
 
+use super::assumptions::{Assumptions, atom_key};
 use super::field::{Element, FIRST, Field, next_prime};
-use super::signs::{Assumptions, Sign, atom_key};
+use super::signs::Sign;
 use crate::arena::{Arena, Expr, Node, Symbol, mix};
 use std::sync::Arc;
 
@@ -16,6 +17,8 @@ pub(crate) struct Point {
     pub free: bool,
     /// Whether roots and absolute values are drawn like atoms, by what stands in them.
     pub loose: bool,
+    /// Which of the roots of constants in question take their other value.
+    pub flips: u16,
 }
 
 /// The fields in use. The first two are fixed, further ones are drawn when many primes are needed.
@@ -59,22 +62,22 @@ impl Fields {
 
 /// The standard points, by turns over the first two primes.
 pub(crate) fn standard(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false, flips: 0 }
 }
 
 /// A point where roots and absolute values are atoms: what vanishes there vanishes whatever their values are.
 pub(crate) fn loose(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true, flips: 0 }
 }
 
 /// A point where assumptions do not narrow the draw.
 pub(crate) fn unconstrained(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false, flips: 0 }
 }
 
 /// A point over a field of its own.
 pub(crate) fn over(field: u32, k: u32) -> Point {
-    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false }
+    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false, flips: 0 }
 }
 
 /// A hash that depends on every bit of a list of words.

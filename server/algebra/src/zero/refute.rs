@@ -1,13 +1,14 @@
 //! Refutation: a real point where the value is not zero, or atoms without relations.
 
+use super::assumptions::Relation;
 use super::notes::{Note, Notes};
 use super::plan::Plan;
 use super::roots::Radicals;
-use super::signs::Relation;
+use super::table::{Place, Table};
 use super::target::Target;
 use super::test::ZeroTest;
 use super::verdict::{Reason, Verdict};
-use super::witness::{ATTEMPTS, Witness};
+use super::witness::{ATTEMPTS, RealPoint, TRIES, Witness};
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
 use hashbrown::HashSet;
@@ -22,7 +23,7 @@ impl ZeroTest {
         reason: Reason,
         budget: &mut Budget,
     ) -> Result<Verdict, Stopped> {
-        if let Some(w) = self.witness(arena, target, budget)? {
+        if let Some(w) = self.witness(arena, target, 0, budget)? {
             return Ok(Verdict::Refuted(Some(w)));
         }
         if reason == Reason::NoWitness {
@@ -98,17 +99,23 @@ impl ZeroTest {
     }
 
     /// A real point that satisfies the assumptions and where the value is enclosed away from zero.
-    fn witness(
+    pub(super) fn witness(
         &mut self,
         arena: &mut Arena,
         target: &Target<'_>,
+        flips: u16,
         budget: &mut Budget,
     ) -> Result<Option<Witness>, Stopped> {
+        let mut tries = 0;
         for k in 0..ATTEMPTS {
+            if tries == TRIES {
+                break;
+            }
             if !self.point_fits(arena, k, budget)? {
                 continue;
             }
-            let v = target.enclosure(self, arena, k, budget)?;
+            tries += 1;
+            let v = target.enclosure(self, arena, (k, flips), budget)?;
             if v.excludes_zero() {
                 return Ok(Some(Witness { point: k, lower: v.lo, upper: v.hi }));
             }
@@ -122,9 +129,11 @@ impl ZeroTest {
             return Ok(fits);
         }
         let mut fits = true;
+        let mut table = Table::sparse(RealPoint { attempt: k, negated: Vec::new() });
         for (e, relation) in self.facts.facts().to_vec() {
             self.notes.analyse(arena, &self.facts, e, budget)?;
-            let v = self.real_value(arena, e, k, budget)?;
+            let at = Place { arena, notes: &self.notes, facts: &self.facts };
+            let v = table.value(at, e, budget)?;
             // A member at a symbolic index stands for all of them, which are drawn inside their bounds.
             let family = matches!(arena.node(e), Node::Member { .. });
             fits &= family

@@ -23,6 +23,8 @@ pub(super) struct Radicals {
     pub signs: Vec<Expr>,
     /// Nested roots and roots of constants: each may hide a relation.
     pub hidden: usize,
+    /// Those among them that are constants: what stands under the roots.
+    pub constants: Vec<Expr>,
 }
 
 /// Ranks that have been found, by the sorted roots and the field.
@@ -113,6 +115,8 @@ impl Radicals {
             }
         }
         out.hidden = constants.len();
+        out.constants = constants.iter().copied().filter(|e| test.notes.note(*e).flags & Notes::ATOMS == 0).collect();
+        out.constants.sort_by_key(|e| (arena.key(*e), e.index()));
         if out.hidden == 0 && list.iter().any(|e| test.notes.note(*e).flags & Notes::HIDDEN != 0) {
             out.hidden = 1;
         }

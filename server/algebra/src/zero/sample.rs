@@ -123,7 +123,76 @@ impl ZeroTest {
         if let Err(reason) = need(note, found.roots.len() + found.signs.len()) {
             return Ok(Sampled::Unseen(reason));
         }
+        if found.signs.is_empty()
+            && relations == found.constants.len()
+            && self.only_branch(arena, target, note, &found, budget)?
+        {
+            return Ok(Sampled::Zero);
+        }
         self.sample_related(arena, target, &found, relations, budget)
+    }
+
+    /// Roots of constants, such as √(5 + 2√6): if the product of the values for both signs of each vanishes, so does
+    /// one of its factors; and it is the real one if all others are not zero at some real point.
+    fn only_branch(
+        &mut self,
+        arena: &mut Arena,
+        target: &Target<'_>,
+        note: &Note,
+        found: &Radicals,
+        budget: &mut Budget,
+    ) -> Result<bool, Stopped> {
+        let branches = 1u16 << found.constants.len();
+        let mut wide = *note;
+        wide.num *= branches as f32;
+        wide.tall *= branches as f32;
+        let Ok(need) = need(&wide, found.roots.len()) else { return Ok(false) };
+        self.flippable = found.constants.clone();
+        let result = self.sample_branches(arena, target, branches, &need, budget);
+        self.tables.retain(|p, _| p.flips == 0);
+        self.real.retain(|(_, flips), _| *flips == 0);
+        self.flippable.clear();
+        result
+    }
+
+    fn sample_branches(
+        &mut self,
+        arena: &mut Arena,
+        target: &Target<'_>,
+        branches: u16,
+        need: &Need,
+        budget: &mut Budget,
+    ) -> Result<bool, Stopped> {
+        for flips in 1..branches {
+            if self.witness(arena, target, flips, budget)?.is_none() {
+                return Ok(false);
+            }
+        }
+        let (mut seen, mut k) = (0, 0);
+        // A prime of its own for each point.
+        while seen < need.points + need.shared + need.own {
+            if k > 2 * POLES + 4 * seen {
+                return Ok(false);
+            }
+            let field = self.fields.drawn(0x100 + k as u64);
+            let mut vanishes = Some(false);
+            for flips in 0..branches {
+                let point = Point { flips, ..points::over(field, k + 16) };
+                let v = target.residue(self, arena, point, budget);
+                self.tables.remove(&point);
+                match v? {
+                    At::Value(v) => vanishes = vanishes.map(|x| x || v.is_zero()),
+                    _ => vanishes = None,
+                }
+            }
+            match vanishes {
+                Some(false) => return Ok(false),
+                Some(true) => seen += 1,
+                None => {}
+            }
+            k += 1;
+        }
+        Ok(true)
     }
 
     /// How many relations roots may have; 0 is a proof that there are none.

@@ -1,11 +1,12 @@
 //! Values of nodes at a point, kept by the node's place in the arena, so that an edit evaluates new nodes only.
 
+use super::assumptions::Assumptions;
 use super::notes::Notes;
 use super::plan::Plan;
 use super::points::{Env, Index, NO_ENV, index, level};
-use super::signs::Assumptions;
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
+use hashbrown::HashMap;
 
 /// Ranges from this length on are first looked at with a free index.
 const LONG: i64 = 64;
@@ -40,9 +41,10 @@ pub(crate) trait Domain {
     fn symbolic_sum(&self, at: Place<'_>, e: Expr) -> Self::Value;
 }
 
-/// The values of all nodes at one point.
+/// The values of all nodes at one point: by the node's place, or sparsely where few nodes are asked for.
 pub(crate) struct Values<V> {
     list: Vec<V>,
+    sparse: Option<HashMap<Expr, V>>,
     unset: V,
 }
 
@@ -50,7 +52,20 @@ impl<V: Copy + PartialEq> Values<V> {
     /// The value of a node.
     #[inline]
     pub fn get(&self, e: Expr) -> V {
-        self.list.get(e.index()).copied().unwrap_or(self.unset)
+        match &self.sparse {
+            None => self.list.get(e.index()).copied().unwrap_or(self.unset),
+            Some(map) => map.get(&e).copied().unwrap_or(self.unset),
+        }
+    }
+
+    #[inline]
+    fn put(&mut self, e: Expr, v: V) {
+        match &mut self.sparse {
+            None => self.list[e.index()] = v,
+            Some(map) => {
+                map.insert(e, v);
+            }
+        }
     }
 
     #[inline]
@@ -69,7 +84,12 @@ pub(crate) struct Table<D: Domain> {
 impl<D: Domain> Table<D> {
     /// No node is evaluated.
     pub fn new(domain: D) -> Table<D> {
-        Table { domain, values: Values { list: Vec::new(), unset: D::UNSET } }
+        Table { domain, values: Values { list: Vec::new(), sparse: None, unset: D::UNSET } }
+    }
+
+    /// No node is evaluated, and few will be.
+    pub fn sparse(domain: D) -> Table<D> {
+        Table { domain, values: Values { list: Vec::new(), sparse: Some(HashMap::new()), unset: D::UNSET } }
     }
 
     /// The value of a node that has a note. Costs one visit per node that is new at this point.
@@ -77,7 +97,7 @@ impl<D: Domain> Table<D> {
         if self.values.is_set(e) {
             return Ok(self.values.get(e));
         }
-        if self.values.list.len() < at.arena.len() {
+        if self.values.sparse.is_none() && self.values.list.len() < at.arena.len() {
             self.values.list.resize(at.arena.len(), D::UNSET);
         }
         let mut stack = vec![e];
@@ -95,7 +115,7 @@ impl<D: Domain> Table<D> {
             if stack.len() == before {
                 budget.charge(1)?;
                 let v = self.compute(at, x, &NO_ENV, budget)?;
-                self.values.list[x.index()] = v;
+                self.values.put(x, v);
                 stack.pop();
             }
         }
@@ -131,7 +151,7 @@ impl<D: Domain> Table<D> {
             // A summand that vanishes at a free index vanishes at every number.
             inner[k] = None;
             let v = self.summand(at, *body, order, &inner, budget);
-            order.iter().for_each(|x| self.values.list[x.index()] = D::UNSET);
+            order.iter().for_each(|x| self.values.put(*x, D::UNSET));
             if v? == D::ZERO {
                 return Ok(D::ZERO);
             }
@@ -152,7 +172,7 @@ impl<D: Domain> Table<D> {
             sum = self.domain.plus(sum, v);
         }
         // A value that depends on the index is no value of the node.
-        order.iter().for_each(|x| self.values.list[x.index()] = D::UNSET);
+        order.iter().for_each(|x| self.values.put(*x, D::UNSET));
         stopped.map_or(Ok(sum), Err)
     }
 
@@ -168,7 +188,7 @@ impl<D: Domain> Table<D> {
         budget.charge(order.len() + 1)?;
         for &x in order {
             let v = self.compute(at, x, env, budget)?;
-            self.values.list[x.index()] = v;
+            self.values.put(x, v);
         }
         Ok(self.values.get(body))
     }

@@ -160,12 +160,12 @@ impl Target<'_> {
         }))
     }
 
-    /// The enclosure at a real point.
+    /// The enclosure at a real point, given by its number and the roots that take their other value.
     pub fn enclosure(
         &self,
         test: &mut ZeroTest,
         arena: &Arena,
-        point: u32,
+        point: (u32, u16),
         budget: &mut Budget,
     ) -> Result<Interval, Stopped> {
         let matrix = |test: &mut ZeroTest, rows: &[Vec<Expr>], extra: Option<&[Expr]>, budget: &mut Budget| {

@@ -1,5 +1,6 @@
 //! The zero test: its tables, and what can be asked.
 
+use super::assumptions::Assumptions;
 use super::evaluate::{FieldPoint, exists};
 use super::field::Element;
 use super::interval::Interval;
@@ -8,7 +9,7 @@ use super::notes::Notes;
 use super::points::{self, Fields, NO_ENV, Point};
 use super::roots::{Radicals, RankMemo};
 use super::sample::{self, Sampled};
-use super::signs::{Assumptions, Sign};
+use super::signs::Sign;
 use super::table::{Place, Table};
 use super::target::{At, Motion, Target};
 use super::verdict::{Reason, Verdict};
@@ -26,7 +27,9 @@ pub struct ZeroTest {
     pub(super) notes: Notes,
     pub(super) fields: Fields,
     pub(super) tables: HashMap<Point, Table<FieldPoint>>,
-    pub(super) real: Vec<Table<RealPoint>>,
+    pub(super) real: HashMap<(u32, u16), Table<RealPoint>>,
+    /// Roots of constants that may hide relations, while they are looked at.
+    pub(super) flippable: Vec<Expr>,
     /// Whether the real points satisfy the assumptions, as far as that has been looked at.
     pub(super) fits: Vec<Option<bool>>,
     pub(super) ranks: RankMemo,
@@ -45,7 +48,8 @@ impl ZeroTest {
             notes: Notes::new(),
             fields: Fields::new(),
             tables: HashMap::new(),
-            real: (0..ATTEMPTS).map(|attempt| Table::new(RealPoint { attempt })).collect(),
+            real: HashMap::new(),
+            flippable: Vec::new(),
             fits: vec![None; ATTEMPTS as usize],
             ranks: RankMemo::default(),
         }
@@ -242,11 +246,11 @@ impl ZeroTest {
         point: Point,
         budget: &mut Budget,
     ) -> Result<Option<Element>, Stopped> {
-        let fields = &self.fields;
-        let table = self
-            .tables
-            .entry(point)
-            .or_insert_with(|| Table::new(FieldPoint { point, field: fields.get(point.field) }));
+        let (fields, flippable) = (&self.fields, &self.flippable);
+        let table = self.tables.entry(point).or_insert_with(|| {
+            let domain = FieldPoint { point, field: fields.get(point.field), negated: flipped(flippable, point.flips) };
+            if point.free { Table::sparse(domain) } else { Table::new(domain) }
+        });
         let at = Place { arena, notes: &self.notes, facts: &self.facts };
         let v = table.value(at, e, budget)?;
         Ok(exists(v).then_some(v))
@@ -257,16 +261,26 @@ impl ZeroTest {
         &mut self,
         arena: &Arena,
         e: Expr,
-        k: u32,
+        (k, flips): (u32, u16),
         budget: &mut Budget,
     ) -> Result<Interval, Stopped> {
         let at = Place { arena, notes: &self.notes, facts: &self.facts };
-        self.real[k as usize].value(at, e, budget)
+        let flippable = &self.flippable;
+        let table = self
+            .real
+            .entry((k, flips))
+            .or_insert_with(|| Table::new(RealPoint { attempt: k, negated: flipped(flippable, flips) }));
+        table.value(at, e, budget)
     }
 
     /// The coordinates of a witness: the atoms of the expression with their values, ordered as in the arena.
     pub fn witness_values(&self, arena: &Arena, e: Expr, witness: &Witness) -> Vec<(Expr, Rational)> {
-        let point = RealPoint { attempt: witness.point };
+        let point = RealPoint { attempt: witness.point, negated: Vec::new() };
         arena.atoms(e).into_iter().filter_map(|x| Some((x, point.atom(arena, &self.facts, x, &NO_ENV)?))).collect()
     }
+}
+
+/// Those of a list whose bits are set.
+fn flipped(list: &[Expr], flips: u16) -> Vec<Expr> {
+    list.iter().enumerate().filter(|(k, _)| flips >> k & 1 == 1).map(|(_, e)| *e).collect()
 }

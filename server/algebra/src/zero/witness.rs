@@ -1,8 +1,10 @@
 //! Real points: where interval arithmetic encloses no zero, a value is proved to be different from zero.
 
+use super::assumptions::{Assumptions, atom_key};
 use super::interval::{Interval, combine};
+use super::plan::Plan;
 use super::points::{Env, Index, hash, index, level};
-use super::signs::{Assumptions, Range, atom_key};
+use super::ranges::Range;
 use super::table::{Domain, Place, Values};
 use crate::arena::{Arena, Expr, Node, Role, Symbol};
 use crate::rational::Rational;
@@ -21,10 +23,15 @@ pub struct Witness {
 /// The point number `attempt` of those that are tried, in this order.
 pub(crate) struct RealPoint {
     pub attempt: u32,
+    /// What stands under the roots that take their other value.
+    pub negated: Vec<Expr>,
 }
 
-/// How many points are tried.
-pub(crate) const ATTEMPTS: u32 = 24;
+/// How many points are looked at, for one that satisfies the assumptions.
+pub(crate) const ATTEMPTS: u32 = 1000;
+
+/// At how many of them a value is enclosed.
+pub(crate) const TRIES: u32 = 20;
 
 impl RealPoint {
     /// A short rational for an atom, inside its bounds.
@@ -160,7 +167,14 @@ impl Domain for RealPoint {
                 let args: Vec<Interval> = args.iter().map(|x| values.get(*x)).collect();
                 self.unspecified(key, orders, &args)
             }
-            _ => combine(at.arena, e, &mut |x| values.get(x)),
+            _ => {
+                let v = combine(at.arena, e, &mut |x| values.get(x));
+                let turned = |p: &Plan| p.factors().iter().filter(|f| self.negated.contains(&f.base)).count();
+                match at.notes.plan(e) {
+                    Some(p) if !self.negated.is_empty() && turned(p) % 2 == 1 => v.negate(),
+                    _ => v,
+                }
+            }
         }
     }
 }
@@ -182,9 +196,9 @@ mod tests {
     #[test]
     fn choices_respect_bounds() {
         let r = |n, d| Some((Rational::new(n, d).unwrap(), true));
-        for attempt in 0..ATTEMPTS {
+        for attempt in 0..100 {
             for key in 0..50 {
-                let p = RealPoint { attempt };
+                let p = RealPoint { attempt, negated: Vec::new() };
                 let v = p.choose(&Range { lower: r(0, 1), upper: r(1, 3), nonzero: false }, key);
                 assert!(v > Rational::ZERO && v < Rational::new(1, 3).unwrap());
                 assert!(p.choose(&Range { lower: r(0, 1), upper: None, nonzero: false }, key).signum() > 0);

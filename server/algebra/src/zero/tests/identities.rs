@@ -529,3 +529,85 @@ fn long_ranges() {
         }
     }
 }
+
+#[test]
+fn ordered_parameters_have_a_witness() {
+    let l = &mut Lab::new();
+    let m: Vec<Expr> = (0..5).map(|k| l.x(&format!("m{k}"))).collect();
+    for k in 1..5 {
+        let gap = l.arena.sub(m[k], m[k - 1]);
+        l.positive(gap);
+    }
+    l.positive(m[0]);
+    different(l, m[3], m[1]);
+    let gap = l.arena.sub(m[1], m[0]);
+    let abs = l.call(Function::Abs, gap);
+    equal(l, abs, gap);
+}
+
+#[test]
+fn known_probes() {
+    let l = &mut Lab::new();
+    let (x, pi, one) = (l.x("x"), l.arena.pi(), Arena::ONE);
+    // tan(x/2) = sin x/(1 + cos x).
+    let half = l.over(x, 2);
+    let (t, s, c) = (l.call(Function::Tan, half), l.call(Function::Sin, x), l.call(Function::Cos, x));
+    let den = l.arena.add(one, c);
+    let q = l.arena.div(s, den);
+    equal(l, t, q);
+    // cos(π/7) − cos(2π/7) + cos(3π/7) = 1/2.
+    let cosine = |l: &mut Lab, k: i64| {
+        let a = l.arena.scale(pi, &Rational::new(k, 7).unwrap());
+        l.call(Function::Cos, a)
+    };
+    let (a, b, d) = (cosine(l, 1), cosine(l, 2), cosine(l, 3));
+    let sum = l.arena.linear(&[(a, Rational::ONE), (b, Rational::MINUS_ONE), (d, Rational::ONE)]);
+    let want = l.over(one, 2);
+    equal(l, sum, want);
+    // asin(sin x) = x and atan x + atan(1/x) = π/2 on a part of the line only.
+    let back = l.call(Function::Asin, s);
+    different(l, back, x);
+    let inverse = l.arena.pow(x, -1);
+    let (a, b) = (l.call(Function::Atan, x), l.call(Function::Atan, inverse));
+    let (sum, quarter) = (l.arena.add(a, b), l.over(pi, 2));
+    different(l, sum, quarter);
+    // 10⁻⁶⁰ x + sin² x + cos² x − 1: too small for a double, yet not zero.
+    let (s2, c2) = (l.arena.pow(s, 2), l.arena.pow(c, 2));
+    let tiny = l.arena.scale(x, &Rational::from_decimal("1", -60, 100).unwrap());
+    let sum = l.arena.sum(&[tiny, s2, c2]);
+    assert!(l.difference(sum, one).is_refuted());
+    // exp(π √163) is no integer; doubles cannot tell, so nothing is said.
+    let (n, root) = (l.n(262_537_412_640_768_744), l.n(163));
+    let root = l.arena.sqrt(root);
+    let p = l.arena.mul(pi, root);
+    let e = l.call(Function::Exp, p);
+    undecided(l, e, n, Reason::Functions);
+}
+
+#[test]
+fn nested_roots_of_numbers() {
+    let l = &mut Lab::new();
+    let (two, three, six) = (l.n(2), l.n(3), l.n(6));
+    let (r2, r3, r6) = (l.arena.sqrt(two), l.arena.sqrt(three), l.arena.sqrt(six));
+    // √(5 + 2√6) = √2 + √3, √(5 − 2√6) = √3 − √2.
+    let five = l.n(5);
+    let twice = l.times(2, r6);
+    let (plus, minus) = (l.arena.add(five, twice), l.arena.sub(five, twice));
+    let (a, b) = (l.arena.sqrt(plus), l.arena.sqrt(minus));
+    let (sum, gap, wrong) = (l.arena.add(r2, r3), l.arena.sub(r3, r2), l.arena.sub(r2, r3));
+    equal(l, a, sum);
+    equal(l, b, gap);
+    different(l, b, wrong);
+    let product = l.arena.mul(a, b);
+    equal(l, product, Arena::ONE);
+    // With names beside them.
+    let x = l.x("x");
+    let (ax, sx) = (l.arena.mul(a, x), l.arena.mul(sum, x));
+    equal(l, ax, sx);
+    // Independent: √(1 + √2).
+    let inner = l.arena.add(Arena::ONE, r2);
+    let r = l.arena.sqrt(inner);
+    let s = l.arena.pow(r, 2);
+    equal(l, s, inner);
+    different(l, r, inner);
+}
