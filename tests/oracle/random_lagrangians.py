@@ -226,6 +226,24 @@ class Model:
         return r.choice([one, one, ("+", one, ("*", self.coefficient(), ("v", r.choice(self.coords)))),
                          ("D", self.function(1)), ("*", self.function(0), one)])
 
+    def hidden_zero(self):
+        """An identity, all on one side."""
+        r = self.rng
+        x, y = ("q", r.choice(self.coords)), r.choice([("q", r.choice(self.coords)), self.parameter()])
+        minus, two, p = num(-1), Fraction(2), self.positive(("q", r.choice(self.coords)))
+        sin, cos = (lambda a: ("f", "sin", a)), (lambda a: ("f", "cos", a))
+        return r.choice([
+            ("+", ("^", sin(x), two), ("^", cos(x), two), minus),
+            ("+", sin(("+", x, y)), ("*", minus, sin(x), cos(y)), ("*", minus, cos(x), sin(y))),
+            ("+", cos(("*", num(2), x)), minus, ("*", num(2), ("^", sin(x), two))),
+            ("+", ("^", ("f", "cosh", x), two), ("*", minus, ("^", ("f", "sinh", x), two)), minus),
+            ("+", ("*", ("f", "exp", x), ("f", "exp", ("*", minus, x))), minus),
+            ("+", ("^", ("f", "sqrt", p), two), ("*", minus, p)),
+            ("+", ("^", p, Fraction(3, 2)), ("*", minus, p, ("f", "sqrt", p))),
+            ("+", ("^", ("+", x, y), two), ("*", minus, ("^", x, two)), ("*", num(-2), x, y), ("*", minus, ("^", y, two))),
+            ("+", ("f", "tan", x), ("*", minus, sin(x), ("^", cos(x), Fraction(-1)))),
+            ("+", ("*", p, ("^", p, Fraction(-1))), minus)])
+
     def draw(self):
         r = self.rng
         for i, q in enumerate(self.coords):
@@ -258,6 +276,9 @@ class Model:
                 ("*", num(Fraction(1, 2)), self.parameter(), ("^", self.speed(), Fraction(2))),
                 ("*", num(Fraction(1, 4)), ("^", ("v", self.coords[0]), Fraction(4))),
                 ("*", self.parameter(), ("f", "sqrt", self.positive(("v", self.coords[-1]))))])))
+        if r.random() < 0.3:                       # a term that is zero, whatever it depends on
+            self.terms.append((r.choice(["kinetic", "potential", "lagrangian"]), "nothing",
+                               ("*", self.parameter(), r.choice([("q", r.choice(self.coords)), ("v", r.choice(self.coords)), self.function(0)]), self.hidden_zero())))
         zero, one = num(0), num(1)
         eta = dict.fromkeys(self.coords, zero)
         self.symmetries.append(("delay", one, eta))
