@@ -75,8 +75,13 @@ impl Reader<'_> {
         let end = (self.at..self.pieces.len())
             .find(|at| self.pieces[*at].depth == 0 && stop(self, *at))
             .unwrap_or(self.pieces.len());
-        let begins_unit = |kind| matches!(kind, Kind::Word | Kind::Degree | Kind::Prime(_));
-        let unit = (self.at..end).find(|at| self.pieces[*at].depth == 0 && begins_unit(self.pieces[*at].kind));
+        let begins_unit = |at: &usize| match self.pieces[*at].kind {
+            Kind::Word | Kind::Degree | Kind::Prime(_) => true,
+            // `3 1/(m s)`
+            Kind::Open => self.kind(at + 1) == Some(Kind::Word),
+            _ => false,
+        };
+        let unit = (self.at..end).find(|at| self.pieces[*at].depth == 0 && begins_unit(at));
         let mut start = unit.unwrap_or(end);
         if unit.is_some() && start > self.at && self.kind(start - 1) == Some(Kind::Slash) {
             let one =
@@ -254,8 +259,13 @@ impl Reader<'_> {
     fn quotient_unit(&mut self, from: usize, slash: usize, end: usize) {
         let span = self.pieces[from].span.to(self.pieces[end - 1].span);
         let text = |from: usize, to: usize| {
-            let (first, last) = (self.pieces[from].span.start, self.pieces[to - 1].span.end);
-            self.text[first as usize..last as usize].trim_matches(['/', '*', '·']).replace('/', " ").trim().to_owned()
+            // Above the `/` of `4 /m s` stands nothing.
+            let (Some(first), true) = (self.piece(from), from < to) else { return String::new() };
+            self.text[first.span.start as usize..self.pieces[to - 1].span.end as usize]
+                .trim_matches(['/', '*', '·'])
+                .replace('/', " ")
+                .trim()
+                .to_owned()
         };
         let (above, first, rest) = (text(from, slash), text(slash + 1, self.at), text(self.at, end));
         let twice = self.kind(self.at) == Some(Kind::Slash);
@@ -263,7 +273,7 @@ impl Reader<'_> {
         let below = format!("{above}/({first} {rest})");
         slip.mend(format!("write {below}"), span, below);
         if !twice {
-            let beside = format!("{above} {rest}/{first}");
+            let beside = format!("{above} {rest}/{first}").trim_start().to_owned();
             slip.mend(format!("write {beside}"), span, beside);
         }
         self.at = end;

@@ -55,6 +55,8 @@ fn units() {
     check("parameter k = 2 N/(m s)", "parameter k = 2 {N m^-1 s^-1}");
     check("parameter k = 2 V/m^(1/2)", "parameter k = 2 {V m^(-1/2)}");
     check("parameter ν: 1/s = 3 1/s, μ = 4/s", "parameter ν: s^-1 = 3 {s^-1}, μ = 4 {s^-1}");
+    check("parameter k = 3 1/(m s), l = 4/(m s)", "parameter k = 3 {m^-1 s^-1}, l = 4 {m^-1 s^-1}");
+    check("parameter k = 3 (N m)/s", "parameter k = 3 {N m s^-1}");
     check("parameter l = 3 µm", "parameter l = 3 {μm}");
     check("parameter T = 21 °C", "parameter T = 21 {°C}");
     check("parameter n: 1 = 3", "parameter n:  = 3");

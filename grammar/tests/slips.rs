@@ -218,6 +218,7 @@ fn values_and_units() {
     check("parameter m = ⟦3 4⟧ kg", "value-form", "-");
     check("parameter b = 3 ⟦N/m s⟧", "quotient-unit", "parameter b = 3 N/(m s)");
     check("parameter b: ⟦N/m/s⟧ = 2", "quotient-unit", "parameter b: N/(m s) = 2");
+    check("parameter b = 3 ⟦/m s⟧", "quotient-unit", "parameter b = 3 /(m s)");
     check("parameter b = 30⟦'⟧", "value-form", "parameter b = 30′");
     check("let a = 30⟦°⟧", "unit-in-formula", "-");
 }
