@@ -16,6 +16,8 @@ use std::collections::HashMap;
 use std::ops::Range;
 use std::sync::Arc;
 
+/// At most so many findings are told.
+const MOST_FINDINGS: usize = 1000;
 /// At most so many findings of an included file are told.
 const SHOWN: usize = 3;
 
@@ -387,7 +389,29 @@ fn findings(reading: &Reading) -> Vec<Finding> {
     }
     own.sort_by(|a, b| (a.range.start, a.range.end, a.code).cmp(&(b.range.start, b.range.end, b.code)));
     own.dedup_by(|a, b| a.code == b.code && a.range == b.range && a.message == b.message);
-    own
+    shortened_list(own)
+}
+
+/// The gravest findings where there are too many to be read, with one that says so.
+fn shortened_list(mut all: Vec<Finding>) -> Vec<Finding> {
+    if all.len() <= MOST_FINDINGS {
+        return all;
+    }
+    let left_out = all.len() - MOST_FINDINGS;
+    all.sort_by_key(|f| f.severity);
+    all.truncate(MOST_FINDINGS);
+    all.sort_by(|a, b| (a.range.start, a.range.end, a.code).cmp(&(b.range.start, b.range.end, b.code)));
+    let range = all.last().map_or(0..0, |f| f.range.clone());
+    all.push(Finding {
+        code: codes::MORE_FINDINGS,
+        severity: Severity::Information,
+        message: format!("there are {left_out} more findings"),
+        help: None,
+        range,
+        related: Vec::new(),
+        fixes: Vec::new(),
+    });
+    all
 }
 
 /// What is wrong in an included file, told at its `include`.

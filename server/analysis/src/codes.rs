@@ -44,6 +44,9 @@ codes! {
     READ_FUNCTION_OF_PARAMETER = "read-function-of-parameter", "how `cos Ω t` was read";
     // Items.
     NOT_A_NUMBER = "not-a-number", "a vector where the item needs a number";
+    ACCELERATION = "acceleration", "an acceleration in a term, force, constraint or claim";
+    NOT_LINEAR = "not-linear", "a constraint or a force's quantity that is not linear in the velocities";
+    EMPTY_SUM = "empty-sum", "a sum whose range is empty for some values of an outer index";
     FORCE_TARGET = "force-target", "a force that acts on nothing which moves";
     NOT_A_COORDINATE = "not-a-coordinate", "something other than a coordinate where one is needed";
     TRANSFORMED_TWICE = "transformed-twice", "a coordinate that a transformation names twice";
@@ -62,17 +65,21 @@ codes! {
     INCLUDE_SIZE = "include-size", "included files that are too many, too large or too deeply nested";
     INCLUDED_ITEM = "included-item", "an item of an included file that is not taken in";
     INCLUDED_FINDING = "included-finding", "something wrong in an included file";
+    MORE_FINDINGS = "more-findings", "a file with more findings than are told";
     // Mechanics.
     NOT_CYCLIC = "not-cyclic", "a coordinate claimed cyclic on which a term depends";
-    BROKEN_SYMMETRY = "broken-symmetry", "an expected symmetry that a term breaks";
-    UNDECIDED_SYMMETRY = "undecided-symmetry", "a symmetry about which nothing could be proved";
-    NOT_BROKEN = "not-broken", "a symmetry said to be broken whose charge is conserved";
-    NOT_IDENTITY = "not-identity", "a transformation that is not the identity at ε = 0";
-    TAKEN_CHARGE = "taken-charge", "a symmetry of the Lagrangian whose charge a force or damping changes";
+    SYMMETRY_BROKEN = "symmetry-broken", "an expected symmetry that a term breaks";
+    BROKEN_SYMMETRY_HOLDS = "broken-symmetry-holds", "a symmetry declared broken whose charge is conserved";
+    GAUGE_NOT_FOUND = "gauge-not-found", "a symmetry up to a total time derivative of which no closed form was found";
+    CHARGE_TAKEN = "charge-taken", "a symmetry of the Lagrangian whose charge a force or damping changes";
+    NOT_THE_IDENTITY = "not-the-identity", "a transformation that is not the identity at ε = 0";
+    TRANSFORMATION_OF_VELOCITIES = "transformation-of-velocities", "a transformation whose image contains velocities";
+    NO_COORDINATE = "no-coordinate", "a transformation of something that is neither a coordinate nor the time";
+    SINGLE_MEMBER = "single-member", "a transformation of one member of a large family";
     NOT_CONSERVED = "not-conserved", "a claimed constant that is none";
-    UNDECIDED_CLAIM = "undecided-claim", "a claimed constant about which nothing could be proved";
-    SINGULAR_MASS = "singular-mass", "a mass matrix that is singular everywhere";
-    INDEFINITE_MASS = "indefinite-mass", "a mass matrix that is not positive definite";
+    UNDECIDED = "undecided", "a claim about which nothing could be proved";
+    SINGULAR_MASS_MATRIX = "singular-mass-matrix", "a mass matrix that is singular everywhere";
+    MASS_MATRIX_NOT_POSITIVE = "mass-matrix-not-positive", "a mass matrix that is not positive definite";
     EXPLICIT_TIME = "explicit-time", "explicit time dependence that ends the conservation of the energy function";
     NOT_PERIODIC = "not-periodic", "a potential that is not 2π-periodic in an angle";
     UNDEFINED_EVERYWHERE = "undefined-everywhere", "a denominator that is zero at every point";
@@ -103,5 +110,16 @@ mod tests {
             explanation("two-vectors"),
             Some(CODES.iter().find(|c| c.name == "two-vectors").unwrap().explanation)
         );
+    }
+
+    #[test]
+    fn the_codes_of_the_mechanics_are_in_the_table() {
+        let source = include_str!("verdicts.rs");
+        let kebab = |t: &&str| t.contains('-') && t.chars().all(|c| c.is_ascii_lowercase() || c == '-');
+        let found: Vec<&str> = source.split('"').skip(1).step_by(2).filter(kebab).collect();
+        assert!(found.len() > 10);
+        for code in found {
+            assert!(explanation(code).is_some(), "{code} is not in the table");
+        }
     }
 }

@@ -24,8 +24,9 @@ use std::sync::Arc;
 const ITEM_NODES: u64 = 2_000_000;
 /// Nodes that all formulas of a model may visit or make.
 const MODEL_NODES: u64 = 40_000_000;
-/// A new epoch begins when the arena has more nodes than this.
-const EPOCH_NODES: usize = 6_000_000;
+/// A new epoch begins when the arena has more nodes than this, and many times those that it began with.
+const EPOCH_NODES: usize = 300_000;
+const EPOCH_GROWTH: usize = 4;
 /// Indices have at most so many values.
 const MAX_MEMBERS: i64 = 1_000_000_000;
 /// Results are kept for so many checks after their last use.
@@ -37,6 +38,10 @@ pub struct Session {
     pub(crate) arena: Arena,
     /// The number of this epoch; all expressions die with it.
     pub(crate) epoch: u64,
+    /// Whether this epoch has had a check.
+    begun: bool,
+    /// The nodes of this epoch after its first check.
+    base: Option<usize>,
     generation: u64,
     ids: u64,
     parsed: HashMap<(Arc<str>, u64), (Arc<Parsed>, u64)>,
@@ -73,6 +78,8 @@ impl Session {
         Session {
             arena: Arena::new(),
             epoch: 0,
+            begun: false,
+            base: None,
             generation: 0,
             ids: 0,
             parsed: HashMap::new(),
@@ -92,9 +99,16 @@ impl Session {
     pub fn check(&mut self, path: &str, text: &str, files: &dyn Files) -> Checked {
         self.generation += 1;
         self.work = (0, 0);
-        if self.arena.len() > EPOCH_NODES {
+        // What the model needs is known after its first check and derivation.
+        if self.begun && self.base.is_none() {
+            self.base = Some(self.arena.len());
+        }
+        self.begun = true;
+        let needed = self.base.unwrap_or(0).saturating_mul(EPOCH_GROWTH);
+        if self.arena.len() > EPOCH_NODES.max(needed) {
             self.arena = Arena::new();
             self.epoch += 1;
+            (self.begun, self.base) = (true, None);
             self.definitions.clear();
             self.lowered.clear();
         }
@@ -163,12 +177,13 @@ impl Session {
             }
         }
         let mut findings = Vec::new();
-        for (file, k, finding) in refused {
-            findings.push((starts[file] + k, finding));
-        }
         let paths: Vec<Arc<str>> = sources.iter().map(|s| s.path.clone()).collect();
         let scope = Scope::collect(&entries, &paths);
-        let failed = entries.iter().map(|e| e.parsed.is_faulty()).collect();
+        let mut failed: Vec<bool> = entries.iter().map(|e| e.parsed.is_faulty()).collect();
+        for (file, k, finding) in refused {
+            failed[starts[file] + k] = true;
+            findings.push((starts[file] + k, finding));
+        }
         let meanings = vec![None; entries.len()];
         Reading { sources, entries, scope, meanings, failed, findings }
     }

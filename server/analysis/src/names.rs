@@ -94,6 +94,7 @@ fn undeclared(reading: &mut Reading) {
             one.further.extend(rest.take(SHOWN_USES).map(|s| (at, *s)));
         }
     }
+    let guessed = words_of_faulty(reading);
     for name in order {
         let one = &seen[&name];
         if one.index {
@@ -112,7 +113,8 @@ fn undeclared(reading: &mut Reading) {
             continue;
         }
         reading.scope.declare_implicit(&name);
-        if !one.sound {
+        // It may be declared where the text could not be read; that is told already.
+        if !one.sound || guessed.contains(&name) {
             continue;
         }
         let entry = &reading.entries[one.entry];
@@ -443,6 +445,18 @@ pub(crate) fn is_dimensionless(reading: &Reading) -> bool {
     })
 }
 
+/// The words of items that could not be read: they may be uses or declarations of names.
+fn words_of_faulty(reading: &Reading) -> HashSet<String> {
+    let mut out = HashSet::new();
+    for entry in reading.entries.iter().filter(|e| e.parsed.is_faulty()) {
+        let word = |c: char| {
+            c.is_alphanumeric() || c == '_' || ('₀'..='₉').contains(&c) || !c.is_ascii() && !c.is_whitespace()
+        };
+        out.extend(entry.text.split(|c| !word(c)).filter(|w| !w.is_empty()).map(leastwise_grammar::fold_name));
+    }
+    out
+}
+
 /// Names that nothing uses. A file without terms, claims or runs is there to be included: others use its names.
 pub(crate) fn unused(reading: &mut Reading) {
     let model = |e: &Entry| e.file == 0 && !is_taken_in(&e.parsed.item.kind);
@@ -450,6 +464,8 @@ pub(crate) fn unused(reading: &mut Reading) {
         return;
     }
     let mut used: HashSet<&str> = HashSet::new();
+    let guessed = words_of_faulty(reading);
+    used.extend(guessed.iter().map(String::as_str));
     for entry in &reading.entries {
         used.extend(entry.parsed.uses.names.iter().map(|u| u.name.as_str()));
         if let ItemKind::System { options, .. } = &entry.parsed.item.kind {

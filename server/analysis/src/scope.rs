@@ -127,6 +127,9 @@ impl Scope {
     pub fn collect(entries: &[Entry], files: &[Arc<str>]) -> Scope {
         let mut scope = Scope::default();
         for (at, entry) in entries.iter().enumerate() {
+            if entry.file != 0 && !crate::include::is_taken_in(&entry.parsed.item.kind) {
+                continue;
+            }
             match &entry.parsed.item.kind {
                 ItemKind::Coordinate { declared, quantity, .. } => {
                     for (place, d) in declared.iter().enumerate() {

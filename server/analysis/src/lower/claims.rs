@@ -1,11 +1,13 @@
 //! `momentum(q)` and `energy`, which claims may name.
 
-use super::Lowerer;
+use super::{Lowerer, UNROLLED};
 use crate::codes;
 use crate::finding::LocalFinding;
 use crate::values::Value;
-use leastwise_algebra::{Arena, Derivation, Expr, Node, Rational, Role, Stopped};
+use leastwise_algebra::{Arena, Derivation, Expr, Node, Rational, Role, Stopped, Symbol};
 use leastwise_grammar::tree::*;
+use leastwise_mechanics::forms::{at_member, derivative};
+use leastwise_mechanics::model::Coordinate;
 
 impl Lowerer<'_> {
     /// p = ∂L/∂q̇, summed over the terms.
@@ -30,9 +32,31 @@ impl Lowerer<'_> {
             }
             return Value::Missing;
         };
-        let result =
-            linear_in_parts(self.arena, motion.parts, &mut |arena, part| arena.partial(part, atom, self.budget));
+        let family = self.large_family(atom);
+        let result = linear_in_parts(self.arena, motion.parts, &mut |arena, part| match &family {
+            None => arena.partial(part, atom, self.budget),
+            // One form holds for the member: the one whose range it is in.
+            Some((coordinate, index, k)) => {
+                let forms = derivative(arena, part, coordinate, 1, self.budget)?;
+                let form = forms.iter().find(|f| f.range.is_none_or(|(a, b)| (a..=b).contains(k)));
+                form.map_or(Ok(Arena::ZERO), |f| at_member(arena, f.expr, *index, *k, self.budget))
+            }
+        });
         self.checked(result.map(Value::Scalar), span)
+    }
+
+    /// The large family that a velocity belongs to, its index, and which member it is.
+    fn large_family(&mut self, velocity: Expr) -> Option<(Coordinate, Symbol, i64)> {
+        let Node::Jet(s, _) = *self.arena.node(velocity) else { return None };
+        let info = self.arena.info(s).clone();
+        let decl = self.scope.get(&info.name)?;
+        let ((lower, upper), index) = (decl.range?, decl.index.as_ref()?);
+        if upper - lower < UNROLLED {
+            return None;
+        }
+        let family = self.arena.symbol(&info.name, None, Role::Coordinate);
+        let index = self.arena.symbol(&index.text, None, Role::Index);
+        Some((Coordinate::family(family, index, lower, upper), index, info.member?))
     }
 
     /// h = Σ q̇ ∂L/∂q̇ − L. Σ q̇ ∂/∂q̇ is itself a derivation, the one that leaves each velocity as it is.

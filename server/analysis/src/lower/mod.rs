@@ -2,14 +2,20 @@
 //!
 //! Where something is wrong there is one finding, and the value is [`Value::Missing`], about which nothing more is said.
 
+mod assumptions;
 mod calls;
 mod claims;
+mod declarations;
 mod items;
 mod members;
+mod motion;
 mod parts;
 mod products;
+mod runs;
 mod sums;
+mod transformations;
 
+use items::RunMeaning;
 pub(crate) use items::{Lowered, Meaning, Part};
 
 use crate::codes;

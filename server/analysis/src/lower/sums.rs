@@ -96,8 +96,19 @@ impl Lowerer<'_> {
                 (self.arena.integer(a), self.arena.integer(b))
             }
         };
+        let gap = self.arena.sub(upper, lower);
+        if self.arena.as_i64(gap).is_none() && self.extreme(gap, false).is_some_and(|least| least < -1) {
+            let span = range.map_or(index.span, |(a, b)| a.span.to(b.span));
+            let finding = LocalFinding::error(
+                codes::EMPTY_SUM,
+                span,
+                "this range runs backwards for some values of the outer index",
+            )
+            .help("restrict the outer sum to where the range is not empty");
+            self.report(finding);
+            return None;
+        }
         if !uses::mentions(body, &index.text) {
-            let gap = self.arena.sub(upper, lower);
             let count = self.arena.add(gap, Arena::ONE);
             if self.arena.as_i64(count).is_none_or(|n| n > 0) {
                 return Some(Range::Times(count));
@@ -107,7 +118,7 @@ impl Lowerer<'_> {
             (Some(a), Some(b)) => {
                 let count = b.checked_sub(a)?.checked_add(1)?;
                 let large = uses::names_in(body).iter().any(|n| self.scope.get(n).is_some_and(|d| d.large));
-                if count <= 2 || (count <= UNROLLED && !large) {
+                if count <= 4 || (count <= UNROLLED && !large) {
                     Some(Range::Written(a, b))
                 } else {
                     Some(Range::Bound(lower, upper))

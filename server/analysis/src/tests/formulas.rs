@@ -345,3 +345,60 @@ potential A = sum(i in 1..60: sum(j in 1..60: sum(k in 1..60: sum(l in 1..60: si
     );
     assert_eq!(checked.model().terms.len(), 1);
 }
+
+#[test]
+fn accelerations_follow_from_the_equations() {
+    formula(
+        "
+input u
+potential A = m x + k x x''
+#                   ^^^^^^^ acceleration: a potential energy does not contain accelerations
+force b on x = m y''
+#              ^^^^^ acceleration: a force does not contain accelerations
+conserved c = x''
+#             ^^^ acceleration: a claimed constant does not contain accelerations
+force d on x = u''
+",
+    );
+}
+
+#[test]
+fn constraints_and_targets_are_linear_in_the_velocities() {
+    formula(
+        "
+constraint a: x'^2 = y'
+#             ^^^^^^^^^ not-linear: a constraint is linear in the velocities
+constraint b: x' cos θ + y' sin θ = 0
+constraint c: (x' + y')^2 - (x' - y')^2 - 4 x' y' = x'
+force d on x' y' = m
+#          ^^^^^ not-linear: what a force acts on is linear in the velocities
+",
+    );
+}
+
+#[test]
+fn ranges_do_not_run_backwards() {
+    check(
+        "
+index i: 1..100
+coordinate x[i]
+kinetic T = sum(i: x[i]'^2)
+potential A = sum(i: sum(j in i+1..100: x[i] x[j]))
+potential B = sum(i: sum(j in i+2..100: x[i] x[j]))
+#                             ^^^^^^^^ empty-sum: this range runs backwards
+",
+    );
+}
+
+#[test]
+fn numbers_with_units_in_definitions() {
+    check(
+        "
+coordinate s
+parameter m
+let g = 9.81 m/s^2
+#       ^^^^^^^^^^ unit-in-formula: units do not stand in formulas
+kinetic T = 1/2 m s'^2 + g
+",
+    );
+}

@@ -66,3 +66,17 @@ fn an_edit_gives_what_a_new_session_gives() {
         assert_eq!(checked.model().terms.len(), fresh.model().terms.len());
     }
 }
+
+#[test]
+fn the_arena_does_not_grow_without_end() {
+    let mut session = Session::new();
+    let mut largest = 0;
+    for k in 0..3000 {
+        let text = MODEL.replacen("1/2 m x^2", &format!("m sum(i in 1..60: sin({k} x + i y)^2)"), 1);
+        let checked = session.check("a", &text, &NoFiles);
+        assert!(checked.complete);
+        largest = largest.max(session.arena.len());
+    }
+    assert!(session.epoch > 0);
+    assert!(largest < 400_000, "{largest}");
+}

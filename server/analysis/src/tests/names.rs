@@ -337,3 +337,47 @@ kinetic T = x'^2
     assert_eq!(MAX_DEPTH, 32);
     assert!(!checked.complete || checked.model().terms.len() == 1);
 }
+
+#[test]
+fn a_text_that_cannot_be_read_brings_no_further_findings() {
+    check(
+        "
+coordinate x
+parameter m, k
+let broken = k +
+#              ^ missing-operand: 
+kinetic T = 1/2 m x'^2 + broken
+",
+    );
+    // `q` may be meant to be declared in the line that cannot be read.
+    let checked = check_any("coordinate x\nparamete% q\nkinetic T = 1/2 q x'^2\n");
+    assert!(checked.iter().all(|c| *c != "undeclared-name"), "{checked:?}");
+}
+
+fn check_any(text: &str) -> Vec<&'static str> {
+    let checked = crate::database::Session::new().check("a", text, &SITE);
+    assert!(!checked.findings.is_empty());
+    checked.findings.iter().map(|f| f.code).collect()
+}
+
+#[test]
+fn too_many_findings_are_not_all_told() {
+    let text = format!("coordinate x\nkinetic T = x'^2\n{}", "potential = = =\n".repeat(3000));
+    let found = check_any(&text);
+    assert_eq!((found.len(), found.last()), (1001, Some(&"more-findings")));
+}
+
+#[test]
+fn coordinates_of_included_files_are_not_there() {
+    let folder = Folder(&[("other.least", "coordinate q\n")]);
+    check_in(
+        "
+include \"other.least\"
+#       ^^^^^^^^^^^^^ included-finding: `other.least`, line 1: `coordinate` is not taken in
+coordinate x
+kinetic T = x'^2 q
+#                ^ undeclared-name: `q` is not declared
+",
+        &folder,
+    );
+}
