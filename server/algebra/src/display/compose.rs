@@ -417,11 +417,12 @@ impl<'a> Composer<'a> {
 fn orientation(parts: &[Part], odd: bool) -> (bool, bool) {
     let minus = |p: &Part| p.summand.negative;
     let negatives = parts.iter().filter(|p| minus(p)).count();
+    if parts[0].key.level.0 == 2 && negatives < parts.len() {
+        // An acceleration leads and is positive, whatever the others are.
+        return (minus(&parts[0]), odd && parts[0].free.is_some());
+    }
     if negatives == 0 || negatives == parts.len() {
         return (negatives > 0, false);
-    }
-    if parts[0].key.level.0 == 2 {
-        return (minus(&parts[0]), false);
     }
     let coordinates: Vec<&Part> = parts.iter().filter(|p| p.key.kind == 1).collect();
     let rest = parts.iter().filter(|p| p.key.kind != 1).all(|p| matches!(p.key.kind, 2 | 3));

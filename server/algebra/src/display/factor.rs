@@ -21,6 +21,8 @@ pub(crate) enum Collect {
     Accelerations,
     /// Parameters that multiply the same thing.
     Parameters,
+    /// Parameters, then also what the same parameters multiply.
+    Coefficients,
     /// Parameters, then also what multiplies the same acceleration, then the same velocities.
     Motion,
 }
@@ -49,10 +51,17 @@ impl Factoriser<'_> {
     /// The whole job.
     pub fn run(&mut self, p: &Polynomial, collect: Collect, budget: &mut Budget) -> Result<Expr, Stopped> {
         let mut terms = p.clone();
-        if matches!(collect, Collect::Parameters | Collect::Motion) {
+        if matches!(collect, Collect::Parameters | Collect::Coefficients | Collect::Motion) {
             terms = self.collect(
                 terms,
                 &|table, m| m.iter().copied().filter(|f| table.kind(f.0) != Kind::Parameter).collect(),
+                budget,
+            )?;
+        }
+        if collect == Collect::Coefficients {
+            terms = self.collect(
+                terms,
+                &|table, m| m.iter().copied().filter(|f| table.kind(f.0) == Kind::Parameter).collect(),
                 budget,
             )?;
         }
@@ -246,7 +255,7 @@ impl Factoriser<'_> {
     /// - Without accelerations, parts of different degree in the velocities (kinetic, potential) stay apart, unless what
     ///   remains of the kinetic part has no parameters: 1/2 m R² (θ̇² + ω² sin² θ). Parts of the kinetic energy with
     ///   different numbers stay apart, unless the factor goes through it all.
-    /// - With accelerations, a sine alone is not taken out of different motions; inertial terms and forces are joined only together with an acceleration, or for much.
+    /// - With accelerations, a sine alone is taken out of different motions only for much; inertial terms and forces are joined only together with an acceleration, or for much.
     fn suits(&self, terms: &[Term], c: &Candidate) -> bool {
         let quotients: Vec<Monomial> = c.terms.iter().map(|&i| over(&terms[i].monomial, &c.factor)).collect();
         let motion = |m: &Monomial| self.table.motion(m);
@@ -281,11 +290,10 @@ impl Factoriser<'_> {
         let mixed = degrees.iter().any(|d| *d != degrees[0]);
         if self.accelerated {
             let trig = |f: &(u32, i32)| matches!(self.table.kind(f.0), Kind::Sine(_) | Kind::Cosine(_));
-            if mixed && c.factor.iter().all(trig) && c.terms.len() < terms.len() {
-                return false;
-            }
             let still = degrees.iter().any(|d| d.0 == 0 && !d.1);
-            return !mixed || !still || degrees.iter().any(|d| d.1) || c.saving >= 4;
+            let forces = mixed && still && !degrees.iter().any(|d| d.1);
+            let alone = mixed && c.factor.iter().all(trig) && c.terms.len() < terms.len();
+            return !(alone && (forces || c.saving < 5) || forces && c.saving < 4);
         }
         if self.degree < 2 {
             return true;

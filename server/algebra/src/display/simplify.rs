@@ -134,17 +134,27 @@ impl<'a> Simplifier<'a> {
         for (p, expected) in &versions {
             let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
             let degree = p.iter().map(|t| self.table.motion(&t.monomial).0).max().unwrap_or(0);
-            let ways = [Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing];
-            // What is long gains nothing by being collected less.
-            let count = if p.len() > MAX_WAYS { 2 } else { ways.len() };
-            for collect in ways.into_iter().take(count) {
+            let ways: &[Collect] = match (accelerated, p.len() > MAX_WAYS) {
+                // What is long gains nothing by being collected less.
+                (true, true) => &[Collect::Accelerations, Collect::Motion, Collect::Coefficients],
+                (true, false) => &[
+                    Collect::Accelerations,
+                    Collect::Motion,
+                    Collect::Coefficients,
+                    Collect::Parameters,
+                    Collect::Nothing,
+                ],
+                (false, true) => &[Collect::Accelerations, Collect::Motion],
+                (false, false) => &[Collect::Accelerations, Collect::Motion, Collect::Parameters, Collect::Nothing],
+            };
+            for &collect in ways {
                 let e = self.factored(p, collect, budget)?;
                 let mut cost = self.cost(e);
                 if !accelerated && degree == 1 && collect != Collect::Motion {
                     // A momentum is linear in the velocities, and so it reads.
                     cost += 2;
                 }
-                if accelerated && matches!(collect, Collect::Parameters | Collect::Nothing) {
+                if accelerated && !matches!(collect, Collect::Accelerations | Collect::Motion) {
                     // An acceleration in two places must be worth it.
                     cost += 1;
                 }

@@ -5,7 +5,7 @@
 
 use crate::arena::{Arena, Expr};
 use crate::budget::{Budget, Stopped};
-use crate::display::polynomial::{Kind, Monomial, Polynomial, Table, Term, gather, multiply, times};
+use crate::display::polynomial::{Kind, Monomial, Polynomial, Table, Term, gather, multiply, over, times};
 use crate::function::Function;
 use crate::rational::Rational;
 use hashbrown::HashMap;
@@ -143,10 +143,80 @@ impl Rewriter<'_> {
                     }
                 }
             }
+            if let Some(q) = self.contract(&best, budget)?
+                && self.cost(&q) < self.cost(&best)
+            {
+                best = q;
+                improved = true;
+            }
             if !improved {
                 return Ok(best);
             }
         }
+    }
+
+    /// One pair of terms by an addition theorem: cos a cos b + sin a sin b = cos(a − b) and its like, whatever else
+    /// multiplies both. With a = b: cos² − sin² of the doubled angle.
+    fn contract(&mut self, p: &Polynomial, budget: &mut Budget) -> Result<Option<Polynomial>, Stopped> {
+        budget.charge(p.len() * p.len())?;
+        for (i, t) in p.iter().enumerate() {
+            for (j, u) in p.iter().enumerate() {
+                if i == j || t.coefficient.abs() != u.coefficient.abs() {
+                    continue;
+                }
+                let Some(sum) = self.addition(t, u) else { continue };
+                let mut out: Vec<Term> = Vec::with_capacity(p.len());
+                out.extend(p.iter().enumerate().filter(|(k, _)| *k != i && *k != j).map(|(_, x)| x.clone()));
+                out.extend(sum);
+                return Ok(Some(gather(out)));
+            }
+        }
+        Ok(None)
+    }
+
+    /// `t + u` where `t` has cos a cos b or sin a cos b and `u` has sin a sin b or cos a sin b in its place.
+    fn addition(&mut self, t: &Term, u: &Term) -> Option<Vec<Term>> {
+        let quotient = over(&t.monomial, &u.monomial);
+        let equal = t.coefficient == u.coefficient;
+        let mut above: SmallVec<[Kind; 4]> = SmallVec::new();
+        let mut below: SmallVec<[Kind; 4]> = SmallVec::new();
+        let mut taken = Monomial::new();
+        for (a, e) in &quotient {
+            let place = if *e > 0 { &mut above } else { &mut below };
+            for _ in 0..e.unsigned_abs().min(3) {
+                place.push(self.table.kind(*a));
+            }
+            if *e > 0 {
+                taken.push((*a, *e));
+            }
+        }
+        let ([a, b], [c, d]) = (above.as_slice(), below.as_slice()) else { return None };
+        let has = |x: Kind, y: Kind| (*c == x && *d == y) || (*c == y && *d == x);
+        let (f, x, y) = match (*a, *b) {
+            (Kind::Cosine(x), Kind::Cosine(y)) if has(Kind::Sine(x), Kind::Sine(y)) => (Function::Cos, x, y),
+            (Kind::Sine(x), Kind::Cosine(y)) | (Kind::Cosine(y), Kind::Sine(x))
+                if x != y && has(Kind::Cosine(x), Kind::Sine(y)) =>
+            {
+                (Function::Sin, x, y)
+            }
+            _ => return None,
+        };
+        if x == y && equal {
+            return None;
+        }
+        let (x, y) = (self.table.angles[x as usize], self.table.angles[y as usize]);
+        // cos(x − y) = cos cos + sin sin; sin(x + y) = sin cos + cos sin.
+        let minus = equal == (f == Function::Cos);
+        let argument = if minus { self.arena.sub(x, y) } else { self.arena.add(x, y) };
+        let value = self.arena.call(f, &[argument]);
+        let rest = over(&t.monomial, &taken);
+        let mut out = Vec::with_capacity(1);
+        for (core, k) in self.arena.summands(value) {
+            let inner = self.split(core)?;
+            let coefficient = t.coefficient.mul(&k).mul(&inner.coefficient);
+            out.push(Term { coefficient, monomial: times(&rest, &inner.monomial)? });
+        }
+        Some(out)
     }
 
     /// Replaces squares of the cosine (or of the sine where `sine` is false) of one angle.
