@@ -50,7 +50,7 @@ pub struct Session {
     /// Items parsed and lowered by the last check, for tests of incrementality.
     pub(crate) work: (usize, usize),
     /// What derivations leave behind for the next edit.
-    pub(crate) desk: crate::derive::Desk,
+    pub(crate) desk: Option<Box<crate::derive::Desk>>,
 }
 
 impl Default for Session {
@@ -86,7 +86,7 @@ impl Session {
             definitions: HashMap::new(),
             lowered: HashMap::new(),
             work: (0, 0),
-            desk: crate::derive::Desk::default(),
+            desk: None,
         }
     }
 
@@ -240,7 +240,7 @@ impl Session {
             }
             let mut hasher = DefaultHasher::new();
             let decl = &reading.scope.decls[at];
-            (decl.kind, &decl.name, range, decl.formals.len(), failed, decl.angle).hash(&mut hasher);
+            (decl.kind, &decl.name, range, decl.formals.len(), failed, decl.angle, decl.dimension).hash(&mut hasher);
             if let (SymbolKind::Definition, Some(entry)) = (decl.kind, decl.entry) {
                 let parsed = &reading.entries[entry].parsed;
                 large |= fingerprint(&reading.scope, parsed, &mut hasher);
@@ -321,7 +321,7 @@ impl Session {
     /// The meaning of all other items; claims about the motion after the terms.
     fn lower(&mut self, reading: &mut Reading, budget: &mut Budget) {
         let parsed: Vec<Option<Arc<Parsed>>> = reading.entries.iter().map(|e| Some(e.parsed.clone())).collect();
-        let dimensionless = names::is_dimensionless(reading);
+        let dimensionless = names::has_own_units(reading);
         let mut later = Vec::new();
         let mut motion = DefaultHasher::new();
         let mut parts: Vec<(Expr, i64)> = Vec::new();

@@ -46,10 +46,10 @@ impl Default for Desk {
 
 impl Session {
     /// Takes the desk out, cleared where the epoch has changed, under the model's assumptions.
-    fn desk_for(&mut self, checked: &Checked) -> Desk {
-        let mut desk = std::mem::take(&mut self.desk);
+    fn desk_for(&mut self, checked: &Checked) -> Box<Desk> {
+        let mut desk = self.desk.take().unwrap_or_default();
         if desk.epoch != checked.epoch {
-            desk = Desk { epoch: checked.epoch, ..Desk::default() };
+            desk = Box::new(Desk { epoch: checked.epoch, ..Desk::default() });
         }
         let mut facts = Assumptions::new();
         for (difference, relation) in checked.assumptions() {
@@ -70,7 +70,7 @@ impl Session {
             memory: &mut desk.memory,
         };
         let derived = derive(&mut cx, checked);
-        self.desk = desk;
+        self.desk = Some(desk);
         derived
     }
 
@@ -98,7 +98,7 @@ impl Session {
             budget: &mut budget,
         };
         let result = f(&mut maker);
-        self.desk = desk;
+        self.desk = Some(desk);
         result
     }
 }

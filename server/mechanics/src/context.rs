@@ -9,6 +9,8 @@ use std::collections::HashMap;
 pub struct Memory {
     /// For each generator: the prolonged derivation's results.
     pub(crate) variations: HashMap<Generator, MemoMap>,
+    /// For each generator and order of the jets: the derivation of charges and of works.
+    pub(crate) flows: HashMap<(Generator, u16), MemoMap>,
     /// Velocity derivatives along motions without acceleration.
     pub(crate) coasting: MemoMap,
 }

@@ -278,33 +278,11 @@ pub fn euler_vanishes(cx: &mut Context<'_>, model: &Model, parts: &Parts) -> Res
 /// The charge without its gauge term: Σ pᵢ (ηⁱ − q̇ⁱ τ) + L τ, a derivation of L in the velocities.
 pub fn charge(cx: &mut Context<'_>, model: &Model, g: &Generator) -> Result<Expr, Stopped> {
     let parts: Parts = signed_parts(model).concat();
-    let by_symbol = index_of(&model.coordinates);
-    let coordinates = &model.coordinates;
-    let mut inner = Budget::new(cx.budget.left());
-    let mut rule = |arena: &mut Arena, x: Expr| {
-        let order = match *arena.node(x) {
-            Node::Jet(s, n) if arena.info(s).role == Role::Coordinate => n,
-            Node::Member { family, order, .. } if arena.info(family).role == Role::Coordinate => order,
-            _ => 0,
-        };
-        if order == 0 {
-            return Ok(Arena::ZERO);
-        }
-        let position = match *arena.node(x) {
-            Node::Jet(s, _) => arena.sym(s),
-            Node::Member { family, index, .. } => arena.member(family, index, 0),
-            _ => x,
-        };
-        let eta = prolonged(arena, coordinates, &by_symbol, g, Arena::ZERO, position, &mut inner)?;
-        let drag = arena.mul(x, g.tau);
-        Ok(arena.sub(eta, drag))
-    };
-    let mut d = Derivation::new(&mut rule);
-    let mut out = Vec::new();
-    for (part, c) in &parts {
-        let e = cx.arena.derive(*part, &mut d, cx.budget)?;
-        out.push((e, c.clone()));
-        if g.tau != Arena::ZERO {
+    let flat: Vec<Expr> = parts.iter().map(|p| p.0).collect();
+    let flowed = flow_derivations(cx, model, g, &flat, 1)?;
+    let mut out: Parts = flowed.into_iter().zip(&parts).map(|(e, (_, c))| (e, c.clone())).collect();
+    if g.tau != Arena::ZERO {
+        for (part, c) in &parts {
             out.push((cx.arena.mul(*part, g.tau), c.clone()));
         }
     }
@@ -354,6 +332,17 @@ fn velocity_derivation(cx: &mut Context<'_>, model: &Model, g: &Generator, e: Ex
 }
 
 fn flow_derivation(cx: &mut Context<'_>, model: &Model, g: &Generator, e: Expr, order: u16) -> Result<Expr, Stopped> {
+    Ok(flow_derivations(cx, model, g, &[e], order)?[0])
+}
+
+/// Σ ∂E/∂q⁽ⁿ⁾ⁱ (ηⁱ − q̇ⁱ τ) for the jets of order n, memoised across edits.
+fn flow_derivations(
+    cx: &mut Context<'_>,
+    model: &Model,
+    g: &Generator,
+    of: &[Expr],
+    order: u16,
+) -> Result<Vec<Expr>, Stopped> {
     let by_symbol = index_of(&model.coordinates);
     let coordinates = &model.coordinates;
     let mut inner = Budget::new(cx.budget.left());
@@ -375,7 +364,11 @@ fn flow_derivation(cx: &mut Context<'_>, model: &Model, g: &Generator, e: Expr, 
         Ok(arena.sub(eta, drag))
     };
     let mut d = Derivation::new(&mut rule);
-    cx.arena.derive(e, &mut d, cx.budget)
+    let key = (g.clone(), order);
+    d.memo = cx.memory.flows.remove(&key).unwrap_or_default();
+    let result = of.iter().map(|&e| cx.arena.derive(e, &mut d, cx.budget)).collect();
+    cx.memory.flows.insert(key, d.memo);
+    result
 }
 
 /// The generator of a shift of one coordinate.
