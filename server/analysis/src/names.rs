@@ -457,6 +457,14 @@ fn words_of_faulty(reading: &Reading) -> HashSet<String> {
     out
 }
 
+/// Whether units are not looked at: quantities are switched off, or taken modulo constants set to one.
+pub(crate) fn has_own_units(reading: &Reading) -> bool {
+    reading.entries.iter().any(|e| match &e.parsed.item.kind {
+        ItemKind::System { options, .. } => e.file == 0 && !options.is_empty(),
+        _ => false,
+    })
+}
+
 /// Names that nothing uses. A file without terms, claims or runs is there to be included: others use its names.
 pub(crate) fn unused(reading: &mut Reading) {
     let model = |e: &Entry| e.file == 0 && !is_taken_in(&e.parsed.item.kind);

@@ -1,6 +1,7 @@
 //! Quantities (ISO 80000) and units (SI Brochure, 9th ed.): their names and dimensions.
 
 use leastwise_grammar::nearest;
+use leastwise_grammar::tree::UnitText;
 
 /// Exponents of length, mass, time, current, temperature, amount, luminous intensity.
 pub type Dimension = [i8; 7];
@@ -131,6 +132,26 @@ pub fn unit(symbol: &str) -> Option<Dimension> {
     let plain = |s: &str, prefixed: bool| UNITS.iter().find(|u| u.0 == s && (u.2 || !prefixed)).map(|u| u.1);
     plain(symbol, false)
         .or_else(|| PREFIXES.iter().find_map(|p| symbol.strip_prefix(p).and_then(|rest| plain(rest, true))))
+}
+
+/// The dimension of a unit as written, or of a quantity's name where it stands alone; exponents in sixtieths. `None`
+/// where a name is not known or an exponent is no multiple of 1/60.
+pub fn dimension(unit_text: &UnitText) -> Option<[i64; 7]> {
+    if let [one] = unit_text.factors.as_slice()
+        && one.exponent == (1, 1)
+        && let Some(d) = quantity(&one.symbol.text)
+    {
+        return Some(d.map(|n| n as i64 * 60));
+    }
+    let mut out = [0i64; 7];
+    for factor in &unit_text.factors {
+        let (n, d) = factor.exponent;
+        let sixtieths = (d != 0 && 60 % d == 0).then(|| n as i64 * (60 / d as i64))?;
+        for (sum, exponent) in out.iter_mut().zip(unit(&factor.symbol.text)?) {
+            *sum = sum.checked_add(sixtieths.checked_mul(exponent as i64)?)?;
+        }
+    }
+    Some(out)
 }
 
 /// All quantity names.

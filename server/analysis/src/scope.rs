@@ -90,6 +90,8 @@ pub(crate) struct Decl {
     pub formals: Vec<Arc<str>>,
     /// Whether its quantity is an angle.
     pub angle: bool,
+    /// Of a coordinate: its dimension in sixtieths, where a quantity is declared.
+    pub dimension: Option<[i64; 7]>,
     /// Which of several names of one item it is.
     pub place: usize,
     // Known after the names it needs.
@@ -132,9 +134,12 @@ impl Scope {
             }
             match &entry.parsed.item.kind {
                 ItemKind::Coordinate { declared, quantity, .. } => {
+                    let first = scope.decls.len();
                     for (place, d) in declared.iter().enumerate() {
                         scope.declare(entries, files, at, place, SymbolKind::Coordinate, d, &[], is_angle(quantity));
                     }
+                    let dimension = quantity.as_ref().and_then(crate::quantities::dimension);
+                    scope.decls[first..].iter_mut().for_each(|d| d.dimension = dimension);
                 }
                 ItemKind::Parameter(list) => {
                     for (place, d) in list.iter().enumerate() {
@@ -233,6 +238,7 @@ impl Scope {
             index: declared.index.clone(),
             formals: formals.iter().map(|n| n.text.as_str().into()).collect(),
             angle,
+            dimension: None,
             place,
             range: None,
             large: false,
@@ -254,6 +260,7 @@ impl Scope {
             index: None,
             formals: Vec::new(),
             angle: false,
+            dimension: None,
             place: 0,
             range: None,
             large: false,

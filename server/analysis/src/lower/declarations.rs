@@ -133,29 +133,14 @@ impl<'a> Lowerer<'a> {
             FormulaKind::Missing => return None,
             _ => vec![self.constant(&value.number)?],
         };
-        let alone = d.quantity.as_ref().filter(|q| q.factors.len() == 1 && q.factors[0].exponent == (1, 1));
-        let dimension = alone.and_then(|q| crate::quantities::quantity(&q.factors[0].symbol.text));
-        let dimensioned = match &d.quantity {
-            None => false,
-            Some(q) => dimension.map_or_else(
-                || {
-                    q.factors
-                        .iter()
-                        .any(|f| crate::quantities::unit(&f.symbol.text).is_some_and(|d| d != crate::quantities::ONE))
-                },
-                |d| d != crate::quantities::ONE,
-            ),
-        };
-        let zero = numbers.iter().all(|n| *n == Arena::ZERO);
-        if dimensioned && value.unit.is_none() && !zero && !dimensionless && !shared {
-            let name = d.quantity.as_ref().map_or("", |q| q.factors[0].symbol.text.as_str());
-            let message = match dimension {
-                Some(_) => format!("`{}` is {} {name}: its value needs a unit", d.declared.name.text, article(name)),
-                None => format!("the value of `{}` needs a unit", d.declared.name.text),
-            };
-            let finding = LocalFinding::error(codes::MISSING_UNIT, value.span, message)
-                .help("write the unit behind the number, or name the system `dimensionless`");
-            self.report(finding);
+        let shown = d.quantity.as_ref().map_or("", |q| q.factors.first().map_or("", |f| f.symbol.text.as_str()));
+        if !dimensionless
+            && !shared
+            && let Some(quantity) = &d.quantity
+        {
+            let dimension = crate::quantities::dimension(quantity);
+            let zero = numbers.iter().all(|n| *n == Arena::ZERO);
+            self.unit_of(&d.declared.name.text, shown, dimension, zero, value);
         }
         Some((numbers, value.unit.clone()))
     }
@@ -163,6 +148,52 @@ impl<'a> Lowerer<'a> {
 
 fn article(name: &str) -> &'static str {
     if name.starts_with(['a', 'e', 'i', 'o', 'u']) { "an" } else { "a" }
+}
+
+impl Lowerer<'_> {
+    /// The unit of a value fits the quantity `shown` with this dimension.
+    pub(super) fn unit_of(
+        &mut self,
+        name: &str,
+        shown: &str,
+        dimension: Option<[i64; 7]>,
+        zero: bool,
+        value: &leastwise_grammar::tree::Value,
+    ) {
+        let Some(dimension) = dimension else { return };
+        let is_quantity = crate::quantities::quantity(shown).is_some();
+        let what =
+            if is_quantity { format!("{} {shown}", article(shown)) } else { "a quantity with a unit".to_owned() };
+        let Some(unit) = &value.unit else {
+            if dimension != [0; 7] && !zero {
+                let finding = LocalFinding::error(
+                    codes::MISSING_UNIT,
+                    value.span,
+                    format!("`{name}` is {what}: its value needs a unit"),
+                )
+                .help("write the unit behind the number, or name the system `dimensionless`");
+                self.report(finding);
+            }
+            return;
+        };
+        // A unit that is not known has a finding of its own.
+        let Some(given) = crate::quantities::dimension(unit) else { return };
+        if given != dimension {
+            let message = format!("`{name}` is {what}, and this is no unit of it");
+            self.report(LocalFinding::error(codes::UNIT_MISMATCH, unit.span, message));
+        } else if matches!(shown, "angular_velocity" | "angular_frequency")
+            && unit.factors.iter().any(|f| f.symbol.text.ends_with("Hz"))
+        {
+            let finding = LocalFinding::new(
+                codes::HERTZ,
+                Severity::Warning,
+                unit.span,
+                "Hz counts turns: 1 Hz is 2π rad/s, and is read as 1/s here",
+            )
+            .help("write rad/s, or declare a frequency and multiply by 2 π");
+            self.report(finding);
+        }
+    }
 }
 
 /// A hint at a definition that looks like a number with its unit: `let g = 9.81 m/s^2`.

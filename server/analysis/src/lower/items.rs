@@ -73,6 +73,7 @@ pub(crate) struct Lowered {
 impl<'a> Lowerer<'a> {
     /// The meaning of an item that is no declaration.
     pub fn item(mut self, parsed: &Parsed, dimensionless: bool) -> Lowered {
+        self.own_units = dimensionless;
         let meaning = match &parsed.item.kind {
             ItemKind::Parameter(list) => Some(self.values(list, dimensionless)),
             _ => self.meaning(&parsed.item),

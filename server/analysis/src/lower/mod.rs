@@ -93,6 +93,8 @@ pub(crate) struct Lowerer<'a> {
     pub findings: Vec<LocalFinding>,
     said: HashSet<(&'static str, Span)>,
     epsilon: bool,
+    /// Units are not looked at.
+    own_units: bool,
     bindings: Vec<Binding>,
     /// Bindings before this one belong to other items' formulas.
     base: usize,
@@ -123,6 +125,7 @@ impl<'a> Lowerer<'a> {
             findings: Vec::new(),
             said: HashSet::new(),
             epsilon: false,
+            own_units: false,
             bindings: Vec::new(),
             base: 0,
             open: Vec::new(),

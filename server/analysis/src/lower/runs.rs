@@ -4,7 +4,7 @@ use super::{Lowerer, Meaning, RunMeaning};
 use crate::codes;
 use crate::finding::LocalFinding;
 use crate::values::Value;
-use leastwise_algebra::{Expr, Node, Role};
+use leastwise_algebra::{Arena, Expr, Node, Role};
 use leastwise_grammar::tree::*;
 
 impl Lowerer<'_> {
@@ -46,10 +46,17 @@ impl Lowerer<'_> {
                 self.error(codes::RUN_VALUE, what.span, "this initial value is given twice");
                 continue;
             }
+            self.initial_unit(atom, order.unwrap_or(0), number, value);
             out.from.push((atom, number, value.unit.clone(), what.span));
         }
         if let Some(value) = over {
             let number = self.constant(&value.number);
+            let dimension = value.unit.as_ref().filter(|_| !self.own_units).and_then(crate::quantities::dimension);
+            if let (Some(unit), Some(d)) = (&value.unit, dimension)
+                && d != [0, 0, 60, 0, 0, 0, 0]
+            {
+                self.error(codes::UNIT_MISMATCH, unit.span, "a run goes over a time, and this is no unit of time");
+            }
             if let Some(n) = number {
                 if self.arena.as_number(n).is_some_and(|r| r.signum() <= 0) {
                     self.error(codes::RUN_VALUE, value.span, "a run goes over a time longer than zero");
@@ -74,6 +81,19 @@ impl Lowerer<'_> {
             }
         }
         Some(Meaning::Run(out))
+    }
+
+    /// The unit of an initial value fits its coordinate, per time for a velocity.
+    fn initial_unit(&mut self, atom: Expr, order: u16, number: Expr, value: &leastwise_grammar::tree::Value) {
+        let (Node::Symbol(s) | Node::Jet(s, _)) = *self.arena.node(atom) else { return };
+        let info = self.arena.info(s).clone();
+        let Some(mut dimension) = self.scope.get(&info.name).and_then(|d| d.dimension).filter(|_| !self.own_units)
+        else {
+            return;
+        };
+        dimension[2] -= 60 * order as i64;
+        let name = if order == 0 { info.name.to_string() } else { format!("{}'", info.name) };
+        self.unit_of(&name, "", Some(dimension), number == Arena::ZERO, value);
     }
 
     /// `u = F cos(Ω t)`, `U(s) = 1/2 k s^2`.

@@ -76,3 +76,24 @@ kinetic T = 3
 ",
     );
 }
+
+#[test]
+fn units_fit_their_quantities() {
+    check(
+        "
+coordinate x: length
+coordinate θ: angle
+parameter m: mass = 3 g m
+#                     ^^^ unit-mismatch: `m` is a mass, and this is no unit of it
+parameter k: N/m = 3 kg/s^2, α: angle = 3°, ω: angular_velocity = 20 r/min
+parameter f: angular_velocity = 3 kHz
+#                                 ^^^ hertz: Hz counts turns
+kinetic T = 1/2 m x'^2 + k α ω f θ'^2
+run a: from x = 1 mm, x' = 3, θ = 2, θ' = 1 m, over 3 kg
+#                          ^ missing-unit: `x'` is a quantity with a unit: its value needs a unit
+#                                           ^ unit-mismatch: `θ'`
+#                                                    ^^ unit-mismatch: a run goes over a time
+",
+    );
+    check("system a, with c = 1\ncoordinate x: length\nparameter v: velocity = 0.5\nkinetic T = v x'^2\n");
+}
