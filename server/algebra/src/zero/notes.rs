@@ -91,6 +91,11 @@ impl Notes {
         self.list.get(e.index()).is_some_and(|n| n.flags & Self::DONE != 0)
     }
 
+    /// Whether the node has been analysed.
+    pub fn has(&self, e: Expr) -> bool {
+        self.done(e)
+    }
+
     /// The sign of a node, unknown before it is analysed.
     pub fn sign(&self, e: Expr) -> Sign {
         self.note(e).sign

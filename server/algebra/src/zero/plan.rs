@@ -98,6 +98,11 @@ const ARGUMENT: u64 = 400;
 /// Arguments nested more deeply are not multiplied out.
 const ARGUMENT_DEPTH: u32 = 200;
 
+/// Summands of a radicand beyond which it is left as it is.
+const RADICAND: usize = 40;
+/// Radicands nested more deeply are left as they are.
+const RADICAND_DEPTH: u32 = 100;
+
 /// What a plan could not do, as flags of the note.
 pub(crate) struct Made {
     /// The plan; none where the node is evaluated from its children.
@@ -108,7 +113,7 @@ pub(crate) struct Made {
 
 /// Makes the plan of a node whose children have notes.
 pub(crate) fn make(arena: &mut Arena, facts: &Assumptions, notes: &Notes, e: Expr) -> Made {
-    let mut m = Maker { arena, notes, flags: 0 };
+    let mut m = Maker { arena, facts, notes, flags: 0 };
     let plan = match m.arena.node(e) {
         Node::Product(list) if list.iter().any(|(_, r)| !r.is_integer()) => {
             let list = list.clone();
@@ -158,6 +163,7 @@ pub(crate) fn make(arena: &mut Arena, facts: &Assumptions, notes: &Notes, e: Exp
 
 struct Maker<'a> {
     arena: &'a mut Arena,
+    facts: &'a Assumptions,
     notes: &'a Notes,
     flags: u16,
 }
@@ -307,6 +313,11 @@ impl Maker<'_> {
                     for (_, c) in terms.iter() {
                         content = if content.is_zero() { c.abs() } else { content.content(c) };
                     }
+                    if half_integer(r).is_some()
+                        && let Some(simpler) = self.simpler_radicand(b)
+                    {
+                        return self.raise(simpler, r, positive, out, level + 1);
+                    }
                     if let Some(inverse) = content.recip()
                         && !content.is_one()
                     {
@@ -351,13 +362,14 @@ impl Maker<'_> {
         let mut unknown_roots = 0;
         for (c, s) in list {
             let total = s.mul(r);
-            let known = self.sign(*c).is_nonnegative() || !s.is_integer() || positive && list.len() == 1;
+            let sign = self.sign_of_new(*c, 0);
+            let known = sign.is_nonnegative() || !s.is_integer() || positive && list.len() == 1;
             if known {
                 self.raise(*c, &total, true, out, level + 1);
             } else if s.is_even_integer() && total.is_integer() {
                 match total.to_i64() {
                     Some(k) if k % 2 == 0 => out.push(Factor { base: *c, kind: Kind::Integer(k) }),
-                    Some(k) if self.sign(*c).is_nonpositive() => {
+                    Some(k) if sign.is_nonpositive() => {
                         let minus = self.arena.integer(-1);
                         out.push(Factor { base: minus, kind: Kind::Integer(1) });
                         out.push(Factor { base: *c, kind: Kind::Integer(k) });
@@ -384,6 +396,61 @@ impl Maker<'_> {
             let kind = half_integer(r).map_or_else(|| Kind::Other(r.clone()), Kind::Root);
             out.push(Factor { base: j, kind });
         }
+    }
+
+    /// A radicand multiplied out where that leaves less, or written as the square that it is.
+    fn simpler_radicand(&mut self, b: Expr) -> Option<Expr> {
+        if self.arena.depth(b) > RADICAND_DEPTH || self.arena.summands(b).len() > RADICAND {
+            return None;
+        }
+        let expanded = self.arena.expand(b, &mut Budget::new(RADICAND as u64 * 4)).ok()?;
+        let terms = self.arena.summands(expanded);
+        if terms.len() <= 1 {
+            return Some(expanded).filter(|e| *e != b);
+        }
+        // Σ tᵢ² + …: the signs of the tᵢ follow from their products with the first.
+        let roots: Vec<Expr> = terms.iter().filter_map(|(t, c)| self.square_root(*t, c)).collect();
+        if roots.len() < 2 || roots.len() * (roots.len() + 1) / 2 < terms.len() {
+            return None;
+        }
+        let mut sum = vec![(roots[0], Rational::ONE)];
+        for t in &roots[1..] {
+            let cross = self.arena.mul(roots[0], *t);
+            let (_, cross) = self.arena.split_coefficient(cross);
+            let c = &terms.iter().find(|(e, _)| *e == cross)?.1;
+            sum.push((*t, if c.is_negative() { Rational::MINUS_ONE } else { Rational::ONE }));
+        }
+        let root = self.arena.linear(&sum);
+        let square = self.arena.pow(root, 2);
+        let check = self.arena.expand(square, &mut Budget::new(RADICAND as u64 * 4)).ok()?;
+        (check == expanded && square != b).then_some(square)
+    }
+
+    /// The root of c · t where it is rational in the factors of t.
+    fn square_root(&mut self, t: Expr, c: &Rational) -> Option<Expr> {
+        let (n, d) = c.small().filter(|(n, _)| *n > 0)?;
+        let exact = |k: i64| Some(k.isqrt()).filter(|r| r * r == k);
+        let c = Rational::new(exact(n)?, exact(d)?)?;
+        let mut factors = self.arena.factors(t);
+        for f in &mut factors {
+            f.1 = f.1.mul(&Rational::HALF);
+        }
+        if !factors.iter().all(|f| f.1.is_integer()) {
+            return None;
+        }
+        let root = self.arena.monomial(&factors);
+        Some(self.arena.scale(root, &c))
+    }
+
+    /// The sign of a base, made from its parts where it has no note yet.
+    fn sign_of_new(&mut self, e: Expr, level: u32) -> Sign {
+        if level > 3 || self.notes.has(e) {
+            return self.sign(e);
+        }
+        let mut children = Vec::new();
+        self.arena.for_children(e, &mut |c| children.push(c));
+        let known: Vec<(Expr, Sign)> = children.into_iter().map(|c| (c, self.sign_of_new(c, level + 1))).collect();
+        signs::infer(self.arena, self.facts, e, &|x| known.iter().find(|k| k.0 == x).map_or(Sign::Unknown, |k| k.1))
     }
 
     /// |x| or sign x, factor by factor.

@@ -4,7 +4,7 @@ use super::assumptions::{Assumptions, atom_key};
 use super::field::{Element, FIRST, Field, next_prime};
 use super::signs::Sign;
 use crate::arena::{Arena, Expr, Node, Symbol, mix};
-use std::sync::Arc;
+use std::sync::{Arc, OnceLock};
 
 /// One point: a field and a seed.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
@@ -19,6 +19,8 @@ pub(crate) struct Point {
     pub loose: bool,
     /// Which of the roots of constants in question take their other value.
     pub flips: u16,
+    /// Whether the point is used for few nodes or only once.
+    pub sparse: bool,
 }
 
 /// The fields in use. The first two are fixed, further ones are drawn when many primes are needed.
@@ -30,7 +32,10 @@ const SEED: u64 = 0x1ea5_7015_e5ee_d001;
 
 impl Fields {
     pub fn new() -> Fields {
-        Fields { list: FIRST.iter().map(|c| Some(Arc::new(Field::new(*c)))).collect() }
+        // Roots of unity and inverses are the same in every session.
+        static STANDARD: OnceLock<[Arc<Field>; 2]> = OnceLock::new();
+        let standard = STANDARD.get_or_init(|| FIRST.map(|c| Arc::new(Field::new(c))));
+        Fields { list: standard.iter().cloned().map(Some).collect() }
     }
 
     pub fn get(&self, k: u32) -> Arc<Field> {
@@ -62,22 +67,27 @@ impl Fields {
 
 /// The standard points, by turns over the first two primes.
 pub(crate) fn standard(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false, flips: 0 }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false, flips: 0, sparse: false }
 }
 
 /// A point where roots and absolute values are atoms: what vanishes there vanishes whatever their values are.
 pub(crate) fn loose(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true, flips: 0 }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true, flips: 0, sparse: false }
 }
 
 /// A point where assumptions do not narrow the draw.
 pub(crate) fn unconstrained(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false, flips: 0 }
+    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false, flips: 0, sparse: true }
 }
 
 /// A point over a field of its own.
 pub(crate) fn over(field: u32, k: u32) -> Point {
-    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false, flips: 0 }
+    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false, flips: 0, sparse: false }
+}
+
+/// A point over a field of its own that is used once.
+pub(crate) fn once(field: u32, k: u32) -> Point {
+    Point { sparse: true, ..over(field, k + 16) }
 }
 
 /// A hash that depends on every bit of a list of words.

@@ -89,7 +89,7 @@ impl Range {
 pub(crate) fn range(arena: &Arena, facts: &Assumptions, e: Expr, of: &dyn Fn(Expr) -> Sign, level: u32) -> Range {
     let unit =
         || Range { lower: Some((Rational::MINUS_ONE, false)), upper: Some((Rational::ONE, false)), nonzero: false };
-    if level > 6 {
+    if level > 4 {
         return Range::default();
     }
     let mut r = match arena.node(e) {
@@ -97,7 +97,7 @@ pub(crate) fn range(arena: &Arena, facts: &Assumptions, e: Expr, of: &dyn Fn(Exp
         Node::Symbol(s) => facts.range(arena, *s, None, 0),
         Node::Jet(s, n) => facts.range(arena, *s, None, *n),
         Node::Call(Function::Sin | Function::Cos | Function::Tanh | Function::Sign, _) => unit(),
-        Node::Sum(k, terms) if terms.len() <= 64 => {
+        Node::Sum(k, terms) if terms.len() <= 32 => {
             let mut sum = Range::exactly(k);
             for (x, c) in terms.iter() {
                 sum = sum.plus(&range(arena, facts, *x, of, level + 1).scale(c));

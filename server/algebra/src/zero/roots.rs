@@ -30,6 +30,9 @@ pub(super) struct Radicals {
 /// Ranks that have been found, by the sorted roots and the field.
 pub(super) type RankMemo = HashMap<(Vec<Expr>, u32), usize>;
 
+/// Roots beyond which no relation is looked for.
+const MAX_ROOTS: usize = 200;
+
 /// Summands up to which a range with roots inside is written out.
 const UNROLLED: i64 = 64;
 
@@ -143,6 +146,9 @@ impl ZeroTest {
         // Roots of different atoms are independent.
         if roots.iter().all(|r| matches!(arena.node(*r), Node::Symbol(_) | Node::Jet(..))) {
             return Ok(0);
+        }
+        if roots.len() > MAX_ROOTS {
+            return Ok(roots.len());
         }
         let key = (roots.to_vec(), field);
         if let Some(&d) = self.ranks.get(&key) {

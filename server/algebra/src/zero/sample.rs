@@ -15,8 +15,6 @@ const BITS: f32 = 100.0;
 const MAX_SIGNS: usize = 3;
 /// Relations among roots, beyond which they are not sampled.
 const MAX_RELATIONS: usize = 2;
-/// Roots from which on it pays to try first whether they can be drawn freely.
-const MANY_ROOTS: usize = 5;
 /// Primes that are the same for all expressions; beyond, some are drawn from the expression itself.
 const SHARED_PRIMES: u32 = 6;
 /// Beyond this many bits in a coefficient nothing is tested.
@@ -88,22 +86,18 @@ impl ZeroTest {
                 Err(reason) => Sampled::Unseen(reason),
             });
         }
+        // What holds whatever values roots and absolute values take needs no more.
+        let points = match need(note, 0) {
+            Ok(points) => points,
+            Err(reason) => return Ok(Sampled::Unseen(reason)),
+        };
+        if let Sampled::Zero = self.sample(arena, target, &points, &[], true, budget)? {
+            return Ok(Sampled::Zero);
+        }
         let found = match Radicals::collect(self, arena, &target.expressions(), budget)? {
             Ok(found) => found,
             Err(reason) => return Ok(Sampled::Unseen(reason)),
         };
-        // What holds for roots and absolute values of any value whatever needs no more.
-        let free = |test: &mut ZeroTest, arena: &mut Arena, budget: &mut Budget| match need(note, 0) {
-            Ok(need) => test.sample(arena, target, &need, &[], true, budget),
-            Err(reason) => Ok(Sampled::Unseen(reason)),
-        };
-        let mut tried = false;
-        if found.roots.len() >= MANY_ROOTS || found.hidden > 0 || !found.signs.is_empty() {
-            tried = true;
-            if let Sampled::Zero = free(self, arena, budget)? {
-                return Ok(Sampled::Zero);
-            }
-        }
         if found.signs.len() > MAX_SIGNS {
             return Ok(Sampled::Unseen(Reason::SignsUnknown));
         }
@@ -113,9 +107,6 @@ impl ZeroTest {
                 Ok(need) => self.sample(arena, target, &need, &found.signs, false, budget)?,
                 Err(reason) => Sampled::Unseen(reason),
             });
-        }
-        if !tried && let Sampled::Zero = free(self, arena, budget)? {
-            return Ok(Sampled::Zero);
         }
         if relations > MAX_RELATIONS {
             return Ok(Sampled::Unseen(Reason::RelatedRoots));
@@ -177,7 +168,7 @@ impl ZeroTest {
             let field = self.fields.drawn(0x100 + k as u64);
             let mut vanishes = Some(false);
             for flips in 0..branches {
-                let point = Point { flips, ..points::over(field, k + 16) };
+                let point = Point { flips, ..points::once(field, k) };
                 let v = target.residue(self, arena, point, budget);
                 self.tables.remove(&point);
                 match v? {
@@ -237,7 +228,7 @@ impl ZeroTest {
         for j in 0..need.shared + need.own {
             let key = if j < need.shared { j as u64 } else { own ^ j as u64 };
             let field = self.fields.drawn(key);
-            let at = |k: u32| Point { loose: free, ..points::over(field, k) };
+            let at = |k: u32| Point { loose: free, sparse: j >= need.shared, ..points::over(field, k) };
             let result = self.sample_over(arena, target, signs, &at, 1, budget);
             if j >= need.shared {
                 self.tables.retain(|p, _| p.field != field);
@@ -318,10 +309,10 @@ impl ZeroTest {
         let wanted = 72u32 << relations;
         let patterns = 1usize << found.signs.len();
         let mut counts = vec![0u32; patterns];
-        let limit = (wanted * patterns as u32) << (positive.len().min(4) + 1);
+        let limit = (wanted * patterns as u32) << (positive.len().min(3) + 1);
         for k in 0..limit {
             let field = self.fields.drawn(0x100 + (k % 512) as u64);
-            let point = points::over(field, k + 16);
+            let point = points::once(field, k);
             let outcome = self.at_positive(arena, target, &positive, point, budget);
             let pattern = match &outcome {
                 Ok(Some(At::Value(v))) if v.is_zero() => self.pattern(arena, &found.signs, point, budget)?,

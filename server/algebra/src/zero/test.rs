@@ -249,7 +249,7 @@ impl ZeroTest {
         let (fields, flippable) = (&self.fields, &self.flippable);
         let table = self.tables.entry(point).or_insert_with(|| {
             let domain = FieldPoint { point, field: fields.get(point.field), negated: flipped(flippable, point.flips) };
-            if point.free { Table::sparse(domain) } else { Table::new(domain) }
+            if point.sparse { Table::sparse(domain) } else { Table::new(domain) }
         });
         let at = Place { arena, notes: &self.notes, facts: &self.facts };
         let v = table.value(at, e, budget)?;

@@ -1,5 +1,7 @@
 //! A bench for the tests: an arena with assumptions.
 
+mod branches;
+mod hostile;
 mod identities;
 mod models;
 mod motions;
