@@ -92,7 +92,7 @@ kinetic T = 1/2 m x'^2 + k α ω f θ'^2
 run a: from x = 1 mm, x' = 3, θ = 2, θ' = 1 m, over 3 kg
 #                          ^ missing-unit: `x'` is a quantity with a unit: its value needs a unit
 #                                           ^ unit-mismatch: `θ'`
-#                                                    ^^ unit-mismatch: a run goes over a time
+#                                                     ^^ unit-mismatch: a run goes over a time
 ",
     );
     check("system a, with c = 1\ncoordinate x: length\nparameter v: velocity = 0.5\nkinetic T = v x'^2\n");
