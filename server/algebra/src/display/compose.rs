@@ -13,8 +13,10 @@ use std::sync::Arc;
 pub(crate) struct Composer<'a> {
     arena: &'a Arena,
     keys: &'a mut Keys,
-    /// The letters of bound indices by nesting depth.
+    /// The letters for bound indices, the outermost first.
     indices: Vec<Arc<str>>,
+    /// The indices of the sums around, outermost first.
+    active: Vec<Symbol>,
     /// What is written as a letter of its own.
     pub abbreviations: HashMap<Expr, usize>,
 }
@@ -82,7 +84,7 @@ enum Parts {
 impl<'a> Composer<'a> {
     pub fn new(arena: &'a Arena, keys: &'a mut Keys, root: &[Expr], options: &DisplayOptions) -> Composer<'a> {
         let indices = letters(arena, root, options);
-        Composer { arena, keys, indices, abbreviations: HashMap::new() }
+        Composer { arena, keys, indices, active: Vec::new(), abbreviations: HashMap::new() }
     }
 
     /// The tree of an expression, with its sign.
@@ -370,14 +372,12 @@ impl<'a> Composer<'a> {
             }
             Node::Bound { index, lower, upper, body } => {
                 let (index, lower, upper, body) = (*index, *lower, *upper, *body);
+                let (lower, upper) = (Box::new(self.compose(lower)), Box::new(self.compose(upper)));
+                self.active.push(index);
                 let name = self.letter(index);
-                Form::Bound {
-                    index,
-                    name,
-                    lower: Box::new(self.compose(lower)),
-                    upper: Box::new(self.compose(upper)),
-                    body: Box::new(self.compose(body)),
-                }
+                let body = Box::new(self.compose(body));
+                self.active.pop();
+                Form::Bound { index, name, lower, upper, body }
             }
         };
         (false, form)
@@ -405,11 +405,8 @@ impl<'a> Composer<'a> {
 
     fn letter(&self, index: Symbol) -> Arc<str> {
         let name = &self.arena.info(index).name;
-        let level: Option<usize> = name.strip_prefix('#').and_then(|n| n.parse().ok());
-        match level {
-            Some(n) if n >= 1 && n <= self.indices.len() => self.indices[self.indices.len() - n].clone(),
-            _ => name.clone(),
-        }
+        let place = self.active.iter().rposition(|s| *s == index);
+        place.and_then(|n| self.indices.get(n)).unwrap_or(name).clone()
     }
 }
 

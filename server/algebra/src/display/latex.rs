@@ -187,7 +187,12 @@ impl Latex<'_> {
     fn factors(&mut self, list: &[Form]) {
         for (i, f) in list.iter().enumerate() {
             if i > 0 {
-                self.out.push_str(" \\, ");
+                // A thin space where letters would run into each other.
+                let wide = |f: &Form| match f {
+                    Form::Power(base, _) => matches!(&**base, Form::Call(..) | Form::Name(_)) && wide(base),
+                    f => wide(f),
+                };
+                self.out.push_str(if wide(&list[i - 1]) || wide(f) { " \\, " } else { " " });
             }
             let open = matches!(f, Form::Bound { .. }) && i + 1 < list.len();
             self.form(f, if open { Place::Base } else { Place::Factor });
@@ -358,6 +363,16 @@ fn greek(c: char) -> Option<&'static str> {
         'ℓ' => "ell",
         _ => return None,
     })
+}
+
+/// Calls without parentheses, sums over an index, and names of several letters.
+fn wide(form: &Form) -> bool {
+    match form {
+        Form::Call(f, args) => short(*f, args),
+        Form::Name(n) => n.name.chars().take_while(|c| *c != '_' && digit(*c).is_none()).count() > 1,
+        Form::Bound { .. } => true,
+        _ => false,
+    }
 }
 
 /// Whether the argument is one name that the function takes without parentheses.

@@ -14,8 +14,6 @@ mod text;
 mod trigonometry;
 
 #[cfg(test)]
-mod reader;
-#[cfg(test)]
 mod tests;
 
 use crate::arena::{Arena, Expr};

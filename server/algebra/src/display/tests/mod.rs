@@ -2,6 +2,7 @@
 
 mod cases;
 mod properties;
+mod reader;
 mod system;
 mod targets;
 mod verbatim;

@@ -1,8 +1,8 @@
 //! Random expressions: what is printed is equal to its source, never longer, and reads back.
 
+use super::reader::{Names, read};
 use super::system::{budget, equal};
 use crate::arena::{Arena, Expr, Role};
-use crate::display::reader::{Names, read};
 use crate::display::{DisplayOptions, textbook, verbatim};
 use crate::function::Function;
 use crate::rational::Rational;

@@ -1,8 +1,8 @@
 //! A mechanical system for the tests: its Lagrangian's terms and what follows from them.
 
+use super::reader::{Names, read};
 use crate::arena::{Arena, Expr, Node, Role};
 use crate::budget::Budget;
-use crate::display::reader::{Names, read};
 use crate::display::{DisplayOptions, Layout, textbook, verbatim};
 use crate::rational::Rational;
 use std::fmt::Write;

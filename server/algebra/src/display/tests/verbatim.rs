@@ -1,7 +1,7 @@
 //! Printing without simplifying: order, signs, fractions, spelling.
 
+use super::reader::{Names, read};
 use crate::arena::Arena;
-use crate::display::reader::{Names, read};
 use crate::display::{DisplayOptions, verbatim};
 
 /// Reads, prints, compares, and reads both spellings back.
@@ -89,10 +89,10 @@ fn latex() {
         let e = read(&mut arena, &names, source);
         assert_eq!(verbatim(&arena, e, &DisplayOptions::default()).latex(), latex);
     };
-    check("1/2 m l^2 θ₁'^2", r"\frac{1}{2} m \, l^{2} \, \dot{\theta}_{1}^{2}");
-    check("m g/(2 l) sin(θ)^2", r"\frac{m \, g \, \sin^{2} \theta}{2 l}");
+    check("1/2 m l^2 θ₁'^2", r"\frac{1}{2} m l^{2} \dot{\theta}_{1}^{2}");
+    check("m g/(2 l) sin(θ)^2", r"\frac{m g \, \sin^{2} \theta}{2 l}");
     check("k/sqrt(x^2+y^2)", r"\frac{k}{\sqrt{x^{2} + y^{2}}}");
     check("sum(i in 1..5: x[i+1]^2)", r"\sum_{i=1}^{5} x_{i + 1}^{2}");
-    check("U'(r) V'[1,2,2](x,y)", r"U'\left(r\right) \, \partial_{1} \partial_{2}^{2} V\left(x, y\right)");
-    check("m_cart abs(x) (x - Δ)", r"m_{\mathrm{cart}} \, \left(x - \Delta\right) \, \left|x\right|");
+    check("U'(r) V'[1,2,2](x,y)", r"U'\left(r\right) \partial_{1} \partial_{2}^{2} V\left(x, y\right)");
+    check("m_cart abs(x) (x - Δ)", r"m_{\mathrm{cart}} \left(x - \Delta\right) \left|x\right|");
 }
