@@ -22,6 +22,9 @@ pub(crate) struct Note {
     pub tall: f32,
     /// The same of the denominator.
     pub deep: f32,
+    /// The greatest height of what stands in functions, roots and absolute values: values that are drawn from residues
+    /// of arguments tell these apart only if the primes do.
+    pub inner: f32,
     /// The least common multiple of the denominators under angles, exponents and roots.
     pub lcm: u32,
     /// The flags.
@@ -46,8 +49,18 @@ pub(crate) struct Notes {
     constants: HashMap<Expr, super::interval::Interval>,
 }
 
-const BLANK: Note =
-    Note { num: 0.0, den: 0.0, tall: 0.0, deep: 0.0, lcm: 1, flags: 0, sign: Sign::Unknown, free: 0, plan: 0 };
+const BLANK: Note = Note {
+    num: 0.0,
+    den: 0.0,
+    tall: 0.0,
+    deep: 0.0,
+    inner: 0.0,
+    lcm: 1,
+    flags: 0,
+    sign: Sign::Unknown,
+    free: 0,
+    plan: 0,
+};
 
 impl Notes {
     const DONE: u16 = 1;
@@ -77,6 +90,8 @@ impl Notes {
     pub const SYMBOLIC: u16 = 4096;
     /// Functions of constants, such as sin 1 or √2.
     pub const CONSTANTS: u16 = 8192;
+    /// Roots of numbers or parts of a turn: algebraic numbers, whose conjugates multiply the height.
+    pub const ALGEBRAIC: u16 = 16384;
 
     pub fn new() -> Notes {
         Notes { list: Vec::new(), plans: Vec::new(), pending: HashMap::new(), constants: HashMap::new() }
@@ -187,6 +202,7 @@ impl Notes {
             let c = self.note(c);
             n.flags |= c.flags & !Self::DONE;
             n.free |= c.free;
+            n.inner = n.inner.max(c.inner);
             n.lcm = lcm(n.lcm, c.lcm);
         });
         match arena.node(e) {
@@ -238,6 +254,7 @@ impl Notes {
             Node::Call(f, args) => {
                 let degree: f32 = args.iter().map(|x| self.note(*x)).map(|a| a.num + a.den).sum();
                 n.num = 1.0 + degree;
+                args.iter().for_each(|x| within(&mut n, &self.note(*x)));
                 match f {
                     Function::Sin | Function::Cos | Function::Tan => n.flags |= Self::ANGLE,
                     Function::Exp | Function::Sinh | Function::Cosh | Function::Tanh => {
@@ -258,6 +275,7 @@ impl Notes {
             }
             Node::Unspecified { args, index, .. } => {
                 n.num = 1.0 + args.iter().map(|x| self.note(*x)).map(|a| a.num + a.den).sum::<f32>();
+                args.iter().for_each(|x| within(&mut n, &self.note(*x)));
                 n.flags |= Self::UNSPECIFIED | Self::ATOMS;
                 if index.is_some() && n.free == 0 {
                     n.flags |= Self::SYMBOLIC;
@@ -314,13 +332,13 @@ impl Notes {
             let x = self.note(x);
             n.flags |= x.flags & !Self::DONE;
             n.lcm = lcm(n.lcm, x.lcm);
-            x
+            within(n, &x);
         };
         let linear = |n: &mut Note, terms: &[(Expr, Rational)]| {
             let mut total = 0.0;
             for (m, r) in terms {
                 let x = self.note(*m);
-                let (num, den) = r.small().unwrap_or((i64::MAX, i64::MAX));
+                let (num, den) = r.small().unwrap_or((i64::MAX, 1));
                 total += (num as f32 / den as f32).abs().ceil();
                 n.lcm = lcm(n.lcm, u32::try_from(den).unwrap_or(u32::MAX));
                 // Monomials that only happen to agree at a point count as well.
@@ -333,16 +351,15 @@ impl Notes {
                 if !turn.small().is_some_and(|(_, d)| (TURN / 2).is_multiple_of(d as u64)) {
                     n.flags |= Self::INCOMPLETE;
                 }
-                terms.iter().for_each(|t| {
-                    inherit(n, t.0);
-                });
+                if !turn.is_zero() {
+                    n.flags |= Self::ALGEBRAIC;
+                }
+                terms.iter().for_each(|t| inherit(n, t.0));
                 let d = linear(n, terms);
                 angle_bounds(n, d, matches!(arena.node(e), Node::Call(Function::Tan, _)));
             }
             Plan::Exponential { terms, factors } => {
-                terms.iter().for_each(|t| {
-                    inherit(n, t.0);
-                });
+                terms.iter().for_each(|t| inherit(n, t.0));
                 let d = linear(n, terms);
                 angle_bounds(n, d, matches!(arena.node(e), Node::Call(Function::Tanh, _)));
                 self.factors_bounds(arena, n, factors);
@@ -375,6 +392,10 @@ impl Notes {
             let b = self.note(f.base);
             n.flags |= b.flags & !Self::DONE;
             n.lcm = lcm(n.lcm, b.lcm);
+            n.inner = n.inner.max(b.inner);
+            if !matches!(f.kind, Kind::Integer(_)) {
+                within(n, &b);
+            }
             match &f.kind {
                 Kind::Integer(k) => factor_bounds(n, &b, *k as f32),
                 Kind::Absolute(k) => {
@@ -384,7 +405,7 @@ impl Notes {
                 Kind::Signum => n.flags |= Self::SIGN,
                 Kind::Root(k) => {
                     let number = arena.as_number(f.base).is_some();
-                    n.flags |= if number { Self::CONSTANTS } else { Self::ROOT };
+                    n.flags |= if number { Self::CONSTANTS | Self::ALGEBRAIC } else { Self::ROOT };
                     if b.flags & Self::ATOMS == 0 && !number && !is_standard_root(arena, f.base) {
                         n.flags |= Self::HIDDEN;
                     }
@@ -398,8 +419,8 @@ impl Notes {
                     if den % 2 == 0 {
                         n.flags |= Self::ROOT;
                     }
-                    if arena.as_number(f.base).is_some() {
-                        n.flags |= Self::CONSTANTS;
+                    if b.flags & Self::ATOMS == 0 {
+                        n.flags |= Self::CONSTANTS | Self::ALGEBRAIC;
                     }
                     n.lcm = lcm(n.lcm, den);
                     factor_bounds(n, &b, r.to_f64() as f32);
@@ -501,6 +522,11 @@ pub(crate) fn sum_bounds<'a>(n: &mut Note, k: &Rational, list: impl Iterator<Ite
     n.num = den + gain;
     n.deep = deep;
     n.tall = deep + gain_tall + count.log2();
+}
+
+/// Two arguments of a function differ by a fraction of at most the sum of their heights.
+fn within(n: &mut Note, argument: &Note) {
+    n.inner = n.inner.max(argument.inner).max(2.0 * (argument.tall + argument.deep));
 }
 
 /// sin, cos of d times a base angle are polynomials of degree d in its sine and cosine, with coefficients whose sum is

@@ -49,20 +49,22 @@ pub(super) fn need(note: &Note, lost: usize) -> Result<Need, Reason> {
     // Roots of unity narrow the draw to one in 2¹⁴; a circle meets a curve twice as often as a line does.
     let narrow = note.flags & (Notes::ANGLE | Notes::EXPONENTIAL) != 0;
     let uniform = if note.flags & Notes::ANGLE != 0 { 47.0 } else { 60.0 };
-    let degree = note.num.max(1.0).log2() + if narrow { 1.0 + (note.lcm as f32).log2() } else { 1.0 };
+    let degree = note.num.max(1.0).log2() + if narrow { 2.0 + (note.lcm as f32).log2() } else { 1.0 };
     let bits = uniform - degree - lost as f32;
     if bits < 6.0 {
         return Err(Reason::DegreeTooHigh);
     }
     let points = ((BITS / bits).ceil() as u32).max(2);
     // Primes above 2⁶¹ whose product exceeds every coefficient cannot divide all of them.
-    let tall = note.tall * if narrow { note.lcm as f32 } else { 1.0 };
+    let tall = (note.tall * if narrow { note.lcm as f32 } else { 1.0 }).max(note.inner);
     if tall.is_nan() || tall > MAX_BITS {
         return Err(Reason::DegreeTooHigh);
     }
     let primes = ((tall / 61.0).floor() as u32 + 1).saturating_sub(2);
     if primes <= SHARED_PRIMES {
-        return Ok(Need { points, shared: primes, own: 0 });
+        // A prime divides an algebraic number in one of its embeddings more easily than an integer.
+        let own = if note.flags & Notes::ALGEBRAIC != 0 { 2 } else { 0 };
+        return Ok(Need { points, shared: primes, own });
     }
     // At most tall/61 of the 2³³ primes from which they are drawn can divide all coefficients.
     let each = 33.0 - (tall / 61.0).log2();

@@ -73,6 +73,7 @@ impl Target<'_> {
             let n = notes.note(*e);
             note.flags |= n.flags;
             note.lcm = lcm(note.lcm, n.lcm);
+            note.inner = note.inner.max(n.inner);
         }
         match self {
             Target::Sum(parts) => {

@@ -211,6 +211,17 @@ fn multiples_of_the_primes_in_use() {
     let (pxy, qxy) = (l.times(p, xy), l.times(q, xy));
     let rest = l.arena.sum(&[x2, pxy, qxy]);
     different(l, product, rest);
+    // The same hidden in an argument.
+    let hidden = l.arena.sub(product, rest);
+    let arg = l.arena.add(x, hidden);
+    let (a, b) = (l.function("U", 0, arg), l.function("U", 0, x));
+    different(l, a, b);
+    let (a, b) = (l.call(Function::Atan, arg), l.call(Function::Atan, x));
+    different(l, a, b);
+    let inverse = l.arena.pow(arg, -1);
+    let (c, d) = (l.call(Function::Cos, inverse), l.arena.pow(x, -1));
+    let d = l.call(Function::Cos, d);
+    assert!(!l.difference(c, d).is_proved());
 }
 
 #[test]
