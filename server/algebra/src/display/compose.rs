@@ -35,43 +35,10 @@ struct Part {
     key: TermKey,
     /// The number in front of it.
     size: Rational,
-    /// Where it has a sum that may take the sign.
-    free: Free,
 }
 
-/// Whether below the line, and which factor.
+/// Where a product has a sum that may take the sign, as in [`Summand::free`].
 type Free = Option<(bool, usize)>;
-
-impl Part {
-    /// Changes the sign, inside where that makes it positive.
-    fn negate(&mut self) {
-        let s = &mut self.summand;
-        if s.negative {
-            s.negative = false;
-            return;
-        }
-        let place = match (&mut s.form, self.free) {
-            (Form::Product { bottom, .. }, Some((true, i))) => bottom.get_mut(i),
-            (Form::Product { top, .. }, Some((false, i))) => top.get_mut(i),
-            (form, Some(_)) => Some(form),
-            (_, None) => None,
-        };
-        s.negative = !place.is_some_and(flip);
-    }
-}
-
-/// Changes the sign of a sum of both signs, or of its odd power.
-fn flip(form: &mut Form) -> bool {
-    match form {
-        Form::Sum(list) if list.iter().any(|s| s.negative) && list.len() > 1 => {
-            let taken = std::mem::take(list);
-            *form = lead_positive(Form::Sum(taken).signed(true));
-            true
-        }
-        Form::Power(base, e) if e.is_integer() && !e.is_even_integer() => flip(base),
-        _ => false,
-    }
-}
 
 /// A sum laid out.
 enum Parts {
@@ -194,18 +161,18 @@ impl<'a> Composer<'a> {
                 .collect();
             if c.is_one() || group.len() < 2 || group.len() == list.len() {
                 let (negative, form, free) = self.product(list[i].core, &list[i].coefficient);
-                out.push(Part { summand: Summand { negative, form }, key: list[i].key.clone(), size: c, free });
+                out.push(Part { summand: Summand { negative, form, free }, key: list[i].key.clone(), size: c });
                 continue;
             }
             let mut inner = Vec::new();
             let lead = list[i].coefficient.is_negative();
             for j in group {
                 done[j] = true;
-                let (negative, form, _) = self.product(list[j].core, &Rational::ONE);
-                inner.push(Summand { negative: negative ^ list[j].coefficient.is_negative() ^ lead, form });
+                let (negative, form, free) = self.product(list[j].core, &Rational::ONE);
+                inner.push(Summand { negative: negative ^ list[j].coefficient.is_negative() ^ lead, form, free });
             }
             let form = Form::Product { coefficient: c.clone(), top: vec![Form::Sum(inner)], bottom: vec![] };
-            out.push(Part { summand: Summand { negative: lead, form }, key: list[i].key.clone(), size: c, free: None });
+            out.push(Part { summand: Summand { negative: lead, form, free: None }, key: list[i].key.clone(), size: c });
         }
         if out.len() == 1 {
             let s = out.remove(0).summand;
@@ -251,7 +218,7 @@ impl<'a> Composer<'a> {
                         Parts::Sum(mut parts) => {
                             let (flip, free) = orientation(&parts, odd);
                             if flip {
-                                parts.iter_mut().for_each(Part::negate);
+                                parts.iter_mut().for_each(|p| p.summand.negate());
                                 negative ^= odd;
                             }
                             if free {
@@ -277,7 +244,7 @@ impl<'a> Composer<'a> {
         let free = turnable.as_ref().map(|t| (t.0, t.1));
         if negative && let Some((below, i, mut parts, e)) = turnable {
             // −k (x₁ − x₂) = k (x₂ − x₁).
-            parts.iter_mut().for_each(Part::negate);
+            parts.iter_mut().for_each(|p| p.summand.negate());
             let place = if below { &mut bottom[i] } else { &mut top[i] };
             *place = raise(assemble(parts), &e);
             negative = false;
@@ -416,7 +383,7 @@ fn orientation(parts: &[Part], odd: bool) -> (bool, bool) {
     let negatives = parts.iter().filter(|p| minus(p)).count();
     if parts[0].key.level.0 == 2 && negatives < parts.len() {
         // An acceleration leads and is positive, whatever the others are.
-        return (minus(&parts[0]), odd && parts[0].free.is_some());
+        return (minus(&parts[0]), odd && parts[0].summand.free.is_some());
     }
     if negatives == 0 || negatives == parts.len() {
         return (negatives > 0, false);
@@ -460,18 +427,16 @@ fn turn(form: &mut Form) -> bool {
                 if kept && !turn(&mut list[0].form) {
                     return false;
                 }
-                list.iter_mut().skip(usize::from(kept)).for_each(|s| s.negative = !s.negative);
-                let taken = std::mem::take(list);
-                *form = lead_positive(Form::Sum(taken));
+                list.iter_mut().skip(usize::from(kept)).for_each(Summand::negate);
+                Form::lead_positive(list);
                 true
             }
             // No minus here, but one further in that can be turned: g (1 − cos θ) − b.
             Form::Sum(list) if list.len() > 1 => {
                 let Some(i) = list.iter_mut().position(|s| turn(&mut s.form)) else { return false };
-                let mut taken = std::mem::take(list);
-                taken.iter_mut().for_each(|s| s.negative = true);
-                taken[i].negative = false;
-                *form = lead_positive(Form::Sum(taken));
+                list.iter_mut().for_each(|s| s.negative = true);
+                list[i].negative = false;
+                Form::lead_positive(list);
                 true
             }
             Form::Power(base, e) if e.is_integer() && !e.is_even_integer() => sum(base),
@@ -507,9 +472,7 @@ fn product(coefficient: Rational, mut top: Vec<Form>, bottom: Vec<Form>) -> Form
 fn lead_positive(form: Form) -> Form {
     match form {
         Form::Sum(mut list) => {
-            if let Some(first) = list.iter().position(|s| !s.negative) {
-                list[..=first].rotate_right(1);
-            }
+            Form::lead_positive(&mut list);
             Form::Sum(list)
         }
         form => form,

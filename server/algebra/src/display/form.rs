@@ -42,6 +42,25 @@ pub(crate) struct Summand {
     pub negative: bool,
     /// What is added or subtracted; never negative itself.
     pub form: Form,
+    /// Where in a product there is a sum that may take the sign: below the line or above, which factor.
+    pub free: Option<(bool, usize)>,
+}
+
+impl Summand {
+    /// Changes the sign, inside where that makes it positive.
+    pub fn negate(&mut self) {
+        if self.negative {
+            self.negative = false;
+            return;
+        }
+        let place = match (&mut self.form, self.free) {
+            (Form::Product { bottom, .. }, Some((true, i))) => bottom.get_mut(i),
+            (Form::Product { top, .. }, Some((false, i))) => top.get_mut(i),
+            (form, Some(_)) => Some(form),
+            (_, None) => None,
+        };
+        self.negative = !place.is_some_and(Form::flip);
+    }
 }
 
 /// A node of the presentational tree.
@@ -125,15 +144,35 @@ impl Form {
         }
     }
 
+    /// Changes the sign of a sum of both signs, or of its odd power, and says whether it could.
+    pub fn flip(&mut self) -> bool {
+        match self {
+            Form::Sum(list) if list.len() > 1 && list.iter().any(|s| s.negative) => {
+                list.iter_mut().for_each(Summand::negate);
+                Form::lead_positive(list);
+                true
+            }
+            Form::Power(base, e) if e.is_integer() && !e.is_even_integer() => base.flip(),
+            _ => false,
+        }
+    }
+
+    /// A positive summand first, if there is one.
+    pub fn lead_positive(list: &mut [Summand]) {
+        if let Some(first) = list.iter().position(|s| !s.negative) {
+            list[..=first].rotate_right(1);
+        }
+    }
+
     /// The form with a minus where `negative`.
     pub fn signed(self, negative: bool) -> Form {
         match self {
             form if !negative => form,
             Form::Sum(mut list) => {
-                list.iter_mut().for_each(|s| s.negative = !s.negative);
+                list.iter_mut().for_each(Summand::negate);
                 if list.len() == 1 && !list[0].negative { list.remove(0).form } else { Form::Sum(list) }
             }
-            form => Form::Sum(vec![Summand { negative: true, form }]),
+            form => Form::Sum(vec![Summand { negative: true, form, free: None }]),
         }
     }
 

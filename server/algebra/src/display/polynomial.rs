@@ -85,7 +85,7 @@ impl Table {
                 None => Kind::Other,
             },
         };
-        let (degree, accelerated) = if root == 1 { motion(arena, base, 0) } else { (0, false) };
+        let (degree, accelerated) = if root == 1 { motion(arena, base, 0, &mut HashMap::new()) } else { (0, false) };
         self.atoms.push(Atom { base, root, kind, degree, accelerated });
         self.numbers.insert((base, root), n);
         n
@@ -155,26 +155,32 @@ fn is_coordinate(arena: &Arena, e: Expr) -> bool {
 
 /// Degree in velocities and presence of accelerations, seen through sums and products. Insides nested very deeply count
 /// as at rest.
-fn motion(arena: &Arena, e: Expr, level: u32) -> (i32, bool) {
+fn motion(arena: &Arena, e: Expr, level: u32, memo: &mut HashMap<Expr, (i32, bool)>) -> (i32, bool) {
     if level > 20 {
         return (0, false);
     }
-    match arena.node(e) {
+    // Shared parts are looked at once: as a tree the expression may be exponentially larger.
+    if let Some(known) = memo.get(&e) {
+        return *known;
+    }
+    let result = match arena.node(e) {
         Node::Jet(..) | Node::Member { .. } => match derivative(arena, e) {
             Some(1) => (1, false),
             Some(_) => (0, true),
             None => (0, false),
         },
         Node::Sum(_, list) => list.iter().fold((0, false), |(d, a), t| {
-            let (x, y) = motion(arena, t.0, level + 1);
+            let (x, y) = motion(arena, t.0, level + 1, memo);
             (d.max(x), a | y)
         }),
-        Node::Product(list) => list.iter().fold((0, false), |(d, a), (b, e)| {
-            let (x, y) = motion(arena, *b, level + 1);
-            (d + x.saturating_mul(e.to_i64().unwrap_or(0) as i32), a | y)
+        Node::Product(list) => list.iter().fold((0i32, false), |(d, a), (b, e)| {
+            let (x, y) = motion(arena, *b, level + 1, memo);
+            (d.saturating_add(x.saturating_mul(e.to_i64().unwrap_or(0) as i32)), a | y)
         }),
         _ => (0, false),
-    }
+    };
+    memo.insert(e, result);
+    result
 }
 
 fn only_parameters(arena: &Arena, e: Expr) -> bool {

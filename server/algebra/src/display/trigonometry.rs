@@ -130,27 +130,27 @@ impl Rewriter<'_> {
         Ok(best)
     }
 
-    /// cos² + sin² = 1, angle by angle while it shortens.
+    /// cos² + sin² = 1, angle by angle, and addition theorems, what shortens most first.
     fn shorten(&mut self, mut best: Polynomial, budget: &mut Budget) -> Result<Polynomial, Stopped> {
         loop {
-            let mut improved = false;
+            let mut cost = self.cost(&best);
+            let mut shorter = None;
+            let mut versions = Vec::new();
+            versions.extend(self.contract(&best, budget)?);
             for angle in self.angles(&best) {
                 for sine in [true, false] {
-                    let q = self.pythagoras(&best, angle, sine, budget)?;
-                    if self.cost(&q) < self.cost(&best) {
-                        best = q;
-                        improved = true;
-                    }
+                    versions.push(self.pythagoras(&best, angle, sine, budget)?);
                 }
             }
-            if let Some(q) = self.contract(&best, budget)?
-                && self.cost(&q) < self.cost(&best)
-            {
-                best = q;
-                improved = true;
+            for q in versions {
+                if self.cost(&q) < cost {
+                    cost = self.cost(&q);
+                    shorter = Some(q);
+                }
             }
-            if !improved {
-                return Ok(best);
+            match shorter {
+                Some(q) => best = q,
+                None => return Ok(best),
             }
         }
     }

@@ -247,3 +247,63 @@ fn wedge_block() {
         &["kinetic 1/2 M X'^2", "kinetic 1/2 m ((X + s cos α)'^2 + (-s sin α)'^2)", "potential -m g s sin α"],
     );
 }
+
+#[test]
+fn pendulum_on_a_cart() {
+    check(
+        "pendulum_on_a_cart",
+        "x θ",
+        "",
+        &["kinetic 1/2 M x'^2 + 1/2 m ((x + l sin θ)'^2 + (l cos θ)'^2)", "potential 1/2 k x^2 - m g l cos θ"],
+    );
+}
+
+#[test]
+fn two_spherical_pendulums() {
+    check(
+        "two_spherical_pendulums",
+        "θ₁ φ₁ θ₂ φ₂",
+        "",
+        &[
+            "kinetic 1/2 m₁ ((l₁ sin θ₁ cos φ₁)'^2 + (l₁ sin θ₁ sin φ₁)'^2 + (l₁ cos θ₁)'^2)",
+            "kinetic 1/2 m₂ ((l₁ sin θ₁ cos φ₁ + l₂ sin θ₂ cos φ₂)'^2 + (l₁ sin θ₁ sin φ₁ + l₂ sin θ₂ sin φ₂)'^2 + (l₁ cos θ₁ + l₂ cos θ₂)'^2)",
+            "potential -m₁ g l₁ cos θ₁ - m₂ g (l₁ cos θ₁ + l₂ cos θ₂)",
+        ],
+    );
+}
+
+#[test]
+fn asymmetric_top() {
+    check(
+        "asymmetric_top",
+        "φ θ ψ",
+        "",
+        &[
+            "kinetic 1/2 A (φ' sin θ sin ψ + θ' cos ψ)^2 + 1/2 B (φ' sin θ cos ψ - θ' sin ψ)^2",
+            "kinetic 1/2 C (φ' cos θ + ψ')^2",
+            "potential m g l cos θ",
+        ],
+    );
+}
+
+#[test]
+fn fast_charge() {
+    check("fast_charge", "x y", "", &["lagrangian -m c^2 sqrt(1 - (x'^2 + y'^2)/c^2)", "lagrangian q A y x' - q V"]);
+}
+
+/// The equations in LaTeX.
+#[test]
+fn typeset() {
+    let mut s = System::new(
+        "θ₁ θ₂",
+        "",
+        &[
+            "kinetic 1/2 m₁ ((l₁ sin θ₁)'^2 + (-l₁ cos θ₁)'^2)",
+            "kinetic 1/2 m₂ ((l₁ sin θ₁ + l₂ sin θ₂)'^2 + (-l₁ cos θ₁ - l₂ cos θ₂)'^2)",
+            "potential -m₁ g l₁ cos θ₁ - m₂ g (l₁ cos θ₁ + l₂ cos θ₂)",
+        ],
+    );
+    let equations = s.equations();
+    let lines: Vec<String> = equations.into_iter().map(|e| s.print(e).latex()).collect();
+    insta::assert_snapshot!("typeset", lines.join("\n"));
+}
