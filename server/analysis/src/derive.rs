@@ -105,7 +105,7 @@ impl Session {
 
 fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
     let model = checked.model();
-    let answers = verdicts::answer(cx, model, !checked.conserved().is_empty());
+    let answers = verdicts::answer(cx, model);
     let mut symmetries = Vec::new();
     for claim in checked.symmetries() {
         symmetries.push(verdicts::answer_symmetry(cx, model, &claim.images));

@@ -12,9 +12,12 @@ use leastwise_mechanics::context::{Context, Memory, Parts};
 use leastwise_mechanics::energy::is_total_energy;
 use leastwise_mechanics::forms::{aligned, at_member};
 use leastwise_mechanics::lagrange::{self, FormParts, signed_parts};
-use leastwise_mechanics::mass::{mass_matrix, sparse_mass_matrix};
+use leastwise_mechanics::mass::{mass_rows, sparse_mass_matrix};
 use leastwise_mechanics::model::{Coordinate, Model, TermKind};
 use leastwise_mechanics::symmetry;
+
+/// Beyond so many coordinates the mass matrix is listed entry by entry.
+const MAX_DENSE: usize = 64;
 
 /// What a sheet is made with.
 pub(crate) struct Maker<'a> {
@@ -76,8 +79,25 @@ impl Maker<'_> {
         if large {
             entries = self.sparse_matrix(model)?;
         } else {
-            for row in mass_matrix(&mut self.cx(), model)? {
-                matrix.push(row.iter().map(|e| self.print_parts(e)).collect());
+            let rows = mass_rows(&mut self.cx(), model)?;
+            let n = rows.len();
+            if n <= MAX_DENSE {
+                let zero = self.print(Arena::ZERO);
+                for row in rows {
+                    let mut line = vec![zero.clone(); n];
+                    for (j, parts) in row {
+                        line[j] = self.print_parts(&parts);
+                    }
+                    matrix.push(line);
+                }
+            } else {
+                for (i, row) in rows.into_iter().enumerate() {
+                    for (j, parts) in row {
+                        let (row, column) =
+                            (model.coordinates[i].label(self.arena), model.coordinates[j].label(self.arena));
+                        entries.push(MassEntry { row, column, formula: self.print_parts(&parts) });
+                    }
+                }
             }
         }
         let energy = self.energy(model, answers)?;

@@ -9,7 +9,7 @@ use leastwise_grammar::tree::Severity;
 use leastwise_mechanics::context::{Context, Parts};
 use leastwise_mechanics::model::TermKind;
 use leastwise_mechanics::symmetry::{NoGenerator, Status};
-use leastwise_mechanics::verdicts::{Answers, Culprit, MassVerdict, SymmetryAnswer};
+use leastwise_mechanics::verdicts::{Answers, Culprit, MassVerdict, SymmetryAnswer, dependent_parts};
 use std::ops::Range;
 
 fn finding(code: &'static str, severity: Severity, range: Range<usize>, message: String) -> Finding {
@@ -93,7 +93,11 @@ fn places(checked: &Checked, culprits: &[Culprit]) -> Vec<(usize, Range<usize>)>
 
 /// `a`, `a` and `b`, `a`, `b` and `c`.
 fn list(names: &[String]) -> String {
-    let quoted: Vec<String> = names.iter().map(|n| format!("`{n}`")).collect();
+    const NAMED: usize = 5;
+    let mut quoted: Vec<String> = names.iter().take(NAMED).map(|n| format!("`{n}`")).collect();
+    if names.len() > NAMED {
+        quoted.push(format!("{} more", names.len() - NAMED));
+    }
     match quoted.as_slice() {
         [] => String::new(),
         [one] => one.clone(),
@@ -106,7 +110,9 @@ fn culprit_names(checked: &Checked, culprits: &[Culprit]) -> Vec<String> {
 }
 
 fn related_parts(checked: &Checked, rest: &[(usize, Range<usize>)]) -> Vec<Related> {
+    const SHOWN: usize = 8;
     rest.iter()
+        .take(SHOWN)
         .map(|(t, range)| Related {
             range: range.clone(),
             message: format!("`{}` has a part in it", checked.model().terms[*t].name),
@@ -127,9 +133,15 @@ fn cyclic(maker: &mut Maker<'_>, checked: &Checked, answers: &Answers, out: &mut
                 format!("whether `{q}` is cyclic is undecided: {reason}"),
             )),
             Verdict::Refuted(_) => {
-                let places = places(checked, &verdict.culprits);
-                let names = culprit_names(checked, &verdict.culprits);
-                let force = culprit_force(maker, checked, i, &verdict.culprits);
+                let mut cx =
+                    Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
+                let culprits = dependent_parts(&mut cx, checked.model(), i).unwrap_or_default();
+                let mut places = places(checked, &culprits);
+                if places.is_empty() {
+                    places.push((0, range.clone()));
+                }
+                let names = culprit_names(checked, &culprits);
+                let force = culprit_force(maker, checked, i, &culprits);
                 let force = force.map_or(String::new(), |f| format!(": it exerts the generalised force {f}"));
                 let verb = if names.len() == 1 { "depends" } else { "depend" };
                 let Some((_, at)) = places.first() else { continue };

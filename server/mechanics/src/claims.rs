@@ -2,9 +2,10 @@
 
 use crate::context::{Context, Parts};
 use crate::lagrange::jet_order;
-use crate::mass::{coasting, mass_matrix, right_sides};
+use crate::mass::{MassRows, blocks, coasting, dense, right_sides};
 use crate::model::Model;
 use leastwise_algebra::{Arena, Expr, Motion, Stopped, Verdict};
+use std::collections::HashSet;
 
 /// The verdict on a claim, and its rate.
 #[derive(Clone, PartialEq, Debug)]
@@ -36,29 +37,24 @@ impl std::fmt::Display for Unanswered {
     }
 }
 
-/// The accelerations' linear system, made once for a model.
-pub fn motion(cx: &mut Context<'_>, model: &Model) -> Result<Motion, Stopped> {
-    let matrix = mass_matrix(cx, model)?;
-    let mut mass = Vec::new();
-    for row in &matrix {
-        let mut out = Vec::new();
-        for entry in row {
-            out.push(cx.build(entry)?);
-        }
-        mass.push(out);
-    }
+/// The accelerations' linear system, of the coordinates whose accelerations are asked for and of those coupled to them.
+fn motion(cx: &mut Context<'_>, model: &Model, rows: &MassRows, asked: &[bool]) -> Result<(Vec<usize>, Motion), Stopped> {
+    let block = blocks(rows);
+    let wanted: HashSet<usize> = (0..asked.len()).filter(|&i| asked[i]).map(|i| block[i]).collect();
+    let of: Vec<usize> = (0..asked.len()).filter(|&i| wanted.contains(&block[i])).collect();
+    let mass = dense(cx, rows, &of)?;
     let mut rhs = Vec::new();
-    for b in right_sides(cx, model)? {
+    for b in right_sides(cx, model, &of)? {
         rhs.push(cx.build(&b)?);
     }
-    Ok(Motion { mass, rhs })
+    Ok((of, Motion { mass, rhs }))
 }
 
 /// Decides whether `claim` is constant along motions.
 pub fn examine(
     cx: &mut Context<'_>,
     model: &Model,
-    motion: Option<&Motion>,
+    rows: Option<&MassRows>,
     claim: Expr,
 ) -> Result<Claim, Stopped> {
     let rate = cx.arena.total(claim, cx.budget)?;
@@ -70,7 +66,7 @@ pub fn examine(
     if !model.constraints.is_empty() {
         return refuse(Unanswered::Constraints);
     }
-    let Some(motion) = motion else { return refuse(Unanswered::LargeFamily) };
+    let Some(rows) = rows else { return refuse(Unanswered::LargeFamily) };
     if jet_order(cx.arena, claim) > 1 {
         return refuse(Unanswered::Accelerations);
     }
@@ -80,7 +76,10 @@ pub fn examine(
         let v = q.jet(cx.arena, 1);
         slopes.push(cx.arena.partial(claim, v, cx.budget)?);
     }
-    let verdict = cx.zero.rate_is_zero(cx.arena, still, &slopes, motion, cx.budget);
+    let asked: Vec<bool> = slopes.iter().map(|&s| s != Arena::ZERO).collect();
+    let (of, motion) = motion(cx, model, rows, &asked)?;
+    let slopes: Vec<Expr> = of.iter().map(|&i| slopes[i]).collect();
+    let verdict = cx.zero.rate_is_zero(cx.arena, still, &slopes, &motion, cx.budget);
     Ok(Claim { rate, verdict: Ok(verdict) })
 }
 

@@ -1,6 +1,8 @@
 //! What every derivation works with: the arena, the zero test with its tables, a budget, and memory across edits.
 
+use crate::mass::MassRows;
 use crate::symmetry::Generator;
+use crate::verdicts::MassVerdict;
 use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, ZeroTest};
 use std::collections::HashMap;
 
@@ -11,6 +13,8 @@ pub struct Memory {
     pub(crate) variations: HashMap<Generator, MemoMap>,
     /// For each generator and order of the jets: the derivation of charges and of works.
     pub(crate) flows: HashMap<(Generator, u16), MemoMap>,
+    /// The last verdict on a mass matrix, with the assumptions and the matrix that it is of.
+    pub(crate) mass: Option<(u64, MassRows, MassVerdict)>,
     /// Velocity derivatives along motions without acceleration.
     pub(crate) coasting: MemoMap,
 }

@@ -4,27 +4,73 @@ use crate::context::{Context, Parts};
 use crate::lagrange::{by_coordinate, signed_parts};
 use crate::model::Model;
 use leastwise_algebra::{Arena, Derivation, Expr, Node, Role, Stopped};
+use std::collections::{BTreeMap, HashMap};
 
-/// The mass matrix of a model without large families, each entry as unsummed parts.
-pub fn mass_matrix(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Vec<Parts>>, Stopped> {
+/// The mass matrix of a model without large families: for each row the entries that are not zero, by column, each as
+/// unsummed parts.
+pub type MassRows = Vec<Vec<(usize, Parts)>>;
+
+/// Up to so many coordinates every pair is asked; beyond, only the velocities that a momentum contains.
+const ALL_PAIRS: usize = 64;
+
+/// The rows of the mass matrix. Costs one partial derivative for each part, coordinate and velocity in it.
+pub fn mass_rows(cx: &mut Context<'_>, model: &Model) -> Result<MassRows, Stopped> {
     let parts: Parts = signed_parts(model).concat();
     let velocities: Vec<Expr> = model.coordinates.iter().map(|q| q.jet(cx.arena, 1)).collect();
     let n = velocities.len();
-    let mut out = vec![vec![Parts::new(); n]; n];
+    let column: HashMap<Expr, usize> = velocities.iter().enumerate().map(|(j, &v)| (v, j)).collect();
+    let mut out: MassRows = vec![Vec::new(); n];
     for (i, q) in model.coordinates.iter().enumerate() {
-        let p = by_coordinate(cx, &parts, q, 1)?;
-        for j in i..n {
-            let mut entry = Parts::new();
-            for (forms, c) in &p {
-                for f in forms {
+        let mut row: BTreeMap<usize, Parts> = BTreeMap::new();
+        for (forms, c) in by_coordinate(cx, &parts, q, 1)? {
+            for f in forms {
+                let columns: Vec<usize> = if n <= ALL_PAIRS {
+                    (0..n).collect()
+                } else {
+                    cx.arena.atoms(f.expr).iter().filter_map(|a| column.get(a).copied()).collect()
+                };
+                for j in columns {
                     let d = cx.arena.partial(f.expr, velocities[j], cx.budget)?;
                     if d != Arena::ZERO {
-                        entry.push((d, c.clone()));
+                        row.entry(j).or_default().push((d, c.clone()));
                     }
                 }
             }
-            out[j][i] = entry.clone();
-            out[i][j] = entry;
+        }
+        out[i] = row.into_iter().collect();
+    }
+    Ok(out)
+}
+
+/// The coordinates that accelerate each other: for each coordinate the number of its block.
+pub fn blocks(rows: &MassRows) -> Vec<usize> {
+    let mut block: Vec<usize> = (0..rows.len()).collect();
+    fn root(block: &mut [usize], mut k: usize) -> usize {
+        while block[k] != k {
+            block[k] = block[block[k]];
+            k = block[k];
+        }
+        k
+    }
+    for (i, row) in rows.iter().enumerate() {
+        for (j, _) in row {
+            let (a, b) = (root(&mut block, i), root(&mut block, *j));
+            block[a.max(b)] = a.min(b);
+        }
+    }
+    (0..rows.len()).map(|k| root(&mut block, k)).collect()
+}
+
+/// The dense matrix of some coordinates.
+pub fn dense(cx: &mut Context<'_>, rows: &MassRows, of: &[usize]) -> Result<Vec<Vec<Expr>>, Stopped> {
+    let place: HashMap<usize, usize> = of.iter().enumerate().map(|(k, &i)| (i, k)).collect();
+    let mut out = vec![vec![Arena::ZERO; of.len()]; of.len()];
+    cx.budget.charge(of.len() * of.len())?;
+    for (k, &i) in of.iter().enumerate() {
+        for (j, parts) in &rows[i] {
+            if let Some(&l) = place.get(j) {
+                out[k][l] = cx.build(parts)?;
+            }
         }
     }
     Ok(out)
@@ -90,11 +136,12 @@ pub fn coasting(cx: &mut Context<'_>, e: Expr) -> Result<Expr, Stopped> {
     result
 }
 
-/// The right sides b of M a = b: minus the equations' residuals at zero acceleration, unsummed.
-pub fn right_sides(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Parts>, Stopped> {
+/// The right sides b of M a = b for some coordinates: minus the equations' residuals at zero acceleration, unsummed.
+pub fn right_sides(cx: &mut Context<'_>, model: &Model, of: &[usize]) -> Result<Vec<Parts>, Stopped> {
     let parts: Parts = signed_parts(model).concat();
     let mut out = Vec::new();
-    for q in &model.coordinates {
+    for &i in of {
+        let q = &model.coordinates[i];
         let mut b = Parts::new();
         for (forms, c) in by_coordinate(cx, &parts, q, 1)? {
             for f in forms {
@@ -119,8 +166,8 @@ pub fn right_sides(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Parts>, St
 }
 
 /// The coordinates in whose equations of motion no acceleration of theirs or of others occurs: without kinetic term.
-pub fn without_inertia(matrix: &[Vec<Parts>]) -> Vec<usize> {
-    (0..matrix.len()).filter(|&i| matrix[i].iter().all(Vec::is_empty)).collect()
+pub fn without_inertia(rows: &MassRows) -> Vec<usize> {
+    (0..rows.len()).filter(|&i| rows[i].is_empty()).collect()
 }
 
 #[cfg(test)]
@@ -134,13 +181,14 @@ mod tests {
     fn check(mut f: Fixture) {
         let model = f.model.clone();
         let mut cx = f.cx();
-        let m = mass_matrix(&mut cx, &model).unwrap();
-        let b = right_sides(&mut cx, &model).unwrap();
+        let m = mass_rows(&mut cx, &model).unwrap();
+        let all: Vec<usize> = (0..m.len()).collect();
+        let b = right_sides(&mut cx, &model, &all).unwrap();
         for (i, q) in model.coordinates.iter().enumerate() {
             let mut gap = Parts::new();
-            for (j, other) in model.coordinates.iter().enumerate() {
-                let a = other.jet(cx.arena, 2);
-                for (e, c) in &m[i][j] {
+            for (j, entry) in &m[i] {
+                let a = model.coordinates[*j].jet(cx.arena, 2);
+                for (e, c) in entry {
                     gap.push((cx.arena.mul(*e, a), c.clone()));
                 }
             }

@@ -7,10 +7,11 @@ use crate::energy::{Energy, energy};
 use crate::forms::aligned;
 use crate::gauge::gauge_term;
 use crate::lagrange::{constraints_at_rest, force, generalised, questions, residual, signed_parts};
-use crate::mass::{mass_matrix, without_inertia};
+use crate::mass::{MassRows, blocks, dense, mass_rows, without_inertia};
 use crate::model::{Image, Model};
 use crate::symmetry::{self, Generator, NoGenerator, Status, Symmetry};
-use leastwise_algebra::{Arena, Expr, Motion, Rational, Reason, Sign, Stopped, Verdict};
+use leastwise_algebra::{Arena, Expr, Rational, Reason, Sign, Stopped, Verdict};
+use std::collections::BTreeMap;
 
 /// A culprit: a term, and its additive parts that break something.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -28,8 +29,6 @@ pub struct Cyclic {
     pub cyclic: Verdict,
     /// Whether ∂L/∂q + 𝒬 ≡ 0 and no reaction can act.
     pub momentum: Verdict,
-    /// The parts that depend on it, where it is not cyclic.
-    pub culprits: Vec<Culprit>,
 }
 
 /// The answer to a symmetry claim.
@@ -80,12 +79,12 @@ pub struct Answers {
     pub timely: Vec<Culprit>,
     /// The mass matrix.
     pub mass: MassVerdict,
-    /// M and b of the accelerations, where they are solved for.
-    pub motion: Option<Motion>,
+    /// The mass matrix's rows, where accelerations are solved for.
+    pub rows: Option<MassRows>,
 }
 
 /// Answers what concerns the model alone.
-pub fn answer(cx: &mut Context<'_>, model: &Model, with_motion: bool) -> Result<Answers, Stopped> {
+pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
     let signed = signed_parts(model);
     let all: Parts = signed.concat();
     let mut cyclic = Vec::new();
@@ -105,19 +104,7 @@ pub fn answer(cx: &mut Context<'_>, model: &Model, with_motion: bool) -> Result<
         } else {
             verdict.clone()
         };
-        let culprits = if matches!(verdict, Verdict::Refuted(_)) {
-            let mut lists = Vec::new();
-            for t in &signed {
-                for p in t {
-                    lists.push(force(cx, &vec![p.clone()], q)?);
-                }
-            }
-            let (_, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
-            culprits(cx, model, rows)?.0
-        } else {
-            Vec::new()
-        };
-        cyclic.push(Cyclic { cyclic: verdict, momentum, culprits });
+        cyclic.push(Cyclic { cyclic: verdict, momentum });
     }
     let energy = energy(cx, model)?;
     let timely = if matches!(energy.autonomous, Verdict::Refuted(_)) {
@@ -133,56 +120,87 @@ pub fn answer(cx: &mut Context<'_>, model: &Model, with_motion: bool) -> Result<
         Vec::new()
     };
     let large = model.coordinates.iter().any(|q| q.members.is_some());
-    let mut motion = None;
-    let mass = if large || model.coordinates.is_empty() {
-        MassVerdict::Regular
-    } else {
-        let matrix = mass_matrix(cx, model)?;
-        if with_motion {
-            motion = Some(claims::motion(cx, model)?);
-        }
-        mass_verdict(cx, &matrix)?
-    };
-    Ok(Answers { cyclic, energy, timely, mass, motion })
+    let mut rows = None;
+    let mut mass = MassVerdict::Regular;
+    if !large && !model.coordinates.is_empty() {
+        let found = mass_rows(cx, model)?;
+        mass = mass_verdict(cx, &found)?;
+        rows = Some(found);
+    }
+    Ok(Answers { cyclic, energy, timely, mass, rows })
 }
 
-fn mass_verdict(cx: &mut Context<'_>, matrix: &[Vec<Parts>]) -> Result<MassVerdict, Stopped> {
-    let idle = without_inertia(matrix);
+/// The parts of terms that depend on a coordinate: a smallest set without which ∂L/∂q vanishes.
+pub fn dependent_parts(cx: &mut Context<'_>, model: &Model, i: usize) -> Result<Vec<Culprit>, Stopped> {
+    let q = &model.coordinates[i];
+    let mut lists = Vec::new();
+    for p in signed_parts(model).concat() {
+        lists.push(force(cx, &vec![p], q)?);
+    }
+    let (_, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
+    Ok(culprits(cx, model, rows)?.0)
+}
+
+/// The verdict on the mass matrix, remembered as long as it does not change.
+fn mass_verdict(cx: &mut Context<'_>, rows: &MassRows) -> Result<MassVerdict, Stopped> {
+    let facts = cx.zero.assumptions().fingerprint();
+    if let Some((f, known, verdict)) = &cx.memory.mass
+        && *f == facts
+        && known == rows
+    {
+        return Ok(verdict.clone());
+    }
+    let verdict = judge_mass(cx, rows)?;
+    cx.memory.mass = Some((facts, rows.clone(), verdict.clone()));
+    Ok(verdict)
+}
+
+/// More coordinates than this in one block are not eliminated.
+const MAX_BLOCK: usize = 128;
+
+fn judge_mass(cx: &mut Context<'_>, rows: &MassRows) -> Result<MassVerdict, Stopped> {
+    let idle = without_inertia(rows);
     if !idle.is_empty() {
         return Ok(MassVerdict::Singular(idle));
     }
-    let mut built = Vec::new();
-    for row in matrix {
-        let mut out = Vec::new();
-        for entry in row {
-            out.push(cx.build(entry)?);
+    let block = blocks(rows);
+    let mut members: BTreeMap<usize, Vec<usize>> = BTreeMap::new();
+    for (i, &b) in block.iter().enumerate() {
+        members.entry(b).or_default().push(i);
+    }
+    let mut undecided = None;
+    for of in members.values() {
+        if of.len() > MAX_BLOCK {
+            undecided = Some(Reason::TooLarge.to_string());
+            continue;
         }
-        built.push(out);
-    }
-    match cx.zero.determinant_is_zero(cx.arena, &built, cx.budget) {
-        Verdict::Proved => return Ok(MassVerdict::Singular(Vec::new())),
-        Verdict::Undecided(r) => return Ok(MassVerdict::Undecided(r.to_string())),
-        Verdict::Refuted(_) => {}
-    }
-    // A positive definite matrix has positive principal minors [Sylvester]; one that is never positive refutes it.
-    for i in 0..built.len() {
-        if matches!(cx.zero.sign_of(cx.arena, built[i][i], cx.budget), Sign::Negative | Sign::NonPositive | Sign::Zero) {
-            return Ok(MassVerdict::NotPositive(vec![i]));
+        let matrix = dense(cx, rows, of)?;
+        match cx.zero.determinant_is_zero(cx.arena, &matrix, cx.budget) {
+            Verdict::Proved => return Ok(MassVerdict::Singular(Vec::new())),
+            Verdict::Undecided(r) => undecided = Some(r.to_string()),
+            Verdict::Refuted(_) => {}
         }
-    }
-    for i in 0..built.len().min(24) {
-        for j in 0..i {
-            if built[i][j] == Arena::ZERO {
-                continue;
-            }
-            let (a, b) = (cx.arena.mul(built[i][i], built[j][j]), cx.arena.pow(built[i][j], 2));
-            let minor = cx.arena.sub(a, b);
-            if matches!(cx.zero.sign_of(cx.arena, minor, cx.budget), Sign::Negative | Sign::NonPositive) {
-                return Ok(MassVerdict::NotPositive(vec![j, i]));
+        // A positive definite matrix has positive principal minors [Sylvester]; one that is never positive refutes it.
+        for i in 0..of.len() {
+            let sign = cx.zero.sign_of(cx.arena, matrix[i][i], cx.budget);
+            if matches!(sign, Sign::Negative | Sign::NonPositive | Sign::Zero) {
+                return Ok(MassVerdict::NotPositive(vec![of[i]]));
             }
         }
+        for i in 0..of.len().min(24) {
+            for j in 0..i {
+                if matrix[i][j] == Arena::ZERO {
+                    continue;
+                }
+                let (a, b) = (cx.arena.mul(matrix[i][i], matrix[j][j]), cx.arena.pow(matrix[i][j], 2));
+                let minor = cx.arena.sub(a, b);
+                if matches!(cx.zero.sign_of(cx.arena, minor, cx.budget), Sign::Negative | Sign::NonPositive) {
+                    return Ok(MassVerdict::NotPositive(vec![of[j], of[i]]));
+                }
+            }
+        }
     }
-    Ok(MassVerdict::Regular)
+    Ok(undecided.map_or(MassVerdict::Regular, MassVerdict::Undecided))
 }
 
 /// Whom to blame that the rows do not sum to zero. `rows` holds, for each additive part of each term in order, what
@@ -219,8 +237,21 @@ fn culprits(cx: &mut Context<'_>, model: &Model, rows: Vec<Vec<Expr>>) -> Result
     Ok((out, blamed.smallest))
 }
 
+/// More summands than this are not compared with each other: all that do not vanish are blamed.
+const MAX_COMPARED: usize = 256;
+
 /// Blames summands given by expressions; `None` where their residues cannot be told.
 fn blamed(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Option<Blamed>, Stopped> {
+    let live: Vec<usize> =
+        (0..summands.len()).filter(|&k| summands[k].iter().any(|&e| e != Arena::ZERO)).collect();
+    if live.len() > MAX_COMPARED {
+        return Ok(Some(Blamed { culprits: live, smallest: false }));
+    }
+    if live.len() < summands.len() {
+        let kept: Vec<Vec<Expr>> = live.iter().map(|&k| summands[k].clone()).collect();
+        let found = blamed(cx, &kept)?;
+        return Ok(found.map(|b| Blamed { culprits: b.culprits.iter().map(|&k| live[k]).collect(), ..b }));
+    }
     // As many residues as summands and some more tell every dependence.
     let width = summands.first().map_or(1, Vec::len).max(1);
     let length = (summands.len() + 4).div_ceil(width).max(2);
@@ -352,7 +383,7 @@ pub fn answer_claim(
     known: &[Expr],
     claim: Expr,
 ) -> Result<claims::Claim, Stopped> {
-    let mut result = claims::examine(cx, model, answers.motion.as_ref(), claim)?;
+    let mut result = claims::examine(cx, model, answers.rows.as_ref(), claim)?;
     if matches!(result.verdict, Err(Unanswered::LargeFamily)) {
         let energy_holds = matches!(answers.energy.conserved, Verdict::Proved);
         let energy = answers.energy.function;
@@ -428,7 +459,7 @@ mod tests {
     fn the_energy_is_conserved_and_claims_are_told_apart() {
         let mut f = kepler();
         let model = f.model.clone();
-        let answers = answer(&mut f.cx(), &model, true).unwrap();
+        let answers = answer(&mut f.cx(), &model).unwrap();
         assert_eq!(answers.energy.conserved, Verdict::Proved);
         assert_eq!(answers.mass, MassVerdict::Regular);
         // The x component of the Laplace–Runge–Lenz vector [GPS §3.9], and one with a wrong sign.
