@@ -14,6 +14,18 @@ use smallvec::SmallVec;
 /// Groups with more terms than this keep their products.
 const MAX_GROUP: usize = 64;
 
+/// Longer polynomials are not rewritten in ways that a reader does not expect.
+const MAX_UNEXPECTED: usize = 400;
+
+/// A rewriting that may be left out where it grows too large; the end of the budget is the end.
+fn optional(result: Result<Polynomial, Stopped>, budget: &Budget) -> Result<Option<Polynomial>, Stopped> {
+    match result {
+        Ok(p) => Ok(Some(p)),
+        Err(Stopped::TooLarge) if budget.left() > 0 => Ok(None),
+        Err(other) => Err(other),
+    }
+}
+
 /// Rewrites polynomials.
 pub(crate) struct Rewriter<'a> {
     pub arena: &'a mut Arena,
@@ -53,7 +65,8 @@ impl Rewriter<'_> {
         let list = groups(self.table, p);
         let mut best = Vec::with_capacity(list.len());
         for (other, group) in &list {
-            best.push((other.clone(), self.best(group, budget)?));
+            let shorter = self.best(group, budget);
+            best.push((other.clone(), optional(shorter, budget)?.unwrap_or_else(|| group.clone())));
         }
         let mut push = |p: Polynomial, expected: bool| {
             if !out.iter().any(|x| x.0 == p) {
@@ -66,14 +79,22 @@ impl Rewriter<'_> {
             return Ok(vec![(best, true)]);
         }
         push(best.clone(), true);
+        if p.len() > MAX_UNEXPECTED {
+            return Ok(out);
+        }
         for sine in [true, false] {
-            let mut q = best.clone();
+            let mut q = Ok(best.clone());
             for angle in 0..self.table.angles.len() as u32 {
-                q = self.pythagoras(&q, angle, sine, budget)?;
+                q = q.and_then(|q| self.pythagoras(&q, angle, sine, budget));
             }
+            if let Some(q) = optional(q, budget)? {
+                push(q, false);
+            }
+        }
+        let sums = self.sums(p, true, budget);
+        if let Some(q) = optional(sums, budget)? {
             push(q, false);
         }
-        push(self.sums(p, true, budget)?, false);
         Ok(out)
     }
 

@@ -203,3 +203,19 @@ fn large_and_deep() {
     let layout = textbook(&mut a, q, &DisplayOptions::default(), &mut crate::budget::Budget::new(0));
     assert_eq!(layout.text(), "(ẋ + x)²");
 }
+
+/// A rewriting that would grow past the cap is left out; the rest is still collected.
+#[test]
+fn close_to_the_cap() {
+    let mut a = Arena::new();
+    let names = Names::new("x0 x1 x2 x3 x4 x5 x6", "");
+    let terms: Vec<String> =
+        (0..200).map(|i| format!("a{} sin(x{}) cos(x{}) x{}'", i % 41, i % 7, i % 5, i % 3)).collect();
+    let e = read(&mut a, &names, &terms.join(" + "));
+    let options = DisplayOptions { monomials: 250, ..DisplayOptions::default() };
+    let source = verbatim(&a, e, &options).operations();
+    let layout = textbook(&mut a, e, &options, &mut budget());
+    assert!(2 * layout.operations() < source, "{} of {source}", layout.operations());
+    let shown = layout.to_expr(&mut a).unwrap();
+    assert!(equal(&mut a, e, shown));
+}
