@@ -1,10 +1,11 @@
 //! What may be taken for granted.
 
+use super::points::NEAR;
 use super::ranges::Range;
 use super::signs::Sign;
 use crate::arena::{Arena, Expr, Node, Symbol, mix, mix_text};
 use crate::rational::Rational;
-use hashbrown::HashMap;
+use hashbrown::{HashMap, HashSet};
 
 /// A comparison with zero.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
@@ -44,10 +45,13 @@ const MANY_FACTS: usize = 300;
 #[derive(Clone, Default, Debug)]
 pub struct Assumptions {
     facts: Vec<(Expr, Relation)>,
+    seen: HashSet<(Expr, Relation)>,
     atoms: HashMap<u64, Range>,
     families: HashMap<u64, Range>,
     /// The signs of other expressions, by structural key, for both the expression and its negative.
     signs: HashMap<u64, Sign>,
+    /// Whether something is known of a far member alone.
+    members: bool,
     fingerprint: u64,
 }
 
@@ -67,10 +71,14 @@ impl Assumptions {
 
     /// Takes `difference ⋚ 0` for granted. A fact of the member of a family at a symbolic index holds for all members.
     pub fn assume(&mut self, arena: &mut Arena, difference: Expr, relation: Relation) {
-        if self.facts.contains(&(difference, relation)) {
+        if !self.seen.insert((difference, relation)) {
             return;
         }
         self.facts.push((difference, relation));
+        self.members |= arena.atoms(difference).iter().any(|x| match arena.node(*x) {
+            Node::Symbol(s) | Node::Jet(s, _) => arena.info(*s).member.is_some_and(|k| k > NEAR),
+            _ => false,
+        });
         // The order of the facts does not matter.
         self.fingerprint = self.fingerprint.wrapping_add(mix(mix(0xA55, arena.key(difference)), relation as u64 + 1));
         if let Some((atom, slope, constant)) = linear_in_one_atom(arena, difference) {
@@ -172,6 +180,16 @@ impl Assumptions {
     /// The bounds that hold for all members of a family.
     pub(crate) fn family(&self, arena: &Arena, family: Symbol, order: u16) -> Option<&Range> {
         self.families.get(&family_key(arena, family, order))
+    }
+
+    /// Whether the far members of a family do not all have the same bounds.
+    pub(crate) fn tell_members_apart(&self) -> bool {
+        self.members
+    }
+
+    /// Whether the difference is linear in one atom, so that its bounds say all.
+    pub(crate) fn bounds_one_atom(arena: &Arena, difference: Expr) -> bool {
+        linear_in_one_atom(arena, difference).is_some()
     }
 
     /// The facts as they were given.

@@ -2,7 +2,7 @@
 
 use super::field::{Element, Field, TURN, inverse_modulo, mul_modulo};
 use super::plan::{Factor, Kind, LogTerm, Plan};
-use super::points::{Env, Index, Point, atom, atom_value, draw, index, level};
+use super::points::{Env, Index, Point, atom, atom_value, draw, index, level, shared};
 use super::table::{Domain, Place, Values};
 use crate::arena::{Expr, Node};
 use crate::function::Function;
@@ -32,6 +32,14 @@ impl Domain for FieldPoint {
 
     fn plus(&self, a: Element, b: Element) -> Element {
         self.field.add2(a, b)
+    }
+
+    fn times(&self, a: Element, count: i64) -> Element {
+        if count == 1 { a } else { self.field.scale2(a, self.field.residue(count.unsigned_abs())) }
+    }
+
+    fn near(&self) -> bool {
+        self.point.near
     }
 
     fn symbolic_sum(&self, at: Place<'_>, e: Expr) -> Element {
@@ -98,9 +106,10 @@ impl Domain for FieldPoint {
             Node::Call(g, args) => self.call(values, *g, args).unwrap_or(NOWHERE),
             Node::Unspecified { function, index: i, orders, args } => {
                 let name = super::assumptions::atom_key;
+                let near = |k: Option<i64>| if self.point.near { shared(at.arena, *function, k) } else { k };
                 let key = match i.map(|i| index(at.arena, i, env)) {
-                    None => name(at.arena, *function, None, 0),
-                    Some(Index::At(k)) => name(at.arena, *function, Some(k), 0),
+                    None => name(at.arena, *function, near(None), 0),
+                    Some(Index::At(k)) => name(at.arena, *function, near(Some(k)), 0),
                     Some(Index::Free(k)) => k ^ name(at.arena, *function, None, 0).rotate_left(7),
                 };
                 let mut words = vec![key, 0xF];
@@ -146,7 +155,7 @@ impl FieldPoint {
     }
 
     fn atom(&self, at: Place<'_>, e: Expr, env: &Env) -> Element {
-        let (key, sign) = atom(at.arena, at.facts, e, env);
+        let (key, sign) = atom(at.arena, at.facts, e, env, self.point.near);
         atom_value(&self.field, &self.point, key, sign)
     }
 

@@ -3,8 +3,10 @@
 use super::assumptions::Assumptions;
 use super::field::TURN;
 use super::plan::{self, Kind, Made, Plan};
+use super::points::NEAR;
 use super::signs::{self, Sign};
-use crate::arena::{Arena, Expr, Node, Role};
+use super::table::LONG;
+use crate::arena::{Arena, Expr, Node, Role, Symbol};
 use crate::budget::{Budget, Stopped};
 use crate::function::Function;
 use crate::rational::Rational;
@@ -92,6 +94,8 @@ impl Notes {
     pub const CONSTANTS: u16 = 8192;
     /// Roots of numbers or parts of a turn: algebraic numbers, whose conjugates multiply the height.
     pub const ALGEBRAIC: u16 = 16384;
+    /// Sums over long ranges.
+    pub const LONG: u16 = 32768;
 
     pub fn new() -> Notes {
         Notes { list: Vec::new(), plans: Vec::new(), pending: HashMap::new(), constants: HashMap::new() }
@@ -289,12 +293,16 @@ impl Notes {
                 let index_like = |x: Expr| self.is_affine_in_bound_indices(arena, x);
                 if bit != 0 && index_like(*lower) && index_like(*upper) {
                     let (order, outside) = self.bound_plan(arena, *body, bit, budget)?;
-                    plan = Some(Plan::Bound { order, outside });
+                    let far = far_start(arena, &order, *index);
+                    plan = Some(Plan::Bound { order, outside, far });
                     // A range of k values: degrees of denominators add up, heights grow by log₂ k.
                     let count = match (arena.as_i64(*lower), arena.as_i64(*upper)) {
                         (Some(a), Some(b)) => (b.saturating_sub(a) as f32 + 1.0).max(1.0),
                         _ => 1000.0,
                     };
+                    if count > LONG as f32 {
+                        n.flags |= Self::LONG;
+                    }
                     n.den = body_note.den * count;
                     n.num = body_note.num + n.den;
                     n.deep = body_note.deep * count;
@@ -474,6 +482,33 @@ impl Notes {
         }
         Ok((order.into(), outside.into()))
     }
+}
+
+/// The value of the index from which on all members in a summand are far, where the index stands in members only.
+fn far_start(arena: &Arena, order: &[Expr], index: Symbol) -> Option<i64> {
+    // The offset c of a member's index i + c.
+    let offset = |e: Expr| match arena.node(e) {
+        Node::Symbol(s) => (*s == index).then_some(0),
+        Node::Sum(k, terms) => match terms.as_ref() {
+            [(x, c)] if c.is_one() && matches!(arena.node(*x), Node::Symbol(s) if *s == index) => k.to_i64(),
+            _ => None,
+        },
+        _ => None,
+    };
+    let mut start = i64::MIN;
+    for &x in order {
+        let at = match arena.node(x) {
+            Node::Member { index, .. } => Some(*index),
+            Node::Unspecified { index, .. } => *index,
+            // The index itself, or an inner sum.
+            Node::Symbol(_) | Node::Bound { .. } => return None,
+            _ => None,
+        };
+        if let Some(i) = at {
+            start = start.max((NEAR + 1).checked_sub(offset(i)?)?);
+        }
+    }
+    (start > i64::MIN).then_some(start)
 }
 
 /// 10 ± 2√5 and 2 ± √2 up to a positive factor, whose roots are the sines of 36°, 72° and 22.5°: the field knows them.

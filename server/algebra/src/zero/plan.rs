@@ -60,7 +60,8 @@ pub(crate) enum Plan {
     /// Σ logarithms.
     Log(Box<[LogTerm]>),
     /// A sum over a range of numbers. `order`: the nodes that depend on this index and no inner one, children first.
-    Bound { order: Box<[Expr]>, outside: Box<[Expr]> },
+    /// `far`: from this value of the index on all members in the summand are beyond [`super::points::NEAR`].
+    Bound { order: Box<[Expr]>, outside: Box<[Expr]>, far: Option<i64> },
 }
 
 impl Plan {

@@ -21,6 +21,8 @@ pub(crate) struct Point {
     pub flips: u16,
     /// Whether the point is used for few nodes or only once.
     pub sparse: bool,
+    /// Whether all far members of a family have the same value.
+    pub near: bool,
 }
 
 /// The fields in use. The first two are fixed, further ones are drawn when many primes are needed.
@@ -67,22 +69,68 @@ impl Fields {
 
 /// The standard points, by turns over the first two primes.
 pub(crate) fn standard(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 1), free: false, loose: false, flips: 0, sparse: false }
+    Point {
+        field: k % 2,
+        seed: mix(SEED, k as u64 + 1),
+        free: false,
+        loose: false,
+        flips: 0,
+        sparse: false,
+        near: false,
+    }
 }
 
 /// A point where roots and absolute values are atoms: what vanishes there vanishes whatever their values are.
 pub(crate) fn loose(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x40001), free: false, loose: true, flips: 0, sparse: false }
+    Point {
+        field: k % 2,
+        seed: mix(SEED, k as u64 + 0x40001),
+        free: false,
+        loose: true,
+        flips: 0,
+        sparse: false,
+        near: false,
+    }
 }
 
 /// A point where assumptions do not narrow the draw.
 pub(crate) fn unconstrained(k: u32) -> Point {
-    Point { field: k % 2, seed: mix(SEED, k as u64 + 0x20001), free: true, loose: false, flips: 0, sparse: true }
+    Point {
+        field: k % 2,
+        seed: mix(SEED, k as u64 + 0x20001),
+        free: true,
+        loose: false,
+        flips: 0,
+        sparse: true,
+        near: false,
+    }
 }
 
 /// A point over a field of its own.
 pub(crate) fn over(field: u32, k: u32) -> Point {
-    Point { field, seed: mix(SEED, k as u64 + 0x30001), free: false, loose: false, flips: 0, sparse: false }
+    Point {
+        field,
+        seed: mix(SEED, k as u64 + 0x30001),
+        free: false,
+        loose: false,
+        flips: 0,
+        sparse: false,
+        near: false,
+    }
+}
+
+/// Members beyond this number are far.
+pub(crate) const NEAR: i64 = 40;
+
+/// A point where all far members of a family have the same value, so that long sums are short. What is not zero there
+/// is not zero.
+pub(crate) fn near() -> Point {
+    Point { near: true, ..standard(0) }
+}
+
+/// The member whose value a member has where all far ones have the same: the first far one.
+pub(crate) fn shared(arena: &Arena, s: Symbol, member: Option<i64>) -> Option<i64> {
+    member.or(arena.info(s).member).map(|k| k.min(NEAR + 1))
 }
 
 /// A point over a field of its own that is used once.
@@ -175,16 +223,19 @@ pub(crate) fn index(arena: &Arena, e: Expr, env: &Env) -> Index {
 }
 
 /// The name of an atom as a number and what is known of its sign.
-pub(crate) fn atom(arena: &Arena, facts: &Assumptions, e: Expr, env: &Env) -> (u64, Sign) {
+pub(crate) fn atom(arena: &Arena, facts: &Assumptions, e: Expr, env: &Env, near: bool) -> (u64, Sign) {
     let silent = facts.says_nothing_of_atoms();
     let sign = |s: Symbol, member: Option<i64>, order: u16| {
         if silent { Sign::Unknown } else { facts.range(arena, s, member, order).sign() }
     };
+    let named = |s: Symbol, member: Option<i64>, order: u16| {
+        atom_key(arena, s, if near { shared(arena, s, member) } else { member }, order)
+    };
     match arena.node(e) {
-        Node::Symbol(s) => (atom_key(arena, *s, None, 0), sign(*s, None, 0)),
-        Node::Jet(s, n) => (atom_key(arena, *s, None, *n), sign(*s, None, *n)),
+        Node::Symbol(s) => (named(*s, None, 0), sign(*s, None, 0)),
+        Node::Jet(s, n) => (named(*s, None, *n), sign(*s, None, *n)),
         Node::Member { family, index: i, order } => match index(arena, *i, env) {
-            Index::At(k) => (atom_key(arena, *family, Some(k), *order), sign(*family, Some(k), *order)),
+            Index::At(k) => (named(*family, Some(k), *order), sign(*family, Some(k), *order)),
             Index::Free(key) => (hash(&[atom_key(arena, *family, None, *order), key]), sign(*family, None, *order)),
         },
         _ => (arena.key(e), Sign::Unknown),

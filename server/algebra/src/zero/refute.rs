@@ -1,6 +1,6 @@
 //! Refutation: a real point where the value is not zero, or atoms without relations.
 
-use super::assumptions::Relation;
+use super::assumptions::{Assumptions, Relation};
 use super::notes::{Note, Notes};
 use super::plan::Plan;
 use super::roots::Radicals;
@@ -134,10 +134,13 @@ impl ZeroTest {
             self.notes.analyse(arena, &self.facts, e, budget)?;
             let at = Place { arena, notes: &self.notes, facts: &self.facts };
             let v = table.value(at, e, budget)?;
-            // A member at a symbolic index stands for all of them, which are drawn inside their bounds.
-            let family = matches!(arena.node(e), Node::Member { .. });
-            fits &= family
-                || v.exists()
+            // A member at a symbolic index stands for all of them, which are drawn inside their bounds. Other
+            // comparisons of such members cannot be checked.
+            let symbolic = self.notes.note(e).flags & Notes::SYMBOLIC != 0;
+            let bounds = Assumptions::bounds_one_atom(arena, e);
+            fits &= symbolic && bounds && relation != Relation::NotEqual
+                || !symbolic
+                    && v.exists()
                     && match relation {
                         Relation::Greater => v.lo > 0.0,
                         Relation::GreaterEqual => v.lo >= 0.0,

@@ -9,7 +9,7 @@ use crate::budget::{Budget, Stopped};
 use hashbrown::HashMap;
 
 /// Ranges from this length on are first looked at with a free index.
-const LONG: i64 = 64;
+pub(crate) const LONG: i64 = 64;
 
 /// What an evaluation reads beside the values.
 #[derive(Clone, Copy)]
@@ -35,6 +35,10 @@ pub(crate) trait Domain {
     fn exists(v: Self::Value) -> bool;
     /// The sum.
     fn plus(&self, a: Self::Value, b: Self::Value) -> Self::Value;
+    /// The product with a number of summands.
+    fn times(&self, a: Self::Value, count: i64) -> Self::Value;
+    /// Whether all far members of a family have the same value at this point.
+    fn near(&self) -> bool;
     /// The value of any node but a sum over a range.
     fn compute(&self, at: Place<'_>, values: &Values<Self::Value>, e: Expr, env: &Env) -> Self::Value;
     /// The value of a sum over a range that is not a range of numbers.
@@ -124,7 +128,7 @@ impl<D: Domain> Table<D> {
 
     fn compute(&mut self, at: Place<'_>, e: Expr, env: &Env, budget: &mut Budget) -> Result<D::Value, Stopped> {
         match at.notes.plan(e) {
-            Some(Plan::Bound { order, .. }) => self.bound(at, e, order, env, budget),
+            Some(Plan::Bound { order, far, .. }) => self.bound(at, e, order, *far, env, budget),
             _ => Ok(self.domain.compute(at, &self.values, e, env)),
         }
     }
@@ -135,6 +139,7 @@ impl<D: Domain> Table<D> {
         at: Place<'_>,
         e: Expr,
         order: &[Expr],
+        far: Option<i64>,
         env: &Env,
         budget: &mut Budget,
     ) -> Result<D::Value, Stopped> {
@@ -156,8 +161,11 @@ impl<D: Domain> Table<D> {
                 return Ok(D::ZERO);
             }
         }
-        for v in a..=b {
+        // Far summands are all the same where far members are.
+        let far = far.filter(|_| self.domain.near() && !at.facts.tell_members_apart()).map_or(b, |f| f.max(a));
+        for v in a..=b.min(far) {
             inner[k] = Some(v);
+            let count = if v == far { b - v + 1 } else { 1 };
             let v = match self.summand(at, *body, order, &inner, budget) {
                 Ok(v) => v,
                 Err(s) => {
@@ -169,7 +177,7 @@ impl<D: Domain> Table<D> {
                 sum = D::NOWHERE;
                 break;
             }
-            sum = self.domain.plus(sum, v);
+            sum = self.domain.plus(sum, self.domain.times(v, count));
         }
         // A value that depends on the index is no value of the node.
         order.iter().for_each(|x| self.values.put(*x, D::UNSET));

@@ -94,6 +94,9 @@ impl ZeroTest {
         if parts.iter().all(|(e, c)| *e == Arena::ZERO || c.is_zero()) {
             return Verdict::Proved;
         }
+        if parts.len() > 1 && like_terms_cancel(arena, parts) {
+            return Verdict::Proved;
+        }
         self.test(arena, &Target::Sum(parts), budget)
     }
 
@@ -214,6 +217,13 @@ impl ZeroTest {
         if note.flags & Notes::TOO_LARGE != 0 {
             return self.refute(arena, target, &note, Reason::DegreeTooHigh, budget);
         }
+        // Long sums are short where far members agree; what is not zero there is not zero.
+        if note.flags & Notes::LONG != 0
+            && let At::Value(v) = target.residue(self, arena, points::near(), budget)?
+            && !v.is_zero()
+        {
+            return self.refute(arena, target, &note, Reason::NoWitness, budget);
+        }
         // Nearly everything that is not zero shows it at the first point where it has a value.
         let (mut k, mut poles, mut singular) = (0, 0, 0);
         loop {
@@ -283,4 +293,16 @@ impl ZeroTest {
 /// Those of a list whose bits are set.
 fn flipped(list: &[Expr], flips: u16) -> Vec<Expr> {
     list.iter().enumerate().filter(|(k, _)| flips >> k & 1 == 1).map(|(_, e)| *e).collect()
+}
+
+/// Whether the parts' summands cancel as they stand, so that nothing needs to be evaluated.
+fn like_terms_cancel(arena: &Arena, parts: &[(Expr, Rational)]) -> bool {
+    let mut sum: HashMap<Expr, Rational> = HashMap::new();
+    for (e, c) in parts {
+        for (x, d) in arena.summands(*e) {
+            let slot = sum.entry(x).or_insert(Rational::ZERO);
+            *slot = slot.add(&c.mul(&d));
+        }
+    }
+    sum.values().all(Rational::is_zero)
 }

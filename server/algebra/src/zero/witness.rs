@@ -3,7 +3,7 @@
 use super::assumptions::{Assumptions, atom_key};
 use super::interval::{Interval, combine};
 use super::plan::Plan;
-use super::points::{Env, Index, hash, index, level};
+use super::points::{Env, Index, hash, index, level, shared};
 use super::ranges::Range;
 use super::table::{Domain, Place, Values};
 use crate::arena::{Arena, Expr, Node, Role, Symbol};
@@ -82,7 +82,9 @@ impl RealPoint {
             if arena.info(s).role == Role::Index {
                 return Rational::integer(2 + (atom_key(arena, s, member, order) % 5) as i64);
             }
-            self.choose(&facts.range(arena, s, member, order), atom_key(arena, s, member, order))
+            // All far members have the same value, so that long sums are short.
+            let name = shared(arena, s, member).filter(|_| !facts.tell_members_apart()).or(member);
+            self.choose(&facts.range(arena, s, member, order), atom_key(arena, s, name, order))
         };
         match arena.node(e) {
             Node::Symbol(s) => Some(match level(arena, *s).and_then(|k| env[k]) {
@@ -149,6 +151,14 @@ impl Domain for RealPoint {
         a.plus(b)
     }
 
+    fn times(&self, a: Interval, count: i64) -> Interval {
+        if count == 1 { a } else { a.times(Interval::of(&Rational::integer(count))) }
+    }
+
+    fn near(&self) -> bool {
+        true
+    }
+
     fn symbolic_sum(&self, _: Place<'_>, _: Expr) -> Interval {
         Interval::NONE
     }
@@ -159,9 +169,13 @@ impl Domain for RealPoint {
                 self.atom(at.arena, at.facts, e, env).map_or(Interval::NONE, |r| Interval::of(&r))
             }
             Node::Unspecified { function, index: i, orders, args } => {
+                let name = |k: Option<i64>| {
+                    let near = shared(at.arena, *function, k).filter(|_| !at.facts.tell_members_apart());
+                    atom_key(at.arena, *function, near.or(k), 0)
+                };
                 let key = match i.map(|i| index(at.arena, i, env)) {
-                    None => atom_key(at.arena, *function, None, 0),
-                    Some(Index::At(k)) => atom_key(at.arena, *function, Some(k), 0),
+                    None => name(None),
+                    Some(Index::At(k)) => name(Some(k)),
                     Some(Index::Free(k)) => hash(&[k, atom_key(at.arena, *function, None, 0)]),
                 };
                 let args: Vec<Interval> = args.iter().map(|x| values.get(*x)).collect();

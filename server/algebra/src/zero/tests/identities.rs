@@ -622,3 +622,34 @@ fn nested_roots_of_numbers() {
     equal(l, s, inner);
     different(l, r, inner);
 }
+
+#[test]
+fn a_long_sum_that_is_not_zero_costs_as_much_as_a_short_one() {
+    let mut cost = Vec::new();
+    for last in [1000, 1_000_000_000] {
+        let l = &mut Lab::new();
+        let family = l.arena.symbol("x", None, Role::Coordinate);
+        let i = l.arena.symbol("i", None, Role::Index);
+        let ie = l.arena.sym(i);
+        let next = l.arena.add(ie, Arena::ONE);
+        let (xi, xn) = (l.arena.member(family, ie, 0), l.arena.member(family, next, 0));
+        let d = l.arena.sub(xn, xi);
+        let (d2, x2) = (l.arena.pow(d, 2), l.arena.pow(xi, 2));
+        let body = l.arena.add(d2, x2);
+        let n = l.n(last);
+        let sum = l.arena.bound(i, Arena::ONE, n, body, &mut Budget::new(1000)).unwrap();
+        let mut test = ZeroTest::new(Assumptions::new());
+        let mut budget = Budget::new(1_000_000);
+        let verdict = test.is_zero(&mut l.arena, sum, &mut budget);
+        assert!(matches!(verdict, Verdict::Refuted(Some(w)) if w.lower > 0.0), "{verdict:?}");
+        cost.push(1_000_000 - budget.left());
+        // A bound on a far member alone makes the members differ.
+        let far = l.arena.symbol("x", Some(500), Role::Coordinate);
+        let far = l.arena.sym(far);
+        let high = l.arena.sub(far, n);
+        l.positive(high);
+        let verdict = l.verdict(sum);
+        assert_eq!(verdict.is_refuted(), last == 1000, "{verdict:?}");
+    }
+    assert_eq!(cost[0], cost[1]);
+}

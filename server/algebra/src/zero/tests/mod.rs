@@ -8,7 +8,7 @@ mod motions;
 mod random;
 
 use super::{Assumptions, Reason, Relation, Verdict, ZeroTest};
-use crate::arena::{Arena, Expr, Role};
+use crate::arena::{Arena, Expr, Node, Role};
 use crate::budget::Budget;
 use crate::function::Function;
 use crate::rational::Rational;
@@ -80,4 +80,31 @@ fn different(lab: &mut Lab, a: Expr, b: Expr) {
 
 fn undecided(lab: &mut Lab, a: Expr, b: Expr, reason: Reason) {
     assert_eq!(lab.difference(a, b), Verdict::Undecided(reason));
+}
+
+/// The value at a real point, in doubles.
+fn value(l: &Lab, e: Expr, at: &[(Expr, f64)]) -> f64 {
+    let v = |x: Expr| value(l, x, at);
+    match l.arena.node(e) {
+        Node::Number(r) => r.to_f64(),
+        Node::Sum(k, t) => k.to_f64() + t.iter().map(|(x, c)| v(*x) * c.to_f64()).sum::<f64>(),
+        Node::Product(f) => f.iter().map(|(x, r)| v(*x).powf(r.to_f64())).product(),
+        Node::Call(f, args) => {
+            let x = v(args[0]);
+            match f {
+                Function::Sin => x.sin(),
+                Function::Cos => x.cos(),
+                Function::Tan => x.tan(),
+                Function::Exp => x.exp(),
+                Function::Tanh => x.tanh(),
+                Function::Abs => x.abs(),
+                Function::Sign => x.signum(),
+                Function::Atan => x.atan(),
+                Function::Max => args.iter().map(|a| v(*a)).fold(f64::NEG_INFINITY, f64::max),
+                Function::Min => args.iter().map(|a| v(*a)).fold(f64::INFINITY, f64::min),
+                _ => f64::NAN,
+            }
+        }
+        _ => at.iter().find(|p| p.0 == e).map_or(f64::NAN, |p| p.1),
+    }
 }

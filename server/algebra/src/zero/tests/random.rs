@@ -128,32 +128,6 @@ fn nested(r: &Recipe, inside: bool) -> bool {
     }
 }
 
-/// The value at a real point, in doubles.
-fn value(l: &Lab, e: Expr, at: &[(Expr, f64)]) -> f64 {
-    use crate::arena::Node;
-    let v = |x: Expr| value(l, x, at);
-    match l.arena.node(e) {
-        Node::Number(r) => r.to_f64(),
-        Node::Sum(k, t) => k.to_f64() + t.iter().map(|(x, c)| v(*x) * c.to_f64()).sum::<f64>(),
-        Node::Product(f) => f.iter().map(|(x, r)| v(*x).powf(r.to_f64())).product(),
-        Node::Call(f, args) => {
-            let x = v(args[0]);
-            match f {
-                Function::Sin => x.sin(),
-                Function::Cos => x.cos(),
-                Function::Tan => x.tan(),
-                Function::Exp => x.exp(),
-                Function::Tanh => x.tanh(),
-                Function::Abs => x.abs(),
-                Function::Sign => x.signum(),
-                Function::Atan => x.atan(),
-                _ => f64::NAN,
-            }
-        }
-        _ => at.iter().find(|p| p.0 == e).map_or(f64::NAN, |p| p.1),
-    }
-}
-
 proptest! {
     #![proptest_config(ProptestConfig { cases: 400, failure_persistence: None, ..ProptestConfig::default() })]
 
