@@ -1,10 +1,10 @@
 """CPU time of SymEngine and of the program on the same problems, in the same run.
 
-    symengine_ratio.py --program PROGRAM [--only NAME]... [--reps 5] [--command check|sheet]
+    symengine_ratio.py --program PROGRAM [--only NAME]... [--reps 5] [--command check|sheet] [--bench BENCH]
 
 SymEngine (PyPI) parses strings, builds L, derives momenta, residuals, mass matrix and energy function, then tests each claim
 by expansion of the variation under its generator. The program runs from text to verdicts, its start on an empty model taken
-off. User and system time of the process, medians. The machine is shared: only ratios within one run mean anything.
+off. With the bench binary of `leastwise-analysis` also edits in a live session, each text never seen before. User and system time of the process, medians. The machine is shared: only ratios within one run mean anything.
 """
 import argparse
 import json
@@ -158,12 +158,28 @@ def milliseconds(x):
     return "failed" if x is None else f"{1000 * x:.2f}"
 
 
+EDITS = ["links_10 potential edited", "links_10 kinetic edited", "links_10 definition edited", "bodies_4 potential edited"]
+
+
+def edits(bench, library, reps):
+    """An edit, from changed text to new verdicts, against SymEngine from scratch on the same problem."""
+    print("\n| edit | SymEngine from scratch (ms) | leastwise (ms) | ratio |\n|---|---|---|---|")
+    for case in EDITS:
+        name = case.split()[0]
+        p = next(p for p in problems() if p.name == name)
+        theirs = library_times(library, p, reps)
+        out = subprocess.run([bench, "--median", case], stdout=subprocess.PIPE, stderr=subprocess.DEVNULL)
+        ours = float(out.stdout or "nan") / 1e6
+        print(f"| {case} | {milliseconds(theirs[1])} | {1000 * ours:.3f} | {theirs[1] / ours:.0f} |", flush=True)
+
+
 def main():
     ap = argparse.ArgumentParser(description=__doc__.split("\n")[0])
     ap.add_argument("--program", required=True)
     ap.add_argument("--only", action="append")
     ap.add_argument("--reps", type=int, default=5)
     ap.add_argument("--command", choices=["check", "sheet"], default="check")
+    ap.add_argument("--bench")
     o = ap.parse_args()
     try:
         library = Library()
@@ -197,6 +213,8 @@ def main():
             cells = [x if isinstance(x, str) else milliseconds(x) for x in (derived, whole)]
             print(f"| {p.name} | {cells[0]} | {cells[1]} | {milliseconds(ours)} | {ratio} |", flush=True)
     print(f"\nleastwise starts in {milliseconds(start)} ms of CPU time; it is taken off.")
+    if o.bench:
+        edits(o.bench, library, o.reps)
     return 1 if wrong else 0
 
 

@@ -321,7 +321,9 @@ impl Arena {
                 for (e, c) in terms.iter() {
                     take(&mut m, *e);
                     m.key = mix(m.key, Self::rational_key(c));
-                    content = if content.is_zero() { c.abs() } else { content.content(c) };
+                    if !content.is_one() {
+                        content = if content.is_zero() { c.abs() } else { content.content(c) };
+                    }
                 }
                 m.primitive = content.is_one() && terms.first().is_some_and(|t| !t.1.is_negative());
             }

@@ -1,7 +1,8 @@
 //! Instruction counts under callgrind, from text to verdicts, held to a table.
 //!
 //! `cargo bench -p leastwise-analysis` counts all cases and compares them with `tests/bench/instructions.tsv`; more than
-//! 5 % above an entry fails. `-- --update` writes the table anew, `-- NAME…` counts these only.
+//! 5 % above an entry fails. `-- --update` writes the table anew, `-- NAME…` counts these only, `-- --median CASE` prints
+//! the median of the time in microseconds, for ratios within one run.
 
 #![allow(clippy::print_stdout, clippy::print_stderr)]
 
@@ -47,6 +48,38 @@ fn model(name: &str) -> String {
     }
 }
 
+/// The median over `times` runs in microseconds; an edited text is never one that was seen before.
+fn median(case: &str, times: usize) -> f64 {
+    let mut samples = Vec::with_capacity(times);
+    let (name, edit) = case.split_once(' ').unwrap_or((case, ""));
+    let base = model(name);
+    let mut session = Session::new();
+    measured_section(&mut session, &base);
+    for k in 0..times + 5 {
+        let text = edited(&base, edit, k);
+        if edit.is_empty() {
+            session = Session::new();
+        }
+        let start = std::time::Instant::now();
+        measured_section(&mut session, &text);
+        // The first few bring in what all later edits share.
+        if k >= 5 {
+            samples.push(start.elapsed().as_secs_f64() * 1e6);
+        }
+    }
+    samples.sort_by(f64::total_cmp);
+    samples[samples.len() / 2]
+}
+
+fn edited(base: &str, edit: &str, k: usize) -> String {
+    match edit {
+        "" => base.to_string(),
+        "potential edited" => models::edit_potential(base, k),
+        "kinetic edited" => models::edit_kinetic(base, k),
+        _ => models::edit_let(base, k),
+    }
+}
+
 /// Runs one case; in this process, and usually under callgrind.
 fn run(case: &str) {
     let mut session = Session::new();
@@ -55,19 +88,14 @@ fn run(case: &str) {
         return;
     };
     let base = model(name);
-    let edited = |k: usize| match edit {
-        "potential edited" => models::edit_potential(&base, k),
-        "kinetic edited" => models::edit_kinetic(&base, k),
-        _ => models::edit_let(&base, k),
-    };
     // A live session: the base and a few edits have been seen, the measured text never.
     let mut texts = vec![base.clone()];
-    texts.extend((0..4).map(&edited));
+    texts.extend((0..4).map(|k| edited(&base, edit, k)));
     for text in &texts {
         let checked = session.check("model.least", text, &NoFiles);
         std::hint::black_box(session.derive(&checked).symmetries.len());
     }
-    measured_section(&mut session, &edited(4));
+    measured_section(&mut session, &edited(&base, edit, 4));
 }
 
 fn count(case: &str) -> Option<u64> {
@@ -99,11 +127,13 @@ fn table() -> Vec<(String, u64)> {
 fn main() -> ExitCode {
     let args: Vec<String> = std::env::args().skip(1).filter(|a| a != "--bench").collect();
     if let [flag, case] = args.as_slice()
-        && flag == "--case"
+        && (flag == "--case" || flag == "--median")
     {
-        let case = case.clone();
+        let (case, timed) = (case.clone(), flag == "--median");
         // Deep expressions need a deep stack, as in the program.
-        let thread = std::thread::Builder::new().stack_size(256 << 20).spawn(move || run(&case));
+        let thread = std::thread::Builder::new().stack_size(256 << 20).spawn(move || {
+            if timed { println!("{:.1}", median(&case, 101)) } else { run(&case) }
+        });
         return match thread.map(std::thread::JoinHandle::join) {
             Ok(Ok(())) => ExitCode::SUCCESS,
             _ => ExitCode::FAILURE,

@@ -152,28 +152,26 @@ impl<'a> Builder<'a> {
                 }
                 _ => entry.parsed.item.span,
             };
-            let place = |parts: &[Part], written: Expr| TermPlace {
+            let place = |parts: &[Part]| TermPlace {
                 range: at(entry, entry.parsed.item.span),
                 keyword: at(entry, entry.parsed.item.keyword),
                 name: title(kind).map(|(_, n)| at(entry, n.span)),
                 body: at(entry, body),
                 parts: parts_at(entry, parts),
-                written,
                 description: entry.description.clone(),
             };
             let exprs = |parts: &[Part]| parts.iter().map(|p| p.expr).collect();
             match &lowered.meaning {
-                Meaning::Term { kind, parts, written } => {
-                    places.terms.push(place(parts, *written));
+                Meaning::Term { kind, parts } => {
+                    places.terms.push(place(parts));
                     model.terms.push(Term { name, kind: *kind, parts: exprs(parts) });
                 }
-                Meaning::Dissipation { parts, written } => {
-                    places.forces.push(place(parts, *written));
+                Meaning::Dissipation { parts } => {
+                    places.forces.push(place(parts));
                     model.forces.push(Force { name, action: Action::Dissipation(exprs(parts)) });
                 }
                 Meaning::Force { pairs, parts } => {
-                    let written = pairs.first().map_or(Arena::ZERO, |p| p.1);
-                    places.forces.push(place(parts, written));
+                    places.forces.push(place(parts));
                     model.forces.push(Force { name, action: Action::Applied(pairs.clone()) });
                 }
                 Meaning::Constraint(list) => {

@@ -130,8 +130,6 @@ pub struct TermPlace {
     pub body: Range<usize>,
     /// The additive parts, as many as in the model.
     pub parts: Vec<Range<usize>>,
-    /// The formula as written, not multiplied out.
-    pub written: Expr,
     /// The comment that describes it.
     pub description: Option<Arc<str>>,
 }

@@ -68,8 +68,10 @@ pub fn dense(cx: &mut Context<'_>, rows: &MassRows, of: &[usize]) -> Result<Vec<
     cx.budget.charge(of.len() * of.len())?;
     for (k, &i) in of.iter().enumerate() {
         for (j, parts) in &rows[i] {
-            if let Some(&l) = place.get(j) {
+            if let Some(&l) = place.get(j).filter(|&&l| l <= k) {
                 out[k][l] = cx.build(parts)?;
+                // ∂²L/∂q̇ⁱ∂q̇ʲ is symmetric.
+                out[l][k] = out[k][l];
             }
         }
     }

@@ -39,11 +39,9 @@ pub(crate) enum Meaning {
     Term {
         kind: Kind,
         parts: Vec<Part>,
-        written: Expr,
     },
     Dissipation {
         parts: Vec<Part>,
-        written: Expr,
     },
     Force {
         pairs: Vec<(Expr, Expr)>,
@@ -90,12 +88,12 @@ impl<'a> Lowerer<'a> {
                     TermKind::Potential => (Kind::Potential, "a potential energy"),
                     TermKind::Lagrangian => (Kind::Lagrangian, "a term of the Lagrangian"),
                 };
-                let (parts, written) = self.energy_parts(body, what)?;
-                Some(Meaning::Term { kind, parts, written })
+                let parts = self.energy_parts(body, what)?;
+                Some(Meaning::Term { kind, parts })
             }
             ItemKind::Dissipation { body, .. } => {
-                let (parts, written) = self.energy_parts(body, "a dissipation function")?;
-                Some(Meaning::Dissipation { parts, written })
+                let parts = self.energy_parts(body, "a dissipation function")?;
+                Some(Meaning::Dissipation { parts })
             }
             ItemKind::Force { on, body, .. } => self.force(on, body),
             ItemKind::Constraint { declared, left, right } => self.constraint(declared.as_ref(), left, right),
@@ -112,16 +110,9 @@ impl<'a> Lowerer<'a> {
     }
 
     /// The parts of a formula, and the formula as written.
-    fn energy_parts(&mut self, body: &Formula, what: &str) -> Option<(Vec<Part>, Expr)> {
+    fn energy_parts(&mut self, body: &Formula, what: &str) -> Option<Vec<Part>> {
         let parts = self.parts(body, what)?;
-        if !self.without_accelerations(&parts, what) {
-            return None;
-        }
-        let written = match parts.as_slice() {
-            [one] => one.expr,
-            _ => self.scalar(body, what)?,
-        };
-        Some((parts, written))
+        self.without_accelerations(&parts, what).then_some(parts)
     }
 
     fn force(&mut self, on: &Formula, body: &Formula) -> Option<Meaning> {

@@ -7,19 +7,17 @@ use leastwise_algebra::{Budget, DisplayOptions, verbatim};
 
 /// Checks that two formulas are the same expression after expansion. `declarations` come before them.
 fn same(declarations: &str, left: &str, right: &str) {
-    let text = format!("{declarations}\nlagrangian a = {left}\nlagrangian b = {right}\n");
+    let text = format!("{declarations}\nlet whole = {left}\nlagrangian a = {left}\nlagrangian b = {right}\nlagrangian c = whole\n");
     let (mut session, checked) = lowered(&text);
-    let whole: Vec<_> = checked.terms.iter().map(|t| t.written).collect();
-    let difference = session.arena.sub(whole[0], whole[1]);
-    let rest = session.arena.expand(difference, &mut Budget::new(1_000_000)).unwrap();
-    let shown = |e| verbatim(&session.arena, e, &DisplayOptions::default()).text();
-    assert_eq!(shown(rest), "0", "{left} is {}, {right} is {}", shown(whole[0]), shown(whole[1]));
-    // The parts are a term's summands.
+    let sums: Vec<_> = checked.model().terms.iter().map(|t| session.arena.sum(&t.parts)).collect();
+    // The parts of `a` are its summands: together they are the whole, which `c` gives in one piece.
+    for other in [sums[1], sums[2]] {
+        let difference = session.arena.sub(sums[0], other);
+        let rest = session.arena.expand(difference, &mut Budget::new(1_000_000)).unwrap();
+        let shown = |e| verbatim(&session.arena, e, &DisplayOptions::default()).text();
+        assert_eq!(shown(rest), "0", "{left} is {}, not {}", shown(sums[0]), shown(other));
+    }
     for (term, place) in checked.model().terms.iter().zip(&checked.terms) {
-        let sum = session.arena.sum(&term.parts);
-        let gap = session.arena.sub(sum, place.written);
-        let gap = session.arena.expand(gap, &mut Budget::new(1_000_000)).unwrap();
-        assert_eq!(verbatim(&session.arena, gap, &DisplayOptions::default()).text(), "0");
         assert_eq!(term.parts.len(), place.parts.len());
     }
 }
