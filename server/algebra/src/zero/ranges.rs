@@ -166,11 +166,14 @@ fn range_product(a: &Range, b: &Range) -> Range {
         return Range::default();
     };
     let mut out = Range::default();
-    let corners = [al.0.mul(&bl.0), al.0.mul(&bu.0), au.0.mul(&bl.0), au.0.mul(&bu.0)];
-    let (lo, hi) = (corners.iter().min(), corners.iter().max());
+    let corner = |x: &(Rational, bool), y: &(Rational, bool)| (x.0.mul(&y.0), x.1 || y.1);
+    let corners = [corner(al, bl), corner(al, bu), corner(au, bl), corner(au, bu)];
+    // An extreme value other than zero is taken at corners only.
+    let strict = |v: &Rational| !v.is_zero() && corners.iter().all(|c| c.0 != *v || c.1);
+    let (lo, hi) = (corners.iter().map(|c| &c.0).min(), corners.iter().map(|c| &c.0).max());
     if let (Some(lo), Some(hi)) = (lo, hi) {
-        out.raise(lo.clone(), false);
-        out.cut(hi.clone(), false);
+        out.raise(lo.clone(), strict(lo));
+        out.cut(hi.clone(), strict(hi));
     }
     out
 }

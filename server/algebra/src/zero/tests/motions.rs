@@ -134,3 +134,42 @@ fn an_edit_evaluates_new_nodes_only() {
     let second = cost(&mut test, &mut l.arena, edited);
     assert!(second * 20 < first, "{second} of {first}");
 }
+
+#[test]
+fn signs_under_assumptions() {
+    use super::super::Sign;
+    let l = &mut Lab::new();
+    let (m, n, e, x) = (l.x("m"), l.x("n"), l.x("e"), l.x("x"));
+    l.positive(m);
+    l.positive(e);
+    let below = l.arena.sub(Arena::ONE, e);
+    l.positive(below);
+    let more = l.arena.sub(n, m);
+    l.positive(more);
+    let (s, c) = (l.call(Function::Sin, x), l.call(Function::Cos, x));
+    let (s2, ec, x2) = (l.arena.pow(s, 2), l.arena.mul(e, c), l.arena.pow(x, 2));
+    let (ns, me, x3) = (l.arena.mul(n, s2), l.arena.mul(m, e), l.arena.pow(x, 3));
+    let e2 = l.arena.pow(e, 2);
+    let root = l.arena.sqrt(x2);
+    let ch = l.call(Function::Cosh, x);
+    let cases = [
+        (l.arena.add(m, ns), Sign::Positive),
+        (ns, Sign::NonNegative),
+        (n, Sign::Positive),
+        (l.arena.sub(m, n), Sign::Negative),
+        (l.arena.sub(Arena::ONE, ec), Sign::Positive),
+        (l.arena.add(Arena::ONE, c), Sign::NonNegative),
+        (l.arena.sub(Arena::ONE, e2), Sign::Positive),
+        (l.arena.neg(me), Sign::Negative),
+        (l.arena.add(x2, m), Sign::Positive),
+        (x3, Sign::Unknown),
+        (root, Sign::NonNegative),
+        (l.arena.neg(ch), Sign::Negative),
+        (l.arena.sub(m, e), Sign::Unknown),
+        (l.arena.pow(n, -3), Sign::Positive),
+    ];
+    let mut test = ZeroTest::new(l.facts.clone());
+    for (e, sign) in cases {
+        assert_eq!(test.sign_of(&mut l.arena, e, &mut Budget::new(1000)), sign, "{:?}", l.arena.node(e));
+    }
+}

@@ -183,4 +183,39 @@ proptest! {
             }
         }
     }
+
+    /// A sign that is inferred holds at every point inside the assumptions.
+    #[test]
+    fn inferred_signs_hold(r in recipe(true), n in 1i64..1000) {
+        use super::super::Sign;
+        let l = &mut Lab::new();
+        let e = build(l, &r, false);
+        // x > 0, 0 < y < 1, z ≤ −1/2, nothing of w.
+        let (x, y, z, w) = (l.x("x"), l.x("y"), l.x("z"), l.x("w"));
+        l.positive(x);
+        l.positive(y);
+        let below = l.arena.sub(Arena::ONE, y);
+        l.positive(below);
+        let up = l.arena.add(z, Arena::ONE);
+        let half = l.arena.number(Rational::HALF);
+        let up = l.arena.sub(up, half);
+        l.facts.assume(&mut l.arena, up, Relation::LessEqual);
+        let mut test = ZeroTest::new(l.facts.clone());
+        let sign = test.sign_of(&mut l.arena, e, &mut Budget::new(100_000));
+        for k in 0..6 {
+            let u = |j: i64| ((n * (j + 3) * 37 + k * 53) % 101) as f64 / 101.0 + 0.001;
+            let at = [(x, 3.0 * u(0)), (y, u(1).min(0.999)), (z, -0.5 - 2.0 * u(2)), (w, 4.0 * u(3) - 2.0)];
+            let v = value(l, e, &at);
+            let tiny = 1e-9;
+            let holds = match sign {
+                Sign::Positive => v > -tiny,
+                Sign::NonNegative => v >= -tiny,
+                Sign::Negative => v < tiny,
+                Sign::NonPositive => v <= tiny,
+                Sign::Zero => v.abs() < tiny,
+                _ => true,
+            };
+            prop_assert!(holds || !v.is_finite() || v.abs() > 1e12, "{sign:?} but {v}");
+        }
+    }
 }
