@@ -13,6 +13,17 @@ use crate::arena::{Arena, Expr, Node};
 use crate::budget::{Budget, Stopped};
 use hashbrown::HashSet;
 
+/// How a real point lies to the assumptions.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub(super) enum Fit {
+    /// It violates one, or may.
+    Outside,
+    /// It satisfies all, one of them perhaps with equality.
+    Edge,
+    /// It satisfies all strictly.
+    Inside,
+}
+
 impl ZeroTest {
     /// A real point where the value is not zero, or another proof that it is not.
     pub(super) fn refute(
@@ -64,7 +75,7 @@ impl ZeroTest {
             | Notes::SYMBOLIC
             | Notes::CONSTANTS
             | Notes::TOO_LARGE;
-        if note.flags & related != 0 {
+        if note.flags & related != 0 || !self.region_is_open(arena, budget)? {
             return Ok(false);
         }
         let list = target.expressions();
@@ -111,7 +122,7 @@ impl ZeroTest {
             if tries == TRIES {
                 break;
             }
-            if !self.point_fits(arena, k, budget)? {
+            if self.point_fits(arena, k, budget)? == Fit::Outside {
                 continue;
             }
             tries += 1;
@@ -124,35 +135,49 @@ impl ZeroTest {
     }
 
     /// Whether a real point satisfies the assumptions for certain.
-    pub(super) fn point_fits(&mut self, arena: &mut Arena, k: u32, budget: &mut Budget) -> Result<bool, Stopped> {
-        if let Some(fits) = self.fits[k as usize] {
-            return Ok(fits);
+    fn point_fits(&mut self, arena: &mut Arena, k: u32, budget: &mut Budget) -> Result<Fit, Stopped> {
+        if let Some(fit) = self.fits[k as usize] {
+            return Ok(fit);
         }
-        let mut fits = true;
+        let mut fit = Fit::Inside;
         let mut table = Table::sparse(RealPoint { attempt: k, negated: Vec::new() });
         for (e, relation) in self.facts.facts().to_vec() {
             self.notes.analyse(arena, &self.facts, e, budget)?;
             let at = Place { arena, notes: &self.notes, facts: &self.facts };
             let v = table.value(at, e, budget)?;
+            let up = match relation {
+                Relation::Less | Relation::LessEqual => v.negate(),
+                _ => v,
+            };
             // A member at a symbolic index stands for all of them, which are drawn inside their bounds. Other
             // comparisons of such members cannot be checked.
             let symbolic = self.notes.note(e).flags & Notes::SYMBOLIC != 0;
-            let bounds = Assumptions::bounds_one_atom(arena, e);
-            fits &= symbolic && bounds && relation != Relation::NotEqual
-                || !symbolic
-                    && v.exists()
-                    && match relation {
-                        Relation::Greater => v.lo > 0.0,
-                        Relation::GreaterEqual => v.lo >= 0.0,
-                        Relation::Less => v.hi < 0.0,
-                        Relation::LessEqual => v.hi <= 0.0,
-                        Relation::NotEqual => v.lo > 0.0 || v.hi < 0.0,
-                    };
-            if !fits {
+            let drawn = symbolic && Assumptions::bounds_one_atom(arena, e) && relation != Relation::NotEqual;
+            let inside = drawn || !symbolic && (up.lo > 0.0 || relation == Relation::NotEqual && v.hi < 0.0);
+            let closed = matches!(relation, Relation::GreaterEqual | Relation::LessEqual);
+            if !inside {
+                fit = if closed && !symbolic && up.lo >= 0.0 { Fit::Edge } else { Fit::Outside };
+            }
+            if fit == Fit::Outside {
                 break;
             }
         }
-        self.fits[k as usize] = Some(fits);
-        Ok(fits)
+        self.fits[k as usize] = Some(fit);
+        Ok(fit)
+    }
+
+    /// Whether the assumptions leave an open region, where what vanishes vanishes everywhere: strict ones do, if any
+    /// point at all; others do around a point inside.
+    fn region_is_open(&mut self, arena: &mut Arena, budget: &mut Budget) -> Result<bool, Stopped> {
+        let closed = |r: Relation| matches!(r, Relation::GreaterEqual | Relation::LessEqual);
+        if !self.facts.facts().iter().any(|f| closed(f.1)) {
+            return Ok(true);
+        }
+        for k in 0..ATTEMPTS {
+            if self.point_fits(arena, k, budget)? == Fit::Inside {
+                return Ok(true);
+            }
+        }
+        Ok(false)
     }
 }

@@ -7,6 +7,7 @@ use super::interval::Interval;
 use super::linear::{self, Residues};
 use super::notes::Notes;
 use super::points::{self, Fields, NO_ENV, Point};
+use super::refute::Fit;
 use super::roots::{Radicals, RankMemo};
 use super::sample::{self, Sampled};
 use super::signs::Sign;
@@ -31,7 +32,7 @@ pub struct ZeroTest {
     /// Roots of constants that may hide relations, while they are looked at.
     pub(super) flippable: Vec<Expr>,
     /// Whether the real points satisfy the assumptions, as far as that has been looked at.
-    pub(super) fits: Vec<Option<bool>>,
+    pub(super) fits: Vec<Option<Fit>>,
     pub(super) ranks: RankMemo,
 }
 

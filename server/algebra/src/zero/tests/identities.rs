@@ -481,6 +481,18 @@ fn refuted_without_a_real_point() {
 }
 
 #[test]
+fn assumptions_that_force_an_equality() {
+    // a ≥ b and b ≥ a leave a = b only: no refutation.
+    let l = &mut Lab::new();
+    let (a, b) = (l.x("a"), l.x("b"));
+    let d = l.arena.sub(a, b);
+    l.facts.assume(&mut l.arena, d, Relation::GreaterEqual);
+    assert!(l.difference(a, b).is_refuted());
+    l.facts.assume(&mut l.arena, d, Relation::LessEqual);
+    undecided(l, a, b, Reason::NoWitness);
+}
+
+#[test]
 fn free_roots_and_signs() {
     // Σ |xₖ| − Σ |xₖ| in another order of many unknown signs; the same with roots that are related.
     let l = &mut Lab::new();
