@@ -162,8 +162,16 @@ impl FieldPoint {
     fn planned(&self, at: Place<'_>, values: &Values<Element>, e: Expr, p: &Plan) -> Option<Element> {
         let f = &*self.field;
         match p {
-            Plan::Angle { terms, turn } => {
+            Plan::Angle { terms, turn, known } => {
                 let mut z = self.turned(turn)?;
+                for k in known.iter() {
+                    let (c, s) = (defined(values, k.cosine)?, defined(values, k.sine)?);
+                    if !c.is_real() || !s.is_real() {
+                        return None;
+                    }
+                    let s = if k.times < 0 { f.neg(s.re) } else { s.re };
+                    z = f.mul2(z, f.pow2(Element { re: c.re, im: s }, k.times.unsigned_abs()));
+                }
                 for (m, r) in terms.iter() {
                     z = f.mul2(z, self.on_circle(defined(values, *m)?, r)?);
                 }

@@ -355,7 +355,7 @@ impl Notes {
             total.max(1.0)
         };
         match p {
-            Plan::Angle { terms, turn } => {
+            Plan::Angle { terms, turn, known } => {
                 if !turn.small().is_some_and(|(_, d)| (TURN / 2).is_multiple_of(d as u64)) {
                     n.flags |= Self::INCOMPLETE;
                 }
@@ -364,7 +364,19 @@ impl Notes {
                 }
                 terms.iter().for_each(|t| inherit(n, t.0));
                 let d = linear(n, terms);
-                angle_bounds(n, d, matches!(arena.node(e), Node::Call(Function::Tan, _)));
+                let quotient = matches!(arena.node(e), Node::Call(Function::Tan, _));
+                angle_bounds(n, d, quotient);
+                for k in known {
+                    for x in [k.cosine, k.sine] {
+                        inherit(n, x);
+                        let x = self.note(x);
+                        let times = k.times.unsigned_abs() as f32;
+                        factor_bounds(n, &x, times);
+                        if quotient {
+                            factor_bounds(n, &x, -times);
+                        }
+                    }
+                }
             }
             Plan::Exponential { terms, factors } => {
                 terms.iter().for_each(|t| inherit(n, t.0));

@@ -46,11 +46,23 @@ pub(crate) struct LogTerm {
     pub plain: bool,
 }
 
+/// The multiple of an angle whose cosine and sine are known.
+#[derive(Clone, Debug)]
+pub(crate) struct Known {
+    /// The cosine.
+    pub cosine: Expr,
+    /// The sine.
+    pub sine: Expr,
+    /// How many times.
+    pub times: i64,
+}
+
 /// The plan of a node.
 #[derive(Clone, Debug)]
 pub(crate) enum Plan {
     /// sin, cos, tan of Σ coefficient · monomial + turn · π.
-    Angle { terms: Box<[(Expr, Rational)]>, turn: Rational },
+    /// And of multiples of angles whose cosine and sine are known, such as atan2(y, x).
+    Angle { terms: Box<[(Expr, Rational)]>, turn: Rational, known: Box<[Known]> },
     /// exp, sinh, cosh, tanh: e^(Σ coefficient · monomial) Π factors.
     Exponential { terms: Box<[(Expr, Rational)]>, factors: Box<[Factor]> },
     /// b^x: Π factors · e^(Σ Σ coefficient · monomial · logarithm).
@@ -68,7 +80,13 @@ impl Plan {
     /// Calls `f` with each node whose value the plan needs.
     pub fn for_needs(&self, f: &mut dyn FnMut(Expr)) {
         match self {
-            Plan::Angle { terms, .. } => terms.iter().for_each(|t| f(t.0)),
+            Plan::Angle { terms, known, .. } => {
+                terms.iter().for_each(|t| f(t.0));
+                known.iter().for_each(|k| {
+                    f(k.cosine);
+                    f(k.sine);
+                });
+            }
             Plan::Exponential { terms, factors } => {
                 terms.iter().for_each(|t| f(t.0));
                 factors.iter().for_each(|t| f(t.base));
@@ -197,7 +215,42 @@ impl Maker<'_> {
             }
             *m != pi
         });
-        Plan::Angle { terms: terms.into(), turn }
+        let mut known = Vec::new();
+        terms.retain(|(m, r)| match r.to_i64().filter(|k| k.abs() <= 64).zip(self.known_angle(*m)) {
+            Some((times, (cosine, sine))) => {
+                known.push(Known { cosine, sine, times });
+                false
+            }
+            None => true,
+        });
+        Plan::Angle { terms: terms.into(), turn, known: known.into() }
+    }
+
+    /// Cosine and sine of the inverse functions, on their principal branches.
+    fn known_angle(&mut self, m: Expr) -> Option<(Expr, Expr)> {
+        let Node::Call(f, args) = self.arena.node(m) else { return None };
+        let (f, u, v) = (*f, args[0], args.last().copied()?);
+        let a = &mut *self.arena;
+        let u2 = a.pow(u, 2);
+        let legs = |a: &mut Arena, x: Expr, y: Expr, sum: Expr| {
+            let r = a.sqrt(sum);
+            (a.div(x, r), a.div(y, r))
+        };
+        let rest = a.sub(Arena::ONE, u2);
+        match f {
+            Function::Asin => Some((a.sqrt(rest), u)),
+            Function::Acos => Some((u, a.sqrt(rest))),
+            Function::Atan => {
+                let sum = a.add(Arena::ONE, u2);
+                Some(legs(a, Arena::ONE, u, sum))
+            }
+            Function::Atan2 => {
+                let v2 = a.pow(v, 2);
+                let sum = a.add(u2, v2);
+                Some(legs(a, v, u, sum))
+            }
+            _ => None,
+        }
     }
 
     fn exponential(&mut self, x: Expr) -> Plan {

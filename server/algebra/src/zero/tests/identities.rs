@@ -348,6 +348,49 @@ fn inverse_functions() {
 }
 
 #[test]
+fn sines_of_inverse_functions() {
+    let l = &mut Lab::new();
+    let (x, y) = (l.x("x"), l.x("y"));
+    // cos(atan2(y, x)) = x/r, sin(2 atan2(y, x)) = 2 x y/r², cos(atan x) = 1/√(1 + x²).
+    let φ = l.arena.call(Function::Atan2, &[y, x]);
+    let (x2, y2, xy) = (l.arena.pow(x, 2), l.arena.pow(y, 2), l.arena.mul(x, y));
+    let r2 = l.arena.add(x2, y2);
+    let r = l.arena.sqrt(r2);
+    let (c, s) = (l.call(Function::Cos, φ), l.call(Function::Sin, φ));
+    let (xr, yr) = (l.arena.div(x, r), l.arena.div(y, r));
+    equal(l, c, xr);
+    equal(l, s, yr);
+    different(l, c, yr);
+    let twice = l.times(2, φ);
+    let s2 = l.call(Function::Sin, twice);
+    let q = l.arena.div(xy, r2);
+    let q = l.times(2, q);
+    equal(l, s2, q);
+    // sin(θ − φ) with another angle beside it.
+    let θ = l.x("θ");
+    let gap = l.arena.sub(θ, φ);
+    let (sg, st, ct) = (l.call(Function::Sin, gap), l.call(Function::Sin, θ), l.call(Function::Cos, θ));
+    let (a, b) = (l.arena.mul(st, xr), l.arena.mul(ct, yr));
+    let right = l.arena.sub(a, b);
+    equal(l, sg, right);
+    let wrong = l.arena.add(a, b);
+    different(l, sg, wrong);
+    let atan = l.call(Function::Atan, x);
+    let c = l.call(Function::Cos, atan);
+    let sum = l.arena.add(Arena::ONE, x2);
+    let right = l.arena.pow_rational(sum, &Rational::HALF.neg());
+    equal(l, c, right);
+    let (acos, asin) = (l.call(Function::Acos, x), l.call(Function::Asin, x));
+    let sine = l.call(Function::Sin, acos);
+    let cosine = l.call(Function::Cos, asin);
+    equal(l, sine, cosine);
+    let double = l.times(2, asin);
+    let c2 = l.call(Function::Cos, double);
+    let right = l.arena.linear(&[(Arena::ONE, Rational::ONE), (x2, Rational::integer(-2))]);
+    equal(l, c2, right);
+}
+
+#[test]
 fn symbolic_exponents() {
     let l = &mut Lab::new();
     let (x, n) = (l.x("x"), l.x("n"));
