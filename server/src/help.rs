@@ -30,7 +30,8 @@ pub const CHECK: &str = "\
 leastwise check FILES… [--as text|json|sarif]
 
 Checks models and prints what was found, each with its place and what to do about it: slips of
-spelling, unknown names, claims that do not hold and the term that breaks them, a singular mass matrix.
+spelling, unknown names, claims that do not hold and the term that breaks them, a mass matrix that
+is singular.
 
   --as text    for people (the usual form)
   --as json    one object: files, their findings with code, severity, message, range (lines from
@@ -38,7 +39,7 @@ spelling, unknown names, claims that do not hold and the term that breaks them, 
   --as sarif   SARIF 2.1.0, for services that collect findings
 
 Exit status: 0 nothing worse than information, 1 a warning or an error, 2 a file could not be read.
-A code in brackets, such as [cyclic-claim], is explained by `leastwise explain CODE`.
+A code in brackets, such as [not-cyclic], is explained by `leastwise explain CODE`.
 ";
 
 /// `leastwise help sheet`.
@@ -76,7 +77,7 @@ Exit status: 0 done (with --check: nothing would change), 1 with --check: someth
 pub const EXPLAIN: &str = "\
 leastwise explain [CODE]
 
-Explains the code of a finding, such as the one in brackets in `warning[cyclic-claim]`. Without a
+Explains the code of a finding, such as the one in brackets in `warning[not-cyclic]`. Without a
 code, lists all of them.
 
 Exit status: 0 explained, 2 there is no such code.

@@ -49,32 +49,46 @@ fn breaks(text: &str) -> Vec<Break> {
     list
 }
 
-/// The formula's lines: the first at most `first` columns wide, the others at most `rest`, unless a single word is longer.
+/// A line of a formula.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub struct Line<'a> {
+    /// Its part of the formula.
+    pub text: &'a str,
+    /// Columns that it is set in: a line that goes on inside brackets is set in with them.
+    pub inset: usize,
+}
+
+/// Columns that a line is set in for each bracket around its beginning.
+const INSET: usize = 2;
+/// Brackets beyond this don't set it in further.
+const DEEPEST: usize = 4;
+
+/// The formula's lines, at most `room` columns wide with their inset, unless a single word is longer.
 ///
 /// A line is broken at the outermost sign that leaves it at least a third full.
-pub fn lines(text: &str, first: usize, rest: usize) -> Vec<&str> {
+pub fn lines(text: &str, room: usize) -> Vec<Line<'_>> {
     let breaks = breaks(text);
     let total = width(text);
     let mut out = Vec::new();
-    let (mut from, mut before, mut k) = (0, 0, 0);
-    let mut room = first.max(1);
-    while total - before.min(total) > room {
+    let (mut from, mut before, mut k, mut inset) = (0, 0, 0, 0);
+    while total > before + room.saturating_sub(inset) {
+        let room = room.saturating_sub(inset).max(1);
         // Those that fit; where none does, the next one.
         let fits = breaks[k..].partition_point(|b| b.columns - 1 - before <= room);
         let candidates = &breaks[k..(k + fits.max(1)).min(breaks.len())];
-        let full = |b: &&Break| b.columns - before >= room / 3;
-        let depth = |list: &mut dyn Iterator<Item = &Break>| list.map(|b| b.depth).min();
-        let best = match depth(&mut candidates.iter().filter(|b| full(b))) {
-            Some(d) => candidates.iter().rposition(|b| full(&b) && b.depth == d),
+        let full = |b: &Break| b.columns - before >= room / 3;
+        let outermost = candidates.iter().filter(|b| full(b)).map(|b| b.depth).min();
+        let best = match outermost {
+            Some(depth) => candidates.iter().rposition(|b| full(b) && b.depth == depth),
             None => candidates.len().checked_sub(1),
         };
         let Some(best) = best else { break };
         let b = &candidates[best];
-        out.push(text[from..b.at].trim_end());
+        out.push(Line { text: text[from..b.at].trim_end(), inset });
         (from, before, k) = (b.at, b.columns, k + best + 1);
-        room = rest.max(1);
+        inset = INSET * (b.depth % SPACE).min(DEEPEST);
     }
-    out.push(&text[from..]);
+    out.push(Line { text: &text[from..], inset });
     out
 }
 
@@ -106,9 +120,11 @@ mod tests {
 
     #[track_caller]
     fn check(text: &str, room: usize, expected: &[&str]) {
-        let got = lines(text, room, room);
-        assert_eq!(got, expected);
-        assert_eq!(got.join(" "), text, "nothing is lost");
+        let got = lines(text, room);
+        let set: Vec<String> = got.iter().map(|l| format!("{}{}", " ".repeat(l.inset), l.text)).collect();
+        assert_eq!(set, expected);
+        let whole: Vec<&str> = got.iter().map(|l| l.text).collect();
+        assert_eq!(whole.join(" "), text, "nothing is lost");
     }
 
     #[test]
@@ -120,7 +136,7 @@ mod tests {
 
     #[test]
     fn goes_inside_brackets_where_a_line_would_be_empty() {
-        check("a + 2 m (b + c + d + e + f + g)", 20, &["a + 2 m (b + c + d", "+ e + f + g)"]);
+        check("a + 2 m (b + c + d + e + f + g)", 20, &["a + 2 m (b + c + d", "  + e + f + g)"]);
     }
 
     #[test]
@@ -144,8 +160,8 @@ mod tests {
     #[test]
     fn long_text_takes_linear_time() {
         let text = vec!["x y"; 200_000].join(" + ");
-        let got = lines(&text, 80, 80);
-        assert!(got.len() > 10_000 && got.iter().all(|l| width(l) <= 80));
+        let got = lines(&text, 80);
+        assert!(got.len() > 10_000 && got.iter().all(|l| width(l.text) <= 80));
     }
 
     #[test]

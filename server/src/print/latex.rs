@@ -1,6 +1,8 @@
 //! `sheet --as latex`: a complete article. Needs amsmath; pdfLaTeX, XeLaTeX and LuaLaTeX all take it.
 
+use crate::print::letters::Letters;
 use crate::print::page::listed;
+use crate::print::paragraphs;
 use leastwise_analysis::report::{Answer, CoordinateRow, Finding, Formula, Sheet, Status, SymmetryRow};
 use leastwise_grammar::tree::Severity;
 use std::fmt::Write;
@@ -38,7 +40,8 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
     a.warning(findings);
     if !sheet.terms.is_empty() {
         a.section("Lagrangian");
-        a.align(&[Row::new("L", &sheet.lagrangian)]);
+        let l = letter(Letters::of(sheet).lagrangian);
+        a.align(&[Row::new(&l, &sheet.lagrangian)]);
         let term = |t: &leastwise_analysis::report::TermRow| {
             Row::new(&format!("\\text{{{} \\textit{{{}}}}}", t.kind, escape(&t.name)), &t.formula)
         };
@@ -54,7 +57,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
         a.mass_matrix(sheet);
         a.energy(sheet);
     }
-    a.symmetries(&sheet.symmetries);
+    a.symmetries(&sheet.symmetries, &Letters::of(sheet));
     a.constants(sheet);
     a.out.push_str("\\end{document}\n");
     a.out
@@ -99,8 +102,19 @@ impl Article {
     }
 
     fn text(&mut self, text: &str) {
-        for paragraph in text.lines().filter(|l| !l.trim().is_empty()) {
-            let _ = writeln!(self.out, "{}\n", escape(paragraph));
+        let list = paragraphs(text);
+        for group in list.chunk_by(|a, b| (a.indent > 0) == (b.indent > 0)) {
+            if group[0].indent == 0 {
+                for p in group.iter().filter(|p| !p.text.is_empty()) {
+                    let _ = writeln!(self.out, "{}\n", escape(&p.text));
+                }
+                continue;
+            }
+            self.out.push_str("\\begin{itemize}\n");
+            for p in group {
+                let _ = writeln!(self.out, "  \\item {}", escape(&p.text));
+            }
+            self.out.push_str("\\end{itemize}\n");
         }
     }
 
@@ -153,7 +167,7 @@ impl Article {
             .map(|k| m.iter().filter_map(|r| r.get(k)).map(|f| glyphs(&f.latex)).fold(0.0, f64::max) + 2.0)
             .sum();
         if sheet.mass_entries.is_empty() && m.len() <= MOST_COLUMNS && widest < LINE - 4.0 {
-            self.out.push_str("\\[\n  M = \\begin{pmatrix}\n");
+            self.out.push_str("\\[\n  \\begin{pmatrix}\n");
             for row in m {
                 let cells: Vec<&str> = row.iter().map(|f| f.latex.as_str()).collect();
                 let _ = writeln!(self.out, "    {} \\\\", cells.join(" & "));
@@ -161,7 +175,7 @@ impl Article {
             self.out.push_str("  \\end{pmatrix}\n\\]\n");
             return;
         }
-        let head = |a: &str, b: &str| format!("M_{{{}, {}}}", symbol(a), symbol(b));
+        let head = |a: &str, b: &str| format!("{}_{{{}, {}}}", letter(Letters::of(sheet).mass), symbol(a), symbol(b));
         let mut rows = Vec::new();
         for e in &sheet.mass_entries {
             rows.push(Row::new(&head(&e.row, &e.column), &e.formula));
@@ -180,16 +194,18 @@ impl Article {
     fn energy(&mut self, sheet: &Sheet) {
         self.section("Energy");
         let e = &sheet.energy;
-        self.align(&[Row::new("h", &e.formula), Row::new("\\frac{dh}{dt}", &e.rate)]);
-        let kind = if e.is_total_energy {
-            "$h$ is the energy, kinetic + potential"
-        } else {
-            "$h$ is the energy function; it is not kinetic + potential energy"
+        let letters = Letters::of(sheet);
+        let h = letter(letters.energy);
+        self.align(&[Row::new(&h, &e.formula), Row::new(&rate(&h), &e.rate)]);
+        let kind = match (e.is_total_energy, sheet.terms.iter().any(|t| t.kind == "lagrangian")) {
+            (true, _) => "is kinetic + potential energy",
+            (false, true) => "is the energy function",
+            (false, false) => "is the energy function, not kinetic + potential energy",
         };
-        let _ = writeln!(self.out, "{kind}. It is {}.", kept(&e.conserved));
+        let _ = writeln!(self.out, "${h}$ {kind}. It is {}.", kept(&e.conserved));
     }
 
-    fn symmetries(&mut self, symmetries: &[SymmetryRow]) {
+    fn symmetries(&mut self, symmetries: &[SymmetryRow], letters: &Letters) {
         if symmetries.is_empty() {
             return;
         }
@@ -209,9 +225,10 @@ impl Article {
                 let head = if name == "t" { "\\tau".to_string() } else { format!("\\eta_{{{}}}", symbol(name)) };
                 rows.push(Row::new(&head, f));
             }
-            rows.extend(s.gauge.as_ref().map(|f| Row::new("F", f)));
-            rows.push(Row::new("Q", &s.charge));
-            rows.push(Row::new("\\frac{dQ}{dt}", &s.rate));
+            rows.extend(s.gauge.as_ref().map(|f| Row::new(&letter(letters.gauge), f)));
+            let q = letter(letters.charge);
+            rows.push(Row::new(&q, &s.charge));
+            rows.push(Row::new(&rate(&q), &s.rate));
             self.align(&rows);
             if !s.broken_by.is_empty() {
                 self.out.push_str("Broken by the variations of\n");
@@ -244,11 +261,25 @@ impl Article {
     }
 }
 
+/// A letter of the page: a word stays upright.
+fn letter(name: &str) -> String {
+    match name {
+        "ℒ" => "\\mathcal{L}".into(),
+        "ℳ" => "\\mathcal{M}".into(),
+        word if word.len() > 1 => format!("\\text{{{word}}}"),
+        letter => letter.into(),
+    }
+}
+
+/// The time derivative of a letter.
+fn rate(letter: &str) -> String {
+    if letter.len() > 1 { format!("\\frac{{d}}{{dt}} {letter}") } else { format!("\\frac{{d{letter}}}{{dt}}") }
+}
+
 fn kept(answer: &Answer) -> String {
     match answer {
         Answer::Yes => "conserved".into(),
-        Answer::No(None) => "not conserved".into(),
-        Answer::No(Some(witness)) => format!("not conserved ({})", escape(witness)),
+        Answer::No(_) => "not conserved".into(),
         Answer::Undecided(reason) => format!("conserved or not, which is not decided ({})", escape(reason)),
     }
 }
@@ -406,10 +437,19 @@ impl Glyphs<'_> {
 }
 
 /// Text for LaTeX: special signs escaped, Greek letters and signs as mathematics.
+///
+/// What stands between two backquotes is set as code.
 pub fn escape(text: &str) -> String {
     let mut out = String::new();
+    let mut quotes = text.matches('`').count();
+    let mut code = false;
     for c in text.chars() {
         match c {
+            '`' if code || quotes > 1 => {
+                out.push_str(if code { "}" } else { "\\texttt{" });
+                code = !code;
+                quotes -= 1;
+            }
             '\\' => out.push_str("\\textbackslash{}"),
             '{' | '}' | '$' | '&' | '#' | '_' | '%' => {
                 out.push('\\');
@@ -602,6 +642,7 @@ mod tests {
     #[test]
     fn text_is_escaped() {
         assert_eq!(escape("a_b & 50 % of $θ$"), "a\\_b \\& 50 \\% of \\$\\ensuremath{\\theta}\\$");
+        assert_eq!(escape("`a_b` and `"), "\\texttt{a\\_b} and \\textquoteleft{}");
         assert_eq!(escape("\\input{x}"), "\\textbackslash{}input\\{x\\}");
     }
 

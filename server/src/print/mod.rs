@@ -4,6 +4,7 @@ pub mod break_lines;
 pub mod excerpt;
 pub mod findings_json;
 pub mod latex;
+pub mod letters;
 pub mod page;
 pub mod sarif;
 pub mod sheet_json;
@@ -53,12 +54,46 @@ pub fn counts<'a>(findings: impl Iterator<Item = &'a Finding>) -> Option<String>
     (!list.is_empty()).then(|| list.join(", "))
 }
 
+/// A paragraph of a description.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct Paragraph {
+    /// Columns that it is set in; a line that the author set in is a paragraph of its own.
+    pub indent: usize,
+    /// Its words; none for a blank line.
+    pub text: String,
+}
+
+/// The paragraphs of a comment: lines that were only broken for the file's width are joined.
+pub fn paragraphs(description: &str) -> Vec<Paragraph> {
+    let mut out: Vec<Paragraph> = Vec::new();
+    for line in description.lines() {
+        let text = line.trim();
+        let indent = (line.chars().count() - line.trim_start().chars().count()).min(8);
+        match out.last_mut() {
+            Some(last) if indent == 0 && last.indent == 0 && !text.is_empty() && !last.text.is_empty() => {
+                last.text.push(' ');
+                last.text.push_str(text);
+            }
+            _ => out.push(Paragraph { indent, text: text.to_string() }),
+        }
+    }
+    out
+}
+
 #[cfg(test)]
 pub mod fixture;
 
 #[cfg(test)]
 mod tests {
     use super::*;
+
+    #[test]
+    fn descriptions_are_set_anew() {
+        let list = paragraphs("A mass on\na spring.\n\nLook at\n  the first;\n  the second.");
+        let texts: Vec<(usize, &str)> = list.iter().map(|p| (p.indent, p.text.as_str())).collect();
+        let expected = [(0, "A mass on a spring."), (0, ""), (0, "Look at"), (2, "the first;"), (2, "the second.")];
+        assert_eq!(texts, expected);
+    }
 
     #[test]
     fn counts_say_the_worst_first() {

@@ -2,9 +2,10 @@
 
 use crate::lines::Lines;
 use crate::output::Page;
-use crate::print::break_lines::{lines, prose, width};
-use crate::print::{counts, severity_word};
-use leastwise_analysis::report::{Answer, CoordinateRow, EnergyRow, Finding, Formula, Sheet, Status, SymmetryRow};
+use crate::print::break_lines::{Line, lines, prose, width};
+use crate::print::letters::Letters;
+use crate::print::{counts, paragraphs, severity_word};
+use leastwise_analysis::report::{Answer, CoordinateRow, Finding, Formula, Sheet, Status, SymmetryRow};
 use std::fmt::Write;
 
 /// Columns before a formula's head.
@@ -15,19 +16,21 @@ const WIDEST_HEAD: usize = 24;
 const MOST_ENTRIES: usize = 400;
 /// Columns for a finding's line and column.
 const PLACE: usize = 6;
+/// A generator with wider heads is aligned for itself.
+const NARROW: usize = 10;
 /// Equal lines of a generator are drawn together from so many on.
 const MANY_ALIKE: usize = 3;
 
 /// The whole page.
 pub fn sheet(sheet: &Sheet, findings: &[Finding], source: &Lines<'_>, page: Page) -> String {
-    let mut p = Setter { out: String::new(), page };
+    let mut p = Setter { out: String::new(), page, letters: Letters::of(sheet) };
     p.title(sheet);
     p.lagrangian(sheet);
     p.equations(&sheet.coordinates);
     p.momenta(&sheet.coordinates);
     p.mass_matrix(sheet);
     if !sheet.coordinates.is_empty() {
-        p.energy(&sheet.energy);
+        p.energy(sheet);
     }
     p.symmetries(&sheet.symmetries);
     p.constants(sheet);
@@ -58,6 +61,7 @@ impl Row {
 struct Setter {
     out: String,
     page: Page,
+    letters: Letters,
 }
 
 impl Setter {
@@ -86,8 +90,11 @@ impl Setter {
         let name = self.page.bold(&sheet.system);
         self.line(0, &name);
         if let Some(description) = &sheet.description {
-            for paragraph in description.lines() {
-                self.prose(0, paragraph);
+            for p in paragraphs(description) {
+                let hanging = if p.indent > 0 { p.indent + 2 } else { 0 };
+                for (i, l) in prose(&p.text, self.page.width.saturating_sub(hanging)).iter().enumerate() {
+                    self.line(if i == 0 { p.indent } else { hanging }, l);
+                }
             }
         }
     }
@@ -110,10 +117,11 @@ impl Setter {
             ":" => format!("{}:", row.head),
             sign => format!("{}{} {sign}", row.head, " ".repeat(column.saturating_sub(width(&row.head)))),
         };
-        let mut broken: Vec<String> = lines(&formula, room, room).into_iter().map(String::from).collect();
+        let set = |l: Line<'_>| format!("{:1$}{2}", "", l.inset, l.text);
+        let mut broken: Vec<String> = lines(&formula, room).into_iter().map(set).collect();
         // What is written apart (`where A = …`) gets lines of its own.
         for more in text {
-            broken.extend(lines(more.trim_start(), room, room).into_iter().map(String::from));
+            broken.extend(lines(more.trim_start(), room).into_iter().map(set));
         }
         if !row.remark.is_empty() {
             let remark = format!("({})", row.remark);
@@ -142,7 +150,7 @@ impl Setter {
             return;
         }
         self.section("Lagrangian");
-        self.rows(INDENT, &[Row::new("L", &sheet.lagrangian)]);
+        self.rows(INDENT, &[Row::new(self.letters.lagrangian, &sheet.lagrangian)]);
         self.gap();
         let kinds = sheet.terms.iter().map(|t| t.kind.len()).max().unwrap_or(0);
         let head = |t: &leastwise_analysis::report::TermRow| format!("{:kinds$} {}", t.kind, t.name);
@@ -189,9 +197,11 @@ impl Setter {
         }
         self.section("Mass matrix");
         let m = &sheet.mass_matrix;
+        let mass = self.letters.mass;
         if !sheet.mass_entries.is_empty() {
-            let row =
-                |e: &leastwise_analysis::report::MassEntry| Row::new(format!("M[{}, {}]", e.row, e.column), &e.formula);
+            let row = |e: &leastwise_analysis::report::MassEntry| {
+                Row::new(format!("{mass}[{}, {}]", e.row, e.column), &e.formula)
+            };
             let rows: Vec<Row> = sheet.mass_entries.iter().take(MOST_ENTRIES).map(row).collect();
             self.rows(INDENT, &rows);
             self.line(INDENT, "All other entries are zero.");
@@ -211,7 +221,7 @@ impl Setter {
             return false;
         }
         if let [row] = m {
-            self.rows(INDENT, &[Row::new("M", &row[0])]);
+            self.rows(INDENT, &[Row::new(self.letters.mass, &row[0])]);
             return true;
         }
         for (i, row) in m.iter().enumerate() {
@@ -221,7 +231,7 @@ impl Setter {
                 i if i + 1 == m.len() => ('⎣', '⎦'),
                 _ => ('⎢', '⎥'),
             };
-            let head = if i == (m.len() - 1) / 2 { "M = " } else { "    " };
+            let head = if i == (m.len() - 1) / 2 { format!("{} = ", self.letters.mass) } else { "    ".into() };
             self.line(INDENT, &format!("{head}{left} {} {right}", cells.join("   ")));
         }
         true
@@ -233,7 +243,7 @@ impl Setter {
         for (i, row) in m.iter().enumerate() {
             for (j, f) in row.iter().enumerate().skip(i) {
                 if !is_zero(f) && rows.len() < MOST_ENTRIES {
-                    rows.push(Row::new(format!("M[{}, {}]", names[i], names[j]), f));
+                    rows.push(Row::new(format!("{}[{}, {}]", self.letters.mass, names[i], names[j]), f));
                 }
             }
         }
@@ -241,21 +251,29 @@ impl Setter {
         self.line(INDENT, "The matrix is symmetric; entries not listed are zero.");
     }
 
-    fn energy(&mut self, energy: &EnergyRow) {
+    fn energy(&mut self, sheet: &Sheet) {
+        let energy = &sheet.energy;
         self.section("Energy");
         let verdict = match &energy.conserved {
             Answer::Yes => "conserved".to_string(),
             Answer::No(_) => "not conserved".to_string(),
             Answer::Undecided(reason) => format!("not decided whether it is conserved: {reason}"),
         };
-        self.rows(INDENT, &[Row::new("h", &energy.formula), Row::new("dh/dt", &energy.rate).remark(verdict)]);
+        self.rows(
+            INDENT,
+            &[
+                Row::new(self.letters.energy, &energy.formula),
+                Row::new(self.letters.energy_rate, &energy.rate).remark(verdict),
+            ],
+        );
         self.gap();
-        let kind = if energy.is_total_energy {
-            "h is the energy, kinetic + potential."
-        } else {
-            "h is the energy function Σ p q' - L; it is not kinetic + potential energy."
+        let (h, l) = (self.letters.energy, self.letters.lagrangian);
+        let kind = match (energy.is_total_energy, sheet.terms.iter().any(|t| t.kind == "lagrangian")) {
+            (true, _) => format!("{h} is kinetic + potential energy."),
+            (false, true) => format!("{h} is the energy function Σ p q' - {l}."),
+            (false, false) => format!("{h} is the energy function Σ p q' - {l}; it is not kinetic + potential energy."),
         };
-        self.prose(INDENT, kind);
+        self.prose(INDENT, &kind);
     }
 
     fn symmetries(&mut self, symmetries: &[SymmetryRow]) {
@@ -269,11 +287,14 @@ impl Setter {
             }
             self.prose(INDENT, &format!("{}: {}", s.name, status(s)));
             let mut rows = generator(&s.generator);
-            if let Some(f) = &s.gauge {
-                rows.push(Row::new("F", f).remark("gauge term"));
+            if rows.iter().any(|r| width(&r.head) > NARROW) {
+                self.rows(2 * INDENT, &std::mem::take(&mut rows));
             }
-            rows.push(Row::new("Q", &s.charge));
-            rows.push(Row::new("dQ/dt", &s.rate).remark(kept(&s.conserved)));
+            if let Some(f) = &s.gauge {
+                rows.push(Row::new(self.letters.gauge, f).remark("gauge term"));
+            }
+            rows.push(Row::new(self.letters.charge, &s.charge));
+            rows.push(Row::new(self.letters.charge_rate, &s.rate).remark(kept(&s.conserved)));
             self.rows(2 * INDENT, &rows);
             if let Some(reason) = &s.gauge_unknown {
                 self.prose(2 * INDENT, &format!("The gauge term exists, but not in closed form: {reason}."));
@@ -308,8 +329,9 @@ impl Setter {
         let mut rows = Vec::new();
         for c in &sheet.conserved {
             rows.push(Row::new(c.name.clone(), &c.formula).remark(kept(&c.holds)));
-            if c.holds != Answer::Yes {
-                rows.push(Row::new(format!("d{}/dt", c.name), &c.rate));
+            if let Answer::No(witness) = &c.holds {
+                let at = witness.as_ref().map(|w| format!("so {w}")).unwrap_or_default();
+                rows.push(Row::new(format!("d{}/dt", c.name), &c.rate).remark(at));
             }
         }
         self.rows(INDENT, &rows);
@@ -371,8 +393,7 @@ fn status(s: &SymmetryRow) -> String {
 fn kept(answer: &Answer) -> String {
     match answer {
         Answer::Yes => "conserved".into(),
-        Answer::No(None) => "not conserved".into(),
-        Answer::No(Some(witness)) => format!("not conserved: {witness}"),
+        Answer::No(_) => "not conserved".into(),
         Answer::Undecided(reason) => format!("not decided: {reason}"),
     }
 }
