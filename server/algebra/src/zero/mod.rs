@@ -4,6 +4,7 @@
 //! A value that is not zero at a real point, by interval arithmetic, refutes.
 
 mod assumptions;
+mod bounds;
 mod evaluate;
 mod field;
 mod interval;

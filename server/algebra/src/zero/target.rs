@@ -1,10 +1,11 @@
 //! What is tested: a sum of parts, the rate of a quantity along motions, a determinant.
 
+use super::bounds::{lcm, sum_bounds};
 use super::evaluate::{exists, number};
 use super::field::Element;
 use super::interval::Interval;
 use super::linear;
-use super::notes::{Note, Notes, lcm, sum_bounds};
+use super::notes::{Note, Notes};
 use super::points::Point;
 use super::test::ZeroTest;
 use crate::arena::{Arena, Expr};

@@ -1,5 +1,6 @@
 //! A bench for the tests: an arena with assumptions.
 
+mod assumptions;
 mod branches;
 mod hostile;
 mod identities;

@@ -182,37 +182,3 @@ fn many_distances() {
     assert_eq!(m.conserved(&mut test, total, &motion), Verdict::Proved);
     assert!(m.conserved(&mut test, p[0], &motion).is_refuted());
 }
-
-#[test]
-#[ignore = "prints times"]
-fn times() {
-    for n in [2, 4, 10, 16, 24] {
-        let t0 = std::time::Instant::now();
-        let mut m = chain(n);
-        let motion = m.motion();
-        let h = m.energy();
-        let t1 = std::time::Instant::now();
-        let mut test = ZeroTest::new(Assumptions::new());
-        let v = m.conserved(&mut test, h, &motion);
-        let t2 = std::time::Instant::now();
-        let mut budget = Budget::new(100_000_000);
-        for i in 0..n {
-            let p = m.partial(m.lagrangian, m.q[i]);
-            assert!(test.is_zero(&mut m.lab.arena, p, &mut budget).is_refuted());
-        }
-        let t3 = std::time::Instant::now();
-        let d = test.determinant_is_zero(&mut m.lab.arena, &motion.mass, &mut budget);
-        let t4 = std::time::Instant::now();
-        #[allow(clippy::print_stderr)]
-        {
-            eprintln!(
-                "n={n} nodes={} derive={:?} rate={v:?} {:?} cyclic={:?} det={d:?} {:?}",
-                m.lab.arena.len(),
-                t1 - t0,
-                t2 - t1,
-                t3 - t2,
-                t4 - t3
-            );
-        }
-    }
-}
