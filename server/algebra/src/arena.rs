@@ -321,7 +321,8 @@ impl Arena {
                 for (e, c) in terms.iter() {
                     take(&mut m, *e);
                     m.key = mix(m.key, Self::rational_key(c));
-                    if !content.is_one() {
+                    // An integer does not change a content of one; a fraction does.
+                    if !(content.is_one() && c.is_integer()) {
                         content = if content.is_zero() { c.abs() } else { content.content(c) };
                     }
                 }

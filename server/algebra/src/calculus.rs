@@ -440,6 +440,12 @@ mod tests {
         let (l, r) = (a.pow(twice, 2), a.pow(s, 2));
         let r = a.scale(r, &Rational::integer(4));
         assert_eq!(l, r);
+        // (5/2 x + v)² = (5 x + 2 v)²/4: a fraction beside a one has a content.
+        let fraction = a.linear(&[(x, Rational::new(5, 2).unwrap()), (v, Rational::ONE)]);
+        let whole = a.linear(&[(x, Rational::integer(5)), (v, Rational::integer(2))]);
+        let (l, r) = (a.pow(fraction, 2), a.pow(whole, 2));
+        let r = a.scale(r, &Rational::new(1, 4).unwrap());
+        assert_eq!(l, r);
         // (x − v)² = (v − x)².
         let (d, e) = (a.sub(x, v), a.sub(v, x));
         assert_eq!(a.pow(d, 2), a.pow(e, 2));

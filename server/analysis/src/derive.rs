@@ -6,7 +6,7 @@ use crate::formula::Prints;
 use crate::report::{Finding, Sheet};
 use crate::sheet::Maker;
 use crate::verdicts as told;
-use leastwise_algebra::{Arena, Assumptions, Budget, Expr, Stopped, Verdict, ZeroTest};
+use leastwise_algebra::{Arena, Assumptions, Budget, Expr, Stopped, ZeroTest};
 use leastwise_mechanics::claims::Claim;
 use leastwise_mechanics::context::{Context, Memory, Parts};
 use leastwise_mechanics::symmetry::NoGenerator;
@@ -113,8 +113,8 @@ fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
     let mut known = Vec::new();
     if model.coordinates.iter().any(|q| q.members.is_some()) {
         for s in symmetries.iter().flatten() {
-            if matches!(s.conserved, Ok(Verdict::Proved)) {
-                known.push(s.charge);
+            if let Ok(verdict) = &s.conserved {
+                known.push((s.charge, *verdict));
             }
         }
     }

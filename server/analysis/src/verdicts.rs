@@ -23,7 +23,14 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
         Ok(answers) => {
             cyclic(maker, checked, answers, &mut out);
             mass(maker, checked, answers, &mut out);
-            explicit_time(maker, checked, answers, &mut out);
+            // A claimed delay says it already.
+            let claimed = derived.symmetries.iter().flatten().any(|a| {
+                let g = &a.symmetry.generator;
+                g.tau == Arena::ONE && g.eta.iter().all(|&e| e == Arena::ZERO)
+            });
+            if !claimed {
+                explicit_time(maker, checked, answers, &mut out);
+            }
         }
         Err(stopped) => out.push(finding(
             "too-large",
@@ -275,13 +282,13 @@ fn symmetry(
             let share = total(maker.arena, &parts);
             let share = one_line(&maker.prints.text(maker.arena, share));
             let verb = if names.len() == 1 { "breaks" } else { "break" };
-            let what = kind_of_rate(maker, checked, a);
+            let effect = effect(maker, checked, a, &share);
             let at = places.first().map_or_else(|| claim.range.clone(), |p| p.1.clone());
             let mut f = finding(
                 "symmetry-broken",
                 Severity::Warning,
                 at,
-                format!("{} {verb} the symmetry `{name}`: {what} {share}", list(&names)),
+                format!("{} {verb} the symmetry `{name}`: {effect}", list(&names)),
             );
             if !a.smallest {
                 f.message.push_str(" (a minimal set of terms to blame, perhaps not a smallest one)");
@@ -338,18 +345,19 @@ fn symmetry(
     }
 }
 
-/// What the variation is in the trade's words: a force or torque along one coordinate, a power for a delay.
-fn kind_of_rate(maker: &mut Maker<'_>, checked: &Checked, a: &SymmetryAnswer) -> String {
+/// What the variation is in the trade's words: a generalised force along one coordinate, else a change of L.
+fn effect(maker: &mut Maker<'_>, checked: &Checked, a: &SymmetryAnswer, share: &str) -> String {
     let g = &a.symmetry.generator;
     let moved: Vec<usize> = (0..g.eta.len()).filter(|&i| g.eta[i] != Arena::ZERO).collect();
     if g.tau == Arena::ZERO
         && let [i] = moved[..]
         && g.eta[i] == Arena::ONE
+        && checked.model().coordinates[i].members.is_none()
     {
         let q = checked.model().coordinates[i].label(maker.arena);
-        return format!("generalised force along {q}");
+        return format!("generalised force {share} along {q}");
     }
-    "variation of L".to_string()
+    format!("L changes at the rate {share}")
 }
 
 fn holds_after_all(

@@ -374,23 +374,23 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
     })
 }
 
-/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, it is compared with
-/// what is known to be conserved.
+/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, it is compared with the
+/// charges whose rates are known, and with the energy function.
 pub fn answer_claim(
     cx: &mut Context<'_>,
     model: &Model,
     answers: &Answers,
-    known: &[Expr],
+    known: &[(Expr, Verdict)],
     claim: Expr,
 ) -> Result<claims::Claim, Stopped> {
     let mut result = claims::examine(cx, model, answers.rows.as_ref(), claim)?;
     if matches!(result.verdict, Err(Unanswered::LargeFamily)) {
-        let energy_holds = matches!(answers.energy.conserved, Verdict::Proved);
-        let energy = answers.energy.function;
-        if known.iter().any(|&k| claims::is_multiple(cx, claim, k))
-            || energy_holds && claims::is_multiple(cx, claim, energy)
-        {
-            result.verdict = Ok(Verdict::Proved);
+        let energy = (answers.energy.function, answers.energy.conserved);
+        for (charge, verdict) in known.iter().chain([&energy]) {
+            if !matches!(verdict, Verdict::Undecided(_)) && claims::is_multiple(cx, claim, *charge) {
+                result.verdict = Ok(*verdict);
+                break;
+            }
         }
     }
     Ok(result)

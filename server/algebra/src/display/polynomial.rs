@@ -91,6 +91,11 @@ impl Table {
         n
     }
 
+    /// The expression whose power an atom is.
+    pub fn base(&self, atom: u32) -> Expr {
+        self.atoms[atom as usize].base
+    }
+
     pub fn kind(&self, atom: u32) -> Kind {
         self.atoms[atom as usize].kind
     }
@@ -137,7 +142,7 @@ impl Table {
 }
 
 /// The order of the time derivative of a coordinate.
-fn derivative(arena: &Arena, e: Expr) -> Option<u16> {
+pub(crate) fn derivative(arena: &Arena, e: Expr) -> Option<u16> {
     let (s, order) = match arena.node(e) {
         Node::Jet(s, order) => (*s, *order),
         Node::Member { family, order, .. } => (*family, *order),

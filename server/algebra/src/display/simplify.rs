@@ -6,7 +6,7 @@ use crate::display::DisplayOptions;
 use crate::display::cost::Costs;
 use crate::display::factor::{Collect, Factoriser, is_proper_sum};
 use crate::display::order::Keys;
-use crate::display::polynomial::{Expander, Polynomial, Table};
+use crate::display::polynomial::{Expander, Polynomial, Table, derivative};
 use crate::display::trigonometry::Rewriter;
 use hashbrown::{HashMap, HashSet};
 
@@ -18,6 +18,9 @@ const MAX_WIDE: usize = 60;
 const MAX_WAYS: usize = 16;
 /// How many times longer a source may be whose sums are still tried as they are.
 const HOPELESS: usize = 3;
+
+/// What a repeated acceleration must save: one operation in so many.
+const REPEATED: usize = 15;
 
 /// One print's work.
 pub(crate) struct Simplifier<'a> {
@@ -103,6 +106,31 @@ impl<'a> Simplifier<'a> {
         })
     }
 
+    /// How often accelerations stand in an expression as it is written, beyond once each.
+    fn repeated_accelerations(&self, e: Expr) -> usize {
+        fn count(arena: &Arena, e: Expr, memo: &mut HashMap<Expr, usize>, distinct: &mut usize) -> usize {
+            if let Some(&n) = memo.get(&e) {
+                return n;
+            }
+            let mut n = 0usize;
+            if derivative(arena, e) >= Some(2) {
+                *distinct += 1;
+                n = 1;
+            } else {
+                let mut children = Vec::new();
+                arena.for_children(e, &mut |c| children.push(c));
+                for c in children {
+                    n = n.saturating_add(count(arena, c, memo, distinct));
+                }
+            }
+            memo.insert(e, n);
+            n
+        }
+        let (mut memo, mut distinct) = (HashMap::new(), 0);
+        let all = count(self.arena, e, &mut memo, &mut distinct);
+        (all - distinct.min(all)).min(1000)
+    }
+
     fn expanded(
         &mut self,
         e: Expr,
@@ -134,6 +162,11 @@ impl<'a> Simplifier<'a> {
         for (p, expected) in &versions {
             let accelerated = p.iter().any(|t| self.table.motion(&t.monomial).1);
             let degree = p.iter().map(|t| self.table.motion(&t.monomial).0).max().unwrap_or(0);
+            // Where velocities stand under a root, the mass matrix is no polynomial and is not collected for.
+            let rooted = p.iter().flat_map(|t| t.monomial.iter()).any(|(a, _)| {
+                let base = self.table.base(*a);
+                is_proper_sum(self.arena, base) && self.moves(base)
+            });
             let ways: &[Collect] = match (accelerated, p.len() > MAX_WAYS) {
                 // What is long gains nothing by being collected less.
                 (true, true) => &[Collect::Accelerations, Collect::Motion, Collect::Coefficients],
@@ -154,9 +187,13 @@ impl<'a> Simplifier<'a> {
                     // A momentum is linear in the velocities, and so it reads.
                     cost += 2;
                 }
-                if accelerated && !matches!(collect, Collect::Accelerations | Collect::Motion) {
-                    // An acceleration in two places must be worth it.
+                if accelerated && rooted && !matches!(collect, Collect::Accelerations | Collect::Motion) {
                     cost += 1;
+                }
+                if accelerated && !rooted {
+                    // An acceleration in two places must be worth it: its coefficient is an entry of the mass matrix.
+                    let repeated = self.repeated_accelerations(e);
+                    cost += if kept { repeated.min(1) } else { (cost / REPEATED).max(1) * repeated };
                 }
                 if !expected {
                     // Forms that a reader would not expect must be clearly shorter.
