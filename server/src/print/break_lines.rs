@@ -30,7 +30,8 @@ fn breaks(text: &str) -> Vec<Break> {
         match c {
             '(' | '[' => depth += 1,
             ')' | ']' => depth = depth.saturating_sub(1),
-            ' ' => {
+            // The right side of an equation is not left alone.
+            ' ' if &text[i..] != " = 0" => {
                 let sign =
                     matches!(chars.peek(), Some((_, '+' | '-' | '−' | '='))) && previous != ':' && previous != ',';
                 let extra = if sign { 0 } else { SPACE };

@@ -6,9 +6,10 @@ use crate::print::paragraphs;
 use leastwise_analysis::report::{Answer, CoordinateRow, Finding, Formula, Sheet, Status, SymmetryRow};
 use leastwise_grammar::tree::Severity;
 use std::fmt::Write;
+use unicode_normalization::UnicodeNormalization;
 
 /// What fits on a line, in widths of a letter.
-const LINE: f64 = 62.0;
+const LINE: f64 = 70.0;
 /// A matrix with more columns is listed entry by entry.
 const MOST_COLUMNS: usize = 8;
 /// Entries that are listed at most.
@@ -284,26 +285,37 @@ fn kept(answer: &Answer) -> String {
     }
 }
 
-/// A formula's lines, broken before the signs outside braces; brackets that are cut get invisible partners.
+/// A formula's lines, broken before the signs outside braces, at the outermost sign that leaves a line at least a third
+/// full; brackets that are cut get invisible partners.
 fn broken(latex: &str, room: f64) -> Vec<String> {
+    let pieces = pieces(latex);
     let mut out = Vec::new();
-    let mut line = String::new();
-    let (mut columns, mut open) = (0.0, 0usize);
-    // A piece begins at each sign outside braces.
-    for piece in pieces(latex) {
-        let w = glyphs(piece.text);
-        if columns > 0.0 && columns + w > room {
-            line = line.trim_end().to_string();
-            line.push_str(&" \\right.".repeat(open));
-            out.push(std::mem::take(&mut line));
-            line.push_str(&"\\left. ".repeat(open));
-            columns = 4.0;
+    // The first piece of the line, and the brackets open before it.
+    let (mut from, mut before) = (0, 0);
+    while from < pieces.len() {
+        let inset = if from > 0 { 4.0 } else { 0.0 };
+        let mut columns = inset;
+        let mut best: Option<usize> = None;
+        let mut fits = true;
+        for (k, piece) in pieces.iter().enumerate().skip(from) {
+            columns += piece.width;
+            if columns > room && k > from {
+                fits = false;
+                break;
+            }
+            let full = columns >= room / 3.0;
+            let outer = best.is_none_or(|b| piece.open <= pieces[b].open || columns - piece.width < room / 3.0);
+            if outer || !full {
+                best = Some(k);
+            }
         }
-        line.push_str(piece.text);
-        columns += w;
-        open = piece.open;
+        let last = if fits { pieces.len() - 1 } else { best.unwrap_or(from) };
+        let text: String = pieces[from..=last].iter().map(|p| p.text).collect();
+        let open = if last + 1 < pieces.len() { pieces[last].open } else { 0 };
+        let lead = "\\left. ".repeat(before);
+        out.push(format!("{lead}{}{}", if open > 0 { text.trim_end() } else { &text }, " \\right.".repeat(open)));
+        (from, before) = (last + 1, open);
     }
-    out.push(line);
     out
 }
 
@@ -311,6 +323,8 @@ struct Piece<'a> {
     text: &'a str,
     /// How many `\left` are open at its end.
     open: usize,
+    /// About how wide it is.
+    width: f64,
 }
 
 fn pieces(latex: &str) -> Vec<Piece<'_>> {
@@ -326,7 +340,7 @@ fn pieces(latex: &str) -> Vec<Piece<'_>> {
             b'\\' if rest.starts_with("\\left") && !starts_word(rest, 5) => open += 1,
             b'\\' if rest.starts_with("\\right") && !starts_word(rest, 6) => open = open.saturating_sub(1),
             b' ' if braces == 0 && i > from && is_sign(rest) => {
-                out.push(Piece { text: &latex[from..i], open });
+                out.push(Piece { text: &latex[from..i], open, width: glyphs(&latex[from..i]) });
                 from = i;
             }
             _ => {}
@@ -337,7 +351,8 @@ fn pieces(latex: &str) -> Vec<Piece<'_>> {
             i += 1;
         }
     }
-    out.push(Piece { text: &latex[from.min(latex.len())..], open });
+    let rest = &latex[from.min(latex.len())..];
+    out.push(Piece { text: rest, open, width: glyphs(rest) });
     out
 }
 
@@ -346,7 +361,7 @@ fn starts_word(rest: &str, at: usize) -> bool {
 }
 
 fn is_sign(rest: &str) -> bool {
-    [" + ", " - ", " = ", " \\quad "].iter().any(|s| rest.starts_with(s))
+    rest != " = 0" && [" + ", " - ", " = ", " \\quad "].iter().any(|s| rest.starts_with(s))
 }
 
 /// About how wide a formula is, in widths of a letter: the larger part of a fraction, scripts at seven tenths.
@@ -443,7 +458,14 @@ pub fn escape(text: &str) -> String {
     let mut out = String::new();
     let mut quotes = text.matches('`').count();
     let mut code = false;
-    for c in text.chars() {
+    let mut chars = text.nfd().peekable();
+    while let Some(c) = chars.next() {
+        if let Some(accent) = chars.peek().and_then(|mark| accent(c, *mark)) {
+            chars.next();
+            let base = sign(c).map_or_else(|| c.to_string(), String::from);
+            let _ = write!(out, "\\ensuremath{{{accent}{{{base}}}}}");
+            continue;
+        }
         match c {
             '`' if code || quotes > 1 => {
                 out.push_str(if code { "}" } else { "\\texttt{" });
@@ -471,7 +493,16 @@ pub fn escape(text: &str) -> String {
             },
         }
     }
-    out
+    out.nfc().collect()
+}
+
+/// Newton's dots, which few fonts have on every letter; other marks, and those of `ä` or `ö`, stay text.
+fn accent(letter: char, mark: char) -> Option<&'static str> {
+    match mark {
+        '\u{307}' => Some("\\dot"),
+        '\u{308}' if !"aeiouyAEIOUY".contains(letter) => Some("\\ddot"),
+        _ => None,
+    }
 }
 
 /// A coordinate's name as a symbol: `θ₁`, `x[3]`, `m_cart`.
@@ -642,6 +673,7 @@ mod tests {
     #[test]
     fn text_is_escaped() {
         assert_eq!(escape("a_b & 50 % of $θ$"), "a\\_b \\& 50 \\% of \\$\\ensuremath{\\theta}\\$");
+        assert_eq!(escape("ẋ₁, θ̈, ä"), "\\ensuremath{\\dot{x}}\\ensuremath{_1}, \\ensuremath{\\ddot{\\theta}}, ä");
         assert_eq!(escape("`a_b` and `"), "\\texttt{a\\_b} and \\textquoteleft{}");
         assert_eq!(escape("\\input{x}"), "\\textbackslash{}input\\{x\\}");
     }
@@ -649,6 +681,12 @@ mod tests {
     #[test]
     fn long_equations_are_broken_outside_braces() {
         assert_eq!(broken("a + \\frac{b + c}{d} - e", 10.0), ["a + \\frac{b + c}{d}", " - e"]);
+    }
+
+    #[test]
+    fn an_argument_is_not_cut_where_the_line_can_end_before_it() {
+        let cosine = " + i j \\cos\\left(g - h\\right)";
+        assert_eq!(broken(&format!("a b c d e f g h{cosine}"), 18.0), ["a b c d e f g h", cosine]);
     }
 
     #[test]
