@@ -57,7 +57,7 @@ RUNS = [
     (MODELS, "symmetric_top", "fast", 0.5, {("φ", 1): 2.0, ("θ", 1): 1.0}, {}, {},
      {"p_ψ": "I₃*(ψ' + φ'*cos(θ))", "p_φ": "(I₁*sin(θ)^2 + I₃*cos(θ)^2)*φ' + I₃*ψ'*cos(θ)"}),
     (MODELS, "two_link_pendulum", "swing", 3, {}, {}, {}, {}),
-    (MODELS, "foucault", "swing", 60, {("y", 1): 0.1}, {}, {}, {}),
+    (MODELS, "turning_ground", "swing", 60, {("y", 1): 0.1}, {}, {}, {}),
     (MODELS, "rayleigh_drag", "apart", 10, {("y", 1): 0.3}, {}, {}, {}),
 ]
 

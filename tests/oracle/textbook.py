@@ -72,7 +72,7 @@ TEXTBOOK = [
         "energy": "m*x'^2/2 + k*(x - v₀*t)^2/2", "energy conserved": False, "energy rate": "-k*v₀*(x - v₀*t)",
         "equation x": "m*x'' + k*(x - v₀*t)", "status ride": "exact", "rate ride": "0",
         "charge ride": "m*v₀*x' - m*x'^2/2 - k*(x - v₀*t)^2/2"}),
-    ("foucault", "LL section 39, problem 3", {
+    ("turning_ground", "LL section 39, problem 3", {
         "equation x": "m*(x'' + ω^2*x - 2*Ω*y')", "equation y": "m*(y'' + ω^2*y + 2*Ω*x')", "status turn": "exact"}),
     ("rotating_frame", "LL section 39, equations 39.6 to 39.11", {
         "lagrangian": "m*(x'^2 + y'^2 + z'^2)/2 + m*Ω*(x*y' - y*x') + m*Ω^2*(x^2 + y^2)/2 - U(x, y, z)",

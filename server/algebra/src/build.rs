@@ -394,9 +394,7 @@ impl Arena {
                     self.push_factor(inner, exponent, coefficient, factors, powers, zero, level + 1);
                     return;
                 }
-                if self.meta(base).primitive && !single
-                    || exponent.to_i64().is_some_and(|n| n.unsigned_abs() >= 64)
-                {
+                if self.meta(base).primitive && !single || exponent.to_i64().is_some_and(|n| n.unsigned_abs() >= 64) {
                     factors.push((base, exponent.clone()));
                     return;
                 }

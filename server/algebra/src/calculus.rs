@@ -164,14 +164,12 @@ impl Arena {
                     out.push(self.product(&[e, dx, l]));
                 }
                 if db != Self::ZERO {
-                    out.push(
-                        self.monomial(&[
-                            (e, Rational::ONE),
-                            (x, Rational::ONE),
-                            (db, Rational::ONE),
-                            (b, Rational::MINUS_ONE),
-                        ]),
-                    );
+                    out.push(self.monomial(&[
+                        (e, Rational::ONE),
+                        (x, Rational::ONE),
+                        (db, Rational::ONE),
+                        (b, Rational::MINUS_ONE),
+                    ]));
                 }
                 self.sum(&out)
             }
@@ -264,12 +262,7 @@ impl Arena {
     }
 
     /// Replaces atoms by expressions, all at once. Costs one visit per distinct node.
-    pub fn substitute(
-        &mut self,
-        e: Expr,
-        map: &HashMap<Expr, Expr>,
-        budget: &mut Budget,
-    ) -> Result<Expr, Stopped> {
+    pub fn substitute(&mut self, e: Expr, map: &HashMap<Expr, Expr>, budget: &mut Budget) -> Result<Expr, Stopped> {
         if self.depth(e) > MAX_DEPTH {
             return Err(Stopped::TooDeep);
         }

@@ -110,9 +110,7 @@ impl Rational {
     /// The residue modulo an odd prime below 2⁶³, or `None` where the prime divides the denominator.
     pub fn modulo(&self, p: u64) -> Option<(u64, u64)> {
         let (n, d) = match &self.0 {
-            Repr::Small(n, d) => {
-                ((*n as i128).rem_euclid(p as i128) as u64, (*d as i128).rem_euclid(p as i128) as u64)
-            }
+            Repr::Small(n, d) => ((*n as i128).rem_euclid(p as i128) as u64, (*d as i128).rem_euclid(p as i128) as u64),
             Repr::Big(r) => {
                 let m = IBig::from(p);
                 let n = ((r.numerator() % &m) + &m) % &m;

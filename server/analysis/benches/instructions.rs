@@ -13,9 +13,26 @@ use std::process::{Command, ExitCode};
 
 /// Cases by name, in the order of the table.
 const CASES: &[&str] = &[
-    "links_2", "links_3", "links_5", "links_10", "links_16", "links_24", "line_10", "line_50", "line_100", "line_1000",
-    "line_10000", "bodies_2", "bodies_4", "bodies_8", "heavy_top", "central_field", "links_10 potential edited",
-    "links_10 kinetic edited", "links_10 definition edited", "bodies_4 potential edited",
+    "links_2",
+    "links_3",
+    "links_5",
+    "links_10",
+    "links_16",
+    "links_24",
+    "line_10",
+    "line_50",
+    "line_100",
+    "line_1000",
+    "line_10000",
+    "bodies_2",
+    "bodies_4",
+    "bodies_8",
+    "heavy_top",
+    "central_field",
+    "links_10 potential edited",
+    "links_10 kinetic edited",
+    "links_10 definition edited",
+    "bodies_4 potential edited",
 ];
 
 /// How far a count may lie above its entry.
@@ -131,9 +148,9 @@ fn main() -> ExitCode {
     {
         let (case, timed) = (case.clone(), flag == "--median");
         // Deep expressions need a deep stack, as in the program.
-        let thread = std::thread::Builder::new().stack_size(256 << 20).spawn(move || {
-            if timed { println!("{:.1}", median(&case, 101)) } else { run(&case) }
-        });
+        let thread = std::thread::Builder::new()
+            .stack_size(256 << 20)
+            .spawn(move || if timed { println!("{:.1}", median(&case, 101)) } else { run(&case) });
         return match thread.map(std::thread::JoinHandle::join) {
             Ok(Ok(())) => ExitCode::SUCCESS,
             _ => ExitCode::FAILURE,

@@ -35,12 +35,7 @@ pub(crate) struct Desk {
 
 impl Default for Desk {
     fn default() -> Desk {
-        Desk {
-            epoch: 0,
-            zero: ZeroTest::new(Assumptions::new()),
-            memory: Memory::default(),
-            prints: Prints::default(),
-        }
+        Desk { epoch: 0, zero: ZeroTest::new(Assumptions::new()), memory: Memory::default(), prints: Prints::default() }
     }
 }
 
@@ -63,12 +58,8 @@ impl Session {
     pub fn derive(&mut self, checked: &Checked) -> Derived {
         let mut desk = self.desk_for(checked);
         let mut budget = Budget::new(NODES);
-        let mut cx = Context {
-            arena: &mut self.arena,
-            zero: &mut desk.zero,
-            budget: &mut budget,
-            memory: &mut desk.memory,
-        };
+        let mut cx =
+            Context { arena: &mut self.arena, zero: &mut desk.zero, budget: &mut budget, memory: &mut desk.memory };
         let derived = derive(&mut cx, checked);
         self.desk = Some(desk);
         derived

@@ -4,8 +4,8 @@ use crate::checked::Checked;
 use crate::derive::{Derived, total};
 use crate::formula::Prints;
 use crate::report::{
-    Answer, BreakerRow, ConservedRow, CoordinateRow, EnergyRow, Formula, MassEntry, Members, Sheet, Status, SymmetryRow,
-    TermRow,
+    Answer, BreakerRow, ConservedRow, CoordinateRow, EnergyRow, Formula, MassEntry, Members, Sheet, Status,
+    SymmetryRow, TermRow,
 };
 use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, Witness, ZeroTest};
 use leastwise_mechanics::context::{Context, Memory, Parts};
@@ -210,10 +210,9 @@ impl Maker<'_> {
                 .collect();
             let (name, members) = match (range, q.members) {
                 (Some((a, b)), Some(_)) if a == b => (format!("{}[{a}]", self.arena.name(q.symbol)), None),
-                (Some((a, b)), Some(m)) => (
-                    q.label(self.arena),
-                    Some(Members { index: self.arena.name(m.index), range: (*a, *b) }),
-                ),
+                (Some((a, b)), Some(m)) => {
+                    (q.label(self.arena), Some(Members { index: self.arena.name(m.index), range: (*a, *b) }))
+                }
                 _ => (q.label(self.arena), None),
             };
             let cyclic = match range {

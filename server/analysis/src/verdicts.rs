@@ -338,7 +338,10 @@ fn symmetry(
                     "charge-taken",
                     Severity::Information,
                     claim.range.clone(),
-                    format!("L is invariant under `{name}`, but {} {verb} the charge at the rate {rate}", list(&forces)),
+                    format!(
+                        "L is invariant under `{name}`, but {} {verb} the charge at the rate {rate}",
+                        list(&forces)
+                    ),
                 ));
             }
         }
@@ -466,8 +469,7 @@ fn periodicity(maker: &mut Maker<'_>, checked: &Checked, out: &mut Vec<Finding>)
             if all.is_empty() {
                 continue;
             }
-            let mut cx =
-                Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
+            let mut cx = Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
             if !matches!(cx.vanishes(&all), Verdict::Refuted(_)) {
                 continue;
             }

@@ -88,8 +88,7 @@ fn in_component(summands: &dyn Summands, component: &[usize]) -> (Vec<usize>, bo
     let mut set: Vec<usize> = component.to_vec();
     let mut k = 0;
     while k < set.len() {
-        let rest: Vec<usize> =
-            component.iter().copied().filter(|c| !set.contains(c) || *c == set[k]).collect();
+        let rest: Vec<usize> = component.iter().copied().filter(|c| !set.contains(c) || *c == set[k]).collect();
         if summands.sum_vanishes(&rest) {
             set.remove(k);
         } else {

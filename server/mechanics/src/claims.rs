@@ -38,7 +38,12 @@ impl std::fmt::Display for Unanswered {
 }
 
 /// The accelerations' linear system, of the coordinates whose accelerations are asked for and of those coupled to them.
-fn motion(cx: &mut Context<'_>, model: &Model, rows: &MassRows, asked: &[bool]) -> Result<(Vec<usize>, Motion), Stopped> {
+fn motion(
+    cx: &mut Context<'_>,
+    model: &Model,
+    rows: &MassRows,
+    asked: &[bool],
+) -> Result<(Vec<usize>, Motion), Stopped> {
     let block = blocks(rows);
     let wanted: HashSet<usize> = (0..asked.len()).filter(|&i| asked[i]).map(|i| block[i]).collect();
     let of: Vec<usize> = (0..asked.len()).filter(|&i| wanted.contains(&block[i])).collect();
@@ -51,12 +56,7 @@ fn motion(cx: &mut Context<'_>, model: &Model, rows: &MassRows, asked: &[bool]) 
 }
 
 /// Decides whether `claim` is constant along motions.
-pub fn examine(
-    cx: &mut Context<'_>,
-    model: &Model,
-    rows: Option<&MassRows>,
-    claim: Expr,
-) -> Result<Claim, Stopped> {
+pub fn examine(cx: &mut Context<'_>, model: &Model, rows: Option<&MassRows>, claim: Expr) -> Result<Claim, Stopped> {
     let rate = cx.arena.total(claim, cx.budget)?;
     let refuse = |reason| Ok(Claim { rate, verdict: Err(reason) });
     if matches!(cx.vanishes(&[(rate, leastwise_algebra::Rational::ONE)]), Verdict::Proved) {

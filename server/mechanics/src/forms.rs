@@ -164,7 +164,11 @@ pub fn aligned(
                 for f in fs {
                     let e = match (range, f.range, q.members) {
                         (Some((a, b)), Some((x, y)), Some(m)) if x <= *a && *b <= y => {
-                            if a == b { at_member(arena, f.expr, m.index, *a, budget)? } else { f.expr }
+                            if a == b {
+                                at_member(arena, f.expr, m.index, *a, budget)?
+                            } else {
+                                f.expr
+                            }
                         }
                         (None, None, _) => f.expr,
                         _ => continue,
@@ -181,10 +185,7 @@ pub fn aligned(
 }
 
 /// Applies `f` to each form.
-pub fn map(
-    forms: &[Form],
-    mut f: impl FnMut(Expr) -> Result<Expr, Stopped>,
-) -> Result<Vec<Form>, Stopped> {
+pub fn map(forms: &[Form], mut f: impl FnMut(Expr) -> Result<Expr, Stopped>) -> Result<Vec<Form>, Stopped> {
     forms.iter().map(|form| Ok(Form { range: form.range, expr: f(form.expr)? })).collect()
 }
 
@@ -286,9 +287,9 @@ impl Resolver {
                     out.push((r, n.clone()));
                 }
                 // A sum of marks is multiplied out, so that each mark is a factor of its summand.
-                let marked = out.iter().position(|(b, n)| {
-                    n.is_one() && matches!(arena.node(*b), Node::Sum(..)) && is_marked(arena, *b)
-                });
+                let marked = out
+                    .iter()
+                    .position(|(b, n)| n.is_one() && matches!(arena.node(*b), Node::Sum(..)) && is_marked(arena, *b));
                 let Some(at) = marked else { return Ok(arena.monomial(&out)) };
                 let (sum, _) = out.remove(at);
                 let rest = arena.monomial(&out);
@@ -310,9 +311,7 @@ impl Resolver {
                     Ok(e)
                 }
             }
-            Node::Bound { index, lower, upper, body } => {
-                self.bound(arena, index, lower, upper, body, open, budget)
-            }
+            Node::Bound { index, lower, upper, body } => self.bound(arena, index, lower, upper, body, open, budget),
             _ => Ok(e),
         }
     }
@@ -420,10 +419,8 @@ impl Resolver {
                     rest.extend(narrowing.into_iter().map(|x| x.2));
                     let step = step_symbol(arena);
                     let (above, below) = (arena.sub(root, lo), arena.sub(hi, root));
-                    let (s1, s2) = (
-                        arena.unspecified(step, None, &[0], &[above]),
-                        arena.unspecified(step, None, &[0], &[below]),
-                    );
+                    let (s1, s2) =
+                        (arena.unspecified(step, None, &[0], &[above]), arena.unspecified(step, None, &[0], &[below]));
                     let core = arena.monomial(&rest);
                     let i = arena.sym(index);
                     let core = arena.substitute(core, &[(i, root)].into_iter().collect(), budget)?;
@@ -466,13 +463,7 @@ impl Resolver {
 }
 
 /// All coordinates' expressions as a map from free index to member, for a quick look-up of η at a member.
-pub fn at_index(
-    arena: &mut Arena,
-    e: Expr,
-    q: &Coordinate,
-    index: Expr,
-    budget: &mut Budget,
-) -> Result<Expr, Stopped> {
+pub fn at_index(arena: &mut Arena, e: Expr, q: &Coordinate, index: Expr, budget: &mut Budget) -> Result<Expr, Stopped> {
     match q.members {
         None => Ok(e),
         Some(m) => {

@@ -84,7 +84,8 @@ fn potential(cx: &mut Context<'_>, v: Expr, pairs: &[(Expr, Expr)]) -> Result<Op
     }
     let t = time(cx.arena);
     let t = cx.arena.sym(t);
-    let moving = |cx: &Context<'_>, e: Expr| cx.arena.atoms(e).iter().any(|a| pairs.iter().any(|p| p.0 == *a || p.1 == *a));
+    let moving =
+        |cx: &Context<'_>, e: Expr| cx.arena.atoms(e).iter().any(|a| pairs.iter().any(|p| p.0 == *a || p.1 == *a));
     if moving(cx, rest) {
         // What is left may vanish without looking so.
         if !matches!(cx.vanishes(&[(rest, Rational::ONE)]), Verdict::Proved) {

@@ -9,11 +9,7 @@ use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped};
 
 /// The additive parts of L with their signs, term by term.
 pub fn signed_parts(model: &Model) -> Vec<Parts> {
-    model
-        .terms
-        .iter()
-        .map(|t| t.parts.iter().map(|&p| (p, Rational::integer(t.sign()))).collect())
-        .collect()
+    model.terms.iter().map(|t| t.parts.iter().map(|&p| (p, Rational::integer(t.sign()))).collect()).collect()
 }
 
 /// L as one expression.
@@ -26,12 +22,7 @@ pub fn lagrangian(cx: &mut Context<'_>, model: &Model) -> Result<Expr, Stopped> 
 pub type FormParts = Vec<(Vec<Form>, Rational)>;
 
 /// ∂/∂q⁽ⁿ⁾ of each part.
-pub fn by_coordinate(
-    cx: &mut Context<'_>,
-    parts: &Parts,
-    q: &Coordinate,
-    order: u16,
-) -> Result<FormParts, Stopped> {
+pub fn by_coordinate(cx: &mut Context<'_>, parts: &Parts, q: &Coordinate, order: u16) -> Result<FormParts, Stopped> {
     let mut out = Vec::new();
     for (part, c) in parts {
         let forms = forms::derivative(cx.arena, *part, q, order, cx.budget)?;

@@ -102,7 +102,7 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
             let lists = questions(cx, q, &parts)?;
             cx.all_vanish(&lists)
         } else {
-            verdict.clone()
+            verdict
         };
         cyclic.push(Cyclic { cyclic: verdict, momentum });
     }
@@ -242,8 +242,7 @@ const MAX_COMPARED: usize = 256;
 
 /// Blames summands given by expressions; `None` where their residues cannot be told.
 fn blamed(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Option<Blamed>, Stopped> {
-    let live: Vec<usize> =
-        (0..summands.len()).filter(|&k| summands[k].iter().any(|&e| e != Arena::ZERO)).collect();
+    let live: Vec<usize> = (0..summands.len()).filter(|&k| summands[k].iter().any(|&e| e != Arena::ZERO)).collect();
     if live.len() > MAX_COMPARED {
         return Ok(Some(Blamed { culprits: live, smallest: false }));
     }
@@ -268,11 +267,7 @@ fn blamed_parts(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Vec<usiz
 }
 
 /// Answers a symmetry claim.
-pub fn answer_symmetry(
-    cx: &mut Context<'_>,
-    model: &Model,
-    images: &[Image],
-) -> Result<SymmetryAnswer, NoGenerator> {
+pub fn answer_symmetry(cx: &mut Context<'_>, model: &Model, images: &[Image]) -> Result<SymmetryAnswer, NoGenerator> {
     let g = symmetry::generator(cx, model, images)?;
     Ok(answer_generator(cx, model, g)?)
 }

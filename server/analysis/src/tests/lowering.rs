@@ -7,7 +7,9 @@ use leastwise_algebra::{Budget, DisplayOptions, verbatim};
 
 /// Checks that two formulas are the same expression after expansion. `declarations` come before them.
 fn same(declarations: &str, left: &str, right: &str) {
-    let text = format!("{declarations}\nlet whole = {left}\nlagrangian a = {left}\nlagrangian b = {right}\nlagrangian c = whole\n");
+    let text = format!(
+        "{declarations}\nlet whole = {left}\nlagrangian a = {left}\nlagrangian b = {right}\nlagrangian c = whole\n"
+    );
     let (mut session, checked) = lowered(&text);
     let sums: Vec<_> = checked.model().terms.iter().map(|t| session.arena.sum(&t.parts)).collect();
     // The parts of `a` are its summands: together they are the whole, which `c` gives in one piece.
