@@ -1,7 +1,7 @@
 //! `sheet --as latex`: a complete article. Needs amsmath; pdfLaTeX, XeLaTeX and LuaLaTeX all take it.
 
 use crate::print::letters::Letters;
-use crate::print::page::listed;
+use crate::print::page::{acting, listed};
 use crate::print::paragraphs;
 use leastwise_analysis::report::{Answer, CoordinateRow, Finding, Formula, Sheet, Status, SymmetryRow};
 use leastwise_grammar::tree::Severity;
@@ -157,7 +157,7 @@ impl Article {
             let q = symbol(&c.name);
             let _ = match c.momentum_conserved {
                 true => writeln!(self.out, "${q}$ is cyclic; $p_{{{q}}}$ is conserved.\n"),
-                false => writeln!(self.out, "${q}$ is cyclic, but forces act on $p_{{{q}}}$.\n"),
+                false => writeln!(self.out, "${q}$ is cyclic, but {} act on $p_{{{q}}}$.\n", acting(c)),
             };
         }
     }

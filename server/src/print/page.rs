@@ -6,6 +6,7 @@ use crate::print::break_lines::{Line, lines, prose, width};
 use crate::print::letters::Letters;
 use crate::print::{counts, paragraphs, severity_word};
 use leastwise_analysis::report::{Answer, CoordinateRow, Finding, Formula, Sheet, Status, SymmetryRow};
+use leastwise_grammar::tree::Severity;
 use std::fmt::Write;
 
 /// Columns before a formula's head.
@@ -25,6 +26,10 @@ const MANY_ALIKE: usize = 3;
 pub fn sheet(sheet: &Sheet, findings: &[Finding], source: &Lines<'_>, page: Page) -> String {
     let mut p = Setter { out: String::new(), page, letters: Letters::of(sheet) };
     p.title(sheet);
+    if findings.iter().any(|f| f.severity == Severity::Error) {
+        p.gap();
+        p.prose(0, "The model has errors, listed at the end; what depends on them is missing.");
+    }
     p.lagrangian(sheet);
     p.equations(&sheet.coordinates);
     p.momenta(&sheet.coordinates);
@@ -365,11 +370,16 @@ fn members(c: &CoordinateRow) -> String {
     c.members.as_ref().map(|m| format!("{} = {} … {}", m.index, m.range.0, m.range.1)).unwrap_or_default()
 }
 
+/// What changes the momentum of a cyclic coordinate.
+pub fn acting(c: &CoordinateRow) -> &'static str {
+    if c.reaction.as_ref().is_some_and(|r| !is_zero(r)) { "reactions" } else { "forces" }
+}
+
 fn cyclic_remark(c: &CoordinateRow, p: &str) -> String {
     match (&c.cyclic_undecided, c.cyclic, c.momentum_conserved) {
         (Some(reason), _, _) => format!("not decided whether {} is cyclic: {reason}", c.name),
         (None, true, true) => format!("{} is cyclic, {p} is conserved", c.name),
-        (None, true, false) => format!("{} is cyclic, but forces act on {p}", c.name),
+        (None, true, false) => format!("{} is cyclic, but {} act on {p}", c.name, acting(c)),
         (None, false, true) => format!("{p} is conserved"),
         (None, false, false) => String::new(),
     }
@@ -456,6 +466,24 @@ mod tests {
         let plain = printed(80, true).replace("\x1b[0m", "").replace("\x1b[1m", "").replace("\x1b[2m", "");
         assert_eq!(plain, printed(80, false));
         assert!(printed(80, true).contains("\x1b[1mLagrangian\x1b[0m"));
+    }
+
+    #[test]
+    fn errors_are_announced_at_the_top() {
+        let mut found = fixture::outcome().findings;
+        let text = |found: &[Finding]| sheet(&fixture::sheet(), found, &Lines::new(""), Page::PLAIN);
+        assert!(!text(&found).contains("has errors"));
+        found[0].severity = Severity::Error;
+        assert!(text(&found).contains("The model has errors"));
+    }
+
+    #[test]
+    fn reactions_act_on_cyclic_momenta() {
+        let mut row = fixture::sheet().coordinates.remove(1);
+        row.momentum_conserved = false;
+        assert_eq!(cyclic_remark(&row, "p_φ"), "φ is cyclic, but forces act on p_φ");
+        row.reaction = Some(fixture::formula("λ_rod", "λ_rod", ""));
+        assert_eq!(cyclic_remark(&row, "p_φ"), "φ is cyclic, but reactions act on p_φ");
     }
 
     #[test]
