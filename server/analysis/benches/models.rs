@@ -82,21 +82,21 @@ symmetry delay: t -> t + ε
     .to_string()
 }
 
-/// An edit of a potential term, never the same for two numbers.
+/// An edit of a potential term, never the same for two numbers, in text or meaning.
 pub fn edit_potential(text: &str, k: usize) -> String {
     let k = k + 3;
-    text.replace("sum(i: m[i] g P[i][2])", &format!("sum(i: m[i] g P[i][2]) + {k}/7 m[1] g l[1] sin θ[1]"))
-        .replace("sum(j in i+1", &format!("{k}/7 sum(j in i+1"))
+    text.replace("sum(i: m[i] g P[i][2])", &format!("sum(i: m[i] g P[i][2]) + {k}/1009 m[1] g l[1] sin θ[1]"))
+        .replace("sum(j in i+1", &format!("{k}/1009 sum(j in i+1"))
 }
 
 /// An edit of one kinetic summand.
 pub fn edit_kinetic(text: &str, k: usize) -> String {
     let k = k + 3;
-    text.replace("sum(i: 1/2 m[i] |P[i]'|^2)", &format!("sum(i: 1/2 m[i] |P[i]'|^2) + {k}/7 m[1] l[1]^2 θ[1]'^2"))
+    text.replace("sum(i: 1/2 m[i] |P[i]'|^2)", &format!("sum(i: 1/2 m[i] |P[i]'|^2) + {k}/1009 m[1] l[1]^2 θ[1]'^2"))
 }
 
 /// An edit of the definition that all terms use.
 pub fn edit_let(text: &str, k: usize) -> String {
     let k = k + 3;
-    text.replace("l[j] sin θ[j]", &format!("{k}/7 l[j] sin θ[j]"))
+    text.replace("l[j] sin θ[j]", &format!("{k}/1009 l[j] sin θ[j]"))
 }
