@@ -63,7 +63,12 @@ impl Field {
     /// The field of the prime 2⁶² − c, which must satisfy the conditions of this module.
     pub fn new(c: u64) -> Field {
         let mut f = Field { p: (1 << BITS) - c, c, unit: Element::ONE, inverses: Vec::new() };
-        f.inverses = (0..64).map(|n| f.inv(n)).collect();
+        // 1/n = −⌊p/n⌋ / (p mod n): each from a smaller one.
+        f.inverses = vec![0, 1];
+        for n in 2..64 {
+            let smaller = f.inverses[(f.p % n) as usize];
+            f.inverses.push(f.neg(f.mul(f.p / n, smaller)));
+        }
         f.unit = f.root_of_unity();
         f
     }
