@@ -289,7 +289,7 @@ impl Maker<'_> {
             formula: self.print(e.function),
             conserved,
             rate: self.print(rate),
-            is_total_energy: total_energy.is_some_and(Verdict::is_proved),
+            is_total_energy: total_energy.is_proved(),
         })
     }
 

@@ -39,14 +39,12 @@ pub fn energy(cx: &mut Context<'_>, model: &Model) -> Result<Energy, Stopped> {
     Ok(Energy { function, rate, conserved, autonomous })
 }
 
-/// Whether h is the sum of the kinetic and potential terms. `None` where a term is neither.
-pub fn is_total_energy(cx: &mut Context<'_>, model: &Model, function: Expr) -> Option<Verdict> {
-    if model.terms.iter().any(|t| t.kind == TermKind::Lagrangian) {
-        return None;
-    }
+/// Whether h is the sum of the kinetic and potential terms. Terms declared `lagrangian` may drop out of h, as those
+/// linear in the velocities do.
+pub fn is_total_energy(cx: &mut Context<'_>, model: &Model, function: Expr) -> Verdict {
     let mut parts: Parts = vec![(function, Rational::MINUS_ONE)];
-    for t in &model.terms {
+    for t in model.terms.iter().filter(|t| t.kind != TermKind::Lagrangian) {
         parts.extend(t.parts.iter().map(|&p| (p, Rational::ONE)));
     }
-    Some(cx.vanishes(&parts))
+    cx.vanishes(&parts)
 }

@@ -369,8 +369,8 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
     })
 }
 
-/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, it is compared with the
-/// charges whose rates are known, and with the energy function.
+/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, and with constraints, it is
+/// compared with the charges whose rates are known, and with the energy function.
 pub fn answer_claim(
     cx: &mut Context<'_>,
     model: &Model,
@@ -379,10 +379,18 @@ pub fn answer_claim(
     claim: Expr,
 ) -> Result<claims::Claim, Stopped> {
     let mut result = claims::examine(cx, model, answers.rows.as_ref(), claim)?;
-    if matches!(result.verdict, Err(Unanswered::LargeFamily)) {
+    if matches!(result.verdict, Err(Unanswered::LargeFamily | Unanswered::Constraints)) {
+        // Reactions of constraints at rest do no work; of others nothing is known here.
         let energy = (answers.energy.function, answers.energy.conserved);
-        for (charge, verdict) in known.iter().chain([&energy]) {
-            if !matches!(verdict, Verdict::Undecided(_)) && claims::is_multiple(cx, claim, *charge) {
+        let idle = constraints_at_rest(cx, model)?;
+        for (charge, verdict) in known.iter().chain(idle.then_some(&energy)) {
+            // What is not zero off the constraint surface may vanish on it.
+            let decided = match verdict {
+                Verdict::Proved => true,
+                Verdict::Refuted(_) => model.constraints.is_empty(),
+                Verdict::Undecided(_) => false,
+            };
+            if decided && claims::is_multiple(cx, claim, *charge) {
                 result.verdict = Ok(*verdict);
                 break;
             }
