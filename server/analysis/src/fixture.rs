@@ -3,6 +3,7 @@
 use crate::checked::Checked;
 use crate::database::Session;
 use crate::include::{Files, NoFiles};
+use crate::report::Finding;
 use leastwise_grammar::tree::Severity;
 
 /// Files of a test.
@@ -28,8 +29,29 @@ pub(crate) fn check_in(text: &str, files: &dyn Files) -> Checked {
 
 /// The same in a session.
 pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -> Checked {
+    let (model, expected) = marked(text);
+    let checked = session.check("folder/model.least", &model, files);
+    compare(&model, &expected, &checked.findings);
+    checked
+}
+
+/// The same with the findings of the mechanics.
+pub(crate) fn judge(text: &str) -> Checked {
+    let mut session = Session::new();
+    let (model, expected) = marked(text);
+    let checked = session.check("folder/model.least", &model, &NoFiles);
+    let derived = session.derive(&checked);
+    compare(&model, &expected, &session.findings(&checked, &derived));
+    checked
+}
+
+/// A place and what is expected there.
+type Expected = (usize, usize, String);
+
+/// Parts the model from what is written under its lines.
+fn marked(text: &str) -> (String, Vec<Expected>) {
     let mut model = String::new();
-    let mut expected: Vec<(usize, usize, String)> = Vec::new();
+    let mut expected: Vec<Expected> = Vec::new();
     let mut line_start = 0;
     for line in text.lines() {
         let marked = line.trim_start();
@@ -51,12 +73,15 @@ pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -
             }
         }
     }
-    let checked = session.check("folder/model.least", &model, files);
-    let mut left: Vec<_> = checked.findings.iter().collect();
-    let shown = |f: &crate::report::Finding| {
+    (model, expected)
+}
+
+fn compare(model: &str, expected: &[Expected], findings: &[Finding]) {
+    let mut left: Vec<_> = findings.iter().collect();
+    let shown = |f: &Finding| {
         format!("{:?} {} at {:?} `{}`: {}", f.severity, f.code, f.range, &model[f.range.clone()], f.message)
     };
-    for (start, end, message) in &expected {
+    for (start, end, message) in expected {
         let (code, words) = message.split_once(':').unwrap_or((message, ""));
         let found =
             left.iter().position(|f| f.range == (*start..*end) && f.code == code && f.message.contains(words.trim()));
@@ -65,16 +90,15 @@ pub(crate) fn check_with(session: &mut Session, text: &str, files: &dyn Files) -
             None => panic!(
                 "no finding `{message}` at {start}..{end} `{}`; there are\n{}",
                 &model[*start..*end],
-                checked.findings.iter().map(shown).collect::<Vec<_>>().join("\n")
+                findings.iter().map(shown).collect::<Vec<_>>().join("\n")
             ),
         }
     }
     assert!(left.is_empty(), "unexpected findings\n{}", left.into_iter().map(shown).collect::<Vec<_>>().join("\n"));
-    for f in &checked.findings {
+    for f in findings {
         assert!(crate::codes::explanation(f.code).is_some(), "{} is not in the table of codes", f.code);
         assert!(!f.message.ends_with('.'), "{}", f.message);
     }
-    checked
 }
 
 /// Whether a model has no error.

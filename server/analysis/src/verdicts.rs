@@ -66,6 +66,10 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
         }
     }
     periodicity(maker, checked, &mut out);
+    if !checked.complete {
+        // What a broken item says is missing: whatever it might still change is not told.
+        out.retain(|f| matches!(f.code, "not-cyclic" | "symmetry-broken" | "not-periodic" | "not-the-identity"));
+    }
     out
 }
 

@@ -5,3 +5,4 @@ mod incremental;
 mod lowering;
 mod names;
 mod values;
+mod verdicts;
