@@ -1,6 +1,7 @@
 //! Every rule about names and formulas, once.
 
 mod formulas;
+mod history;
 mod incremental;
 mod lowering;
 mod names;
