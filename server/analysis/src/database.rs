@@ -426,7 +426,7 @@ fn fingerprint(scope: &Scope, parsed: &Parsed, hasher: &mut DefaultHasher) -> bo
     for used in &parsed.uses.names {
         match scope.get(&used.name) {
             Some(d) => {
-                (d.fingerprint, d.failed).hash(hasher);
+                (d.fingerprint, d.failed, d.disputed).hash(hasher);
                 large |= d.large;
             }
             None => used.name.hash(hasher),

@@ -80,3 +80,13 @@ fn the_arena_does_not_grow_without_end() {
     assert!(session.epoch > 0);
     assert!(largest < 400_000, "{largest}");
 }
+
+#[test]
+fn a_second_declaration_reaches_what_uses_the_name() {
+    let mut session = Session::new();
+    let twice = "coordinate x\nparameter m\nkinetic T = 1/2 x'^2 + m'\nparameter m\n";
+    for text in ["coordinate x\nparameter m\nkinetic T = 1/2 x'^2 + m'\n", twice] {
+        let checked = session.check("a", text, &NoFiles);
+        assert_eq!(checked.findings, Session::new().check("a", text, &NoFiles).findings);
+    }
+}
