@@ -1,7 +1,7 @@
 //! Random expressions: what is printed is equal to its source, never longer, and reads back.
 
 use super::reader::{Names, read};
-use super::system::{budget, equal};
+use super::system::{budget, equal, verdict};
 use crate::arena::{Arena, Expr, Role};
 use crate::display::{DisplayOptions, textbook, verbatim};
 use crate::function::Function;
@@ -138,6 +138,7 @@ proptest! {
         prop_assert!(layout.operations() <= source.operations(), "{} from {}", layout.text(), source.text());
         let shown = layout.to_expr(&mut a).unwrap();
         prop_assert!(equal(&mut a, e, shown), "{} from {}", layout.text(), source.text());
+        prop_assert!(!verdict(&mut a, e, shown).is_refuted(), "{} from {}", layout.text(), source.text());
         for spelling in [layout.text(), layout.plain()] {
             let back = read(&mut a, &names(), &spelling);
             prop_assert_eq!(back, shown, "{}", spelling);

@@ -5,6 +5,7 @@ use crate::arena::{Arena, Expr, Node, Role};
 use crate::budget::Budget;
 use crate::display::{DisplayOptions, Layout, textbook, verbatim};
 use crate::rational::Rational;
+use crate::zero::{Assumptions, Verdict, ZeroTest};
 use std::fmt::Write;
 
 pub struct System {
@@ -93,6 +94,8 @@ impl System {
         let layout = textbook(&mut self.arena, e, &DisplayOptions::default(), &mut budget());
         let back = layout.to_expr(&mut self.arena).unwrap();
         assert!(equal(&mut self.arena, e, back), "not equal to its source: {}", layout.text());
+        let verdict = verdict(&mut self.arena, e, back);
+        assert!(verdict.is_proved(), "not proved equal to its source: {}: {verdict:?}", layout.text());
         let plain = read(&mut self.arena, &self.names, &layout.plain());
         assert_eq!(plain, back, "{}", layout.plain());
         if layout.abbreviations.is_empty() {
@@ -128,6 +131,12 @@ impl System {
         let _ = writeln!(out, "h = {}", self.print(h).text());
         out
     }
+}
+
+/// What the zero test says of the difference.
+pub fn verdict(arena: &mut Arena, a: Expr, b: Expr) -> Verdict {
+    let gap = arena.sub(a, b);
+    ZeroTest::new(Assumptions::new()).is_zero(arena, gap, &mut budget())
 }
 
 /// Compares values at random points.
