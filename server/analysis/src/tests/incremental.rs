@@ -82,6 +82,22 @@ fn the_arena_does_not_grow_without_end() {
 }
 
 #[test]
+fn derivations_do_not_pile_up_either() {
+    let mut session = Session::new();
+    let (mut largest, mut epochs) = (0, 0);
+    for k in 0..400 {
+        let text = MODEL.replacen("1/2 m x^2", &format!("m sum(i in 1..60: sin({k} x + i y)^2)"), 1);
+        let checked = session.check("a", &text, &NoFiles);
+        let derived = session.derive(&checked);
+        assert!(derived.answers.is_ok());
+        largest = largest.max(session.arena.len());
+        epochs = session.epoch;
+    }
+    assert!(epochs > 0);
+    assert!(largest < 600_000, "{largest}");
+}
+
+#[test]
 fn a_second_declaration_reaches_what_uses_the_name() {
     let mut session = Session::new();
     let twice = "coordinate x\nparameter m\nkinetic T = 1/2 x'^2 + m'\nparameter m\n";
