@@ -271,20 +271,11 @@ impl Maker<'_> {
         let e = &answers.energy;
         let total_energy = is_total_energy(&mut self.cx(), model, e.function);
         let rate = total(self.arena, &e.rate);
-        let conserved = if e.conserved.is_proved() {
-            if model.constraints.is_empty() {
-                Answer::Yes
-            } else {
-                // Constraints that move do work.
-                match lagrange::constraints_at_rest(&mut self.cx(), model)? {
-                    true => Answer::Yes,
-                    false => Answer::Undecided(leastwise_mechanics::claims::Unanswered::Constraints.to_string()),
-                }
-            }
-        } else {
-            self.answer(rate, &e.conserved)
+        let conserved = match &answers.energy_conserved {
+            Ok(v) => self.answer(rate, v),
+            Err(reason) => Answer::Undecided(reason.to_string()),
         };
-        let rate = if e.conserved.is_proved() { Arena::ZERO } else { rate };
+        let rate = if conserved == Answer::Yes { Arena::ZERO } else { rate };
         Ok(EnergyRow {
             formula: self.print(e.function),
             conserved,

@@ -4,6 +4,7 @@ use crate::context::{Context, Parts};
 use crate::lagrange::jet_order;
 use crate::mass::{MassRows, blocks, coasting, dense, right_sides};
 use crate::model::Model;
+use crate::surface;
 use leastwise_algebra::{Arena, Expr, Motion, Stopped, Verdict};
 use std::collections::HashSet;
 
@@ -19,7 +20,7 @@ pub struct Claim {
 /// Why a claim is not decided before any zero test.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub enum Unanswered {
-    /// Motions lie on the constraint surface; rates on it are not decided yet.
+    /// Motions lie on the constraint surface, and it is not solved for coordinates.
     Constraints,
     /// The system is a large family whose accelerations are not solved for.
     LargeFamily,
@@ -30,7 +31,9 @@ pub enum Unanswered {
 impl std::fmt::Display for Unanswered {
     fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
         f.write_str(match self {
-            Unanswered::Constraints => "the model has constraints, and rates on their surface are not decided yet",
+            Unanswered::Constraints => {
+                "the constraints are not solved for coordinates, so that states on their surface are not known"
+            }
             Unanswered::LargeFamily => "the accelerations of a family of more than 64 members are not solved for",
             Unanswered::Accelerations => "the claim contains accelerations",
         })
@@ -63,18 +66,22 @@ pub fn examine(cx: &mut Context<'_>, model: &Model, rows: Option<&MassRows>, cla
         // Constant on every curve, motion or not.
         return Ok(Claim { rate, verdict: Ok(Verdict::Proved) });
     }
-    if !model.constraints.is_empty() {
-        return refuse(Unanswered::Constraints);
-    }
-    let Some(rows) = rows else { return refuse(Unanswered::LargeFamily) };
     if jet_order(cx.arena, claim) > 1 {
         return refuse(Unanswered::Accelerations);
     }
+    let Some(rows) = rows else { return refuse(Unanswered::LargeFamily) };
     let still = coasting(cx, claim)?;
     let mut slopes = Vec::new();
     for q in &model.coordinates {
         let v = q.jet(cx.arena, 1);
         slopes.push(cx.arena.partial(claim, v, cx.budget)?);
+    }
+    if !model.constraints.is_empty() {
+        let idle = vec![Arena::ZERO; model.constraints.len()];
+        return match surface::rate_is_zero(cx, model, still, &slopes, &idle)? {
+            Some(verdict) => Ok(Claim { rate, verdict: Ok(verdict) }),
+            None => refuse(Unanswered::Constraints),
+        };
     }
     let asked: Vec<bool> = slopes.iter().map(|&s| s != Arena::ZERO).collect();
     let (of, motion) = motion(cx, model, rows, &asked)?;

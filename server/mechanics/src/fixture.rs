@@ -1,7 +1,7 @@
 //! Small models for the tests, built by hand.
 
 use crate::context::{Context, Memory};
-use crate::model::{Coordinate, Image, Model, Term, TermKind, epsilon, time};
+use crate::model::{Constraint, Coordinate, Image, Model, Term, TermKind, epsilon, time};
 use leastwise_algebra::{Arena, Assumptions, Budget, Expr, Function, Rational, Role, ZeroTest};
 
 /// A model with everything that a derivation needs.
@@ -110,4 +110,39 @@ pub(crate) fn kepler() -> Fixture {
     let u = f.arena.neg(u);
     f.term(TermKind::Potential, "gravity", &[u]);
     f
+}
+
+/// A free mass on a rod of unit length, or of length t: x² + y² = 1 or t². With its momentum along x.
+pub(crate) fn rod(growing: bool) -> (Fixture, Expr) {
+    let mut f = Fixture::new();
+    let (x, vx) = f.coordinate("x");
+    let (y, vy) = f.coordinate("y");
+    let m = f.parameter("m");
+    let (tx, ty) = (f.half_square(m, vx), f.half_square(m, vy));
+    f.term(TermKind::Kinetic, "bob", &[tx, ty]);
+    let length = if growing { f.time() } else { Arena::ONE };
+    let squares: Vec<Expr> = [x, y, length].iter().map(|&e| f.arena.pow(e, 2)).collect();
+    let rod =
+        f.arena.linear(&[(squares[0], Rational::ONE), (squares[1], Rational::ONE), (squares[2], Rational::MINUS_ONE)]);
+    f.model.constraints.push(Constraint { name: "rod".into(), f: rod });
+    let px = f.arena.mul(m, vx);
+    (f, px)
+}
+
+/// A body on a blade: ẋ sin φ = ẏ cos φ. With its speed along the blade, its velocity along x, and its turning rate.
+pub(crate) fn sleigh() -> (Fixture, Expr, Expr, Expr) {
+    let mut f = Fixture::new();
+    let (_, vx) = f.coordinate("x");
+    let (_, vy) = f.coordinate("y");
+    let (phi, w) = f.coordinate("φ");
+    let (m, j) = (f.parameter("m"), f.parameter("J"));
+    let parts = [f.half_square(m, vx), f.half_square(m, vy), f.half_square(j, w)];
+    f.term(TermKind::Kinetic, "body", &parts);
+    let (s, c) = (f.arena.call(Function::Sin, &[phi]), f.arena.call(Function::Cos, &[phi]));
+    let (a, b) = (f.arena.mul(vx, s), f.arena.mul(vy, c));
+    let blade = f.arena.sub(a, b);
+    f.model.constraints.push(Constraint { name: "blade".into(), f: blade });
+    let (a, b) = (f.arena.mul(vx, c), f.arena.mul(vy, s));
+    let along = f.arena.add(a, b);
+    (f, along, vx, w)
 }

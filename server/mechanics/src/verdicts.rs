@@ -6,9 +6,10 @@ use crate::context::{Context, Parts};
 use crate::energy::{Energy, energy};
 use crate::forms::aligned;
 use crate::gauge::gauge_term;
-use crate::lagrange::{constraints_at_rest, force, generalised, questions, residual, signed_parts};
+use crate::lagrange::{constraints_at_rest, force, generalised, multiplier, questions, residual, signed_parts};
 use crate::mass::{MassRows, blocks, dense, mass_rows, without_inertia};
 use crate::model::{Image, Model};
+use crate::surface;
 use crate::symmetry::{self, Generator, NoGenerator, Status, Symmetry};
 use leastwise_algebra::{Arena, Expr, Rational, Reason, Sign, Stopped, Verdict};
 use std::collections::BTreeMap;
@@ -75,6 +76,8 @@ pub struct Answers {
     pub cyclic: Vec<Cyclic>,
     /// The energy function.
     pub energy: Energy,
+    /// Whether it is conserved, reactions included.
+    pub energy_conserved: Result<Verdict, Unanswered>,
     /// The parts that depend on the time, where the energy function is not conserved for that reason.
     pub timely: Vec<Culprit>,
     /// The mass matrix.
@@ -106,7 +109,7 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
         };
         cyclic.push(Cyclic { cyclic: verdict, momentum });
     }
-    let energy = energy(cx, model)?;
+    let mut energy = energy(cx, model)?;
     let timely = if matches!(energy.autonomous, Verdict::Refuted(_)) {
         let g = symmetry::delay(model);
         let flat: Vec<Expr> = all.iter().map(|p| p.0).collect();
@@ -127,7 +130,18 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
         mass = mass_verdict(cx, &found)?;
         rows = Some(found);
     }
-    Ok(Answers { cyclic, energy, timely, mass, rows })
+    let g = symmetry::delay(model);
+    let work = symmetry::reaction_work(cx, model, &g)?;
+    let rate: Parts = energy.rate.iter().map(|(e, c)| (*e, c.neg())).collect();
+    let energy_conserved = conserved_with_reactions(cx, model, &g, &rate, &work)?;
+    if !idle_reactions(cx, model, &g, &work)? {
+        // The charge of a delay is −h: what reactions take from it they give to h.
+        for (c, w) in model.constraints.iter().zip(&work) {
+            let lambda = multiplier(cx.arena, &c.name);
+            energy.rate.push((cx.arena.mul(lambda, *w), Rational::MINUS_ONE));
+        }
+    }
+    Ok(Answers { cyclic, energy, energy_conserved, timely, mass, rows })
 }
 
 /// The parts of terms that depend on a coordinate: a smallest set without which ∂L/∂q vanishes.
@@ -331,20 +345,15 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
     }
     let taken = symmetry::taken(cx, model, g)?;
     rate.extend(taken.iter().filter(|&&e| e != Arena::ZERO).map(|&e| (e, Rational::ONE)));
-    // A delay meets reactions that do no work if the constraints are at rest; otherwise their work must vanish by itself.
-    let mut idle = true;
-    for w in symmetry::reaction_work(cx, model, g)? {
-        idle &= cx.vanishes(&[(w, Rational::ONE)]).is_proved();
+    let work = symmetry::reaction_work(cx, model, g)?;
+    let conserved = conserved_with_reactions(cx, model, g, &rate, &work)?;
+    if !idle_reactions(cx, model, g, &work)? {
+        for (c, w) in model.constraints.iter().zip(&work) {
+            let lambda = multiplier(cx.arena, &c.name);
+            rate.push((cx.arena.mul(lambda, *w), Rational::ONE));
+        }
+        rate.retain(|p| p.0 != Arena::ZERO);
     }
-    let pure_delay = g.tau == Arena::ONE && g.eta.iter().all(|&e| e == Arena::ZERO);
-    if !idle && pure_delay {
-        idle = constraints_at_rest(cx, model)?;
-    }
-    let conserved = match cx.vanishes(&rate) {
-        Verdict::Proved if idle => Ok(Verdict::Proved),
-        _ if !model.constraints.is_empty() => Err(Unanswered::Constraints),
-        v => Ok(v),
-    };
     let mut respects = None;
     if !model.constraints.is_empty() {
         let functions: Vec<Expr> = model.constraints.iter().map(|c| c.f).collect();
@@ -369,6 +378,34 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
     })
 }
 
+/// Whether the reactions do no work against the flow: because it vanishes, or, for a delay, because the constraints are at
+/// rest.
+fn idle_reactions(cx: &mut Context<'_>, model: &Model, g: &Generator, work: &[Expr]) -> Result<bool, Stopped> {
+    let mut idle = true;
+    for &w in work {
+        idle &= cx.vanishes(&[(w, Rational::ONE)]).is_proved();
+    }
+    let pure_delay = g.tau == Arena::ONE && g.eta.iter().all(|&e| e == Arena::ZERO);
+    Ok(idle || pure_delay && constraints_at_rest(cx, model)?)
+}
+
+/// Whether a rate and the work of the reactions vanish together on all motions.
+fn conserved_with_reactions(
+    cx: &mut Context<'_>,
+    model: &Model,
+    g: &Generator,
+    rate: &Parts,
+    work: &[Expr],
+) -> Result<Result<Verdict, Unanswered>, Stopped> {
+    let verdict = cx.vanishes(rate);
+    if model.constraints.is_empty() || verdict.is_proved() && idle_reactions(cx, model, g, work)? {
+        return Ok(Ok(verdict));
+    }
+    let still = cx.build(rate)?;
+    let none = vec![Arena::ZERO; model.coordinates.len()];
+    Ok(surface::rate_is_zero(cx, model, still, &none, work)?.ok_or(Unanswered::Constraints))
+}
+
 /// Answers a claim of conservation. For a large family, whose accelerations are not solved for, and with constraints, it is
 /// compared with the charges whose rates are known, and with the energy function.
 pub fn answer_claim(
@@ -380,16 +417,10 @@ pub fn answer_claim(
 ) -> Result<claims::Claim, Stopped> {
     let mut result = claims::examine(cx, model, answers.rows.as_ref(), claim)?;
     if matches!(result.verdict, Err(Unanswered::LargeFamily | Unanswered::Constraints)) {
-        // Reactions of constraints at rest do no work; of others nothing is known here.
-        let energy = (answers.energy.function, answers.energy.conserved);
-        let idle = constraints_at_rest(cx, model)?;
-        for (charge, verdict) in known.iter().chain(idle.then_some(&energy)) {
-            // What is not zero off the constraint surface may vanish on it.
-            let decided = match verdict {
-                Verdict::Proved => true,
-                Verdict::Refuted(_) => model.constraints.is_empty(),
-                Verdict::Undecided(_) => false,
-            };
+        let energy =
+            (answers.energy.function, answers.energy_conserved.unwrap_or(Verdict::Undecided(Reason::Constraints)));
+        for (charge, verdict) in known.iter().chain([&energy]) {
+            let decided = !matches!(verdict, Verdict::Undecided(_));
             if decided && claims::is_multiple(cx, claim, *charge) {
                 result.verdict = Ok(*verdict);
                 break;
@@ -402,7 +433,7 @@ pub fn answer_claim(
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::fixture::{Fixture, double_pendulum, kepler};
+    use crate::fixture::{Fixture, double_pendulum, kepler, rod, sleigh};
 
     fn check(f: &mut Fixture, images: &[Image], status: Status, blamed: &[usize]) -> SymmetryAnswer {
         let model = f.model.clone();
@@ -481,5 +512,36 @@ mod tests {
         assert!(matches!(got.verdict, Ok(Verdict::Proved)));
         let got = answer_claim(&mut f.cx(), &model, &answers, &[], wrong).unwrap();
         assert!(matches!(got.verdict, Ok(Verdict::Refuted(_))));
+    }
+
+    /// Energy, then the claims.
+    fn check_constrained(mut f: Fixture, energy: bool, claims: &[(Expr, bool)]) {
+        let model = f.model.clone();
+        let answers = answer(&mut f.cx(), &model).unwrap();
+        assert_eq!(answers.energy_conserved.map(Verdict::is_proved), Ok(energy));
+        for (claim, holds) in claims {
+            let got = answer_claim(&mut f.cx(), &model, &answers, &[], *claim).unwrap();
+            let (proved, refuted) = (got.verdict.map(Verdict::is_proved), got.verdict.map(Verdict::is_refuted));
+            assert_eq!((proved, refuted), (Ok(*holds), Ok(!*holds)));
+        }
+    }
+
+    #[test]
+    fn a_rod_keeps_the_energy_and_takes_the_momentum() {
+        let (f, px) = rod(false);
+        check_constrained(f, true, &[(px, false)]);
+    }
+
+    #[test]
+    fn a_rod_that_grows_does_work() {
+        let (f, px) = rod(true);
+        check_constrained(f, false, &[(px, false)]);
+    }
+
+    #[test]
+    fn a_blade_keeps_its_speed_along_itself() {
+        // The sleigh with its centre of mass on the blade [NF ch. II].
+        let (f, along, across, turning) = sleigh();
+        check_constrained(f, true, &[(along, true), (turning, true), (across, false)]);
     }
 }
