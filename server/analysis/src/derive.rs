@@ -97,9 +97,10 @@ impl Session {
 fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
     let model = checked.model();
     let answers = verdicts::answer(cx, model);
+    let regular = answers.as_ref().is_ok_and(|a| a.mass.is_regular());
     let mut symmetries = Vec::new();
     for claim in checked.symmetries() {
-        symmetries.push(verdicts::answer_symmetry(cx, model, &claim.images));
+        symmetries.push(verdicts::answer_symmetry(cx, model, regular, &claim.images));
     }
     let mut known = Vec::new();
     if !model.constraints.is_empty() || model.coordinates.iter().any(|q| q.members.is_some()) {

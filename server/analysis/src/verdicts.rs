@@ -194,7 +194,7 @@ fn culprit_force(maker: &mut Maker<'_>, checked: &Checked, i: usize, culprits: &
 fn mass(maker: &mut Maker<'_>, checked: &Checked, answers: &Answers, out: &mut Vec<Finding>) {
     let name = |maker: &Maker<'_>, i: usize| checked.model().coordinates[i].label(maker.arena);
     match &answers.mass {
-        MassVerdict::Regular => {}
+        MassVerdict::Regular | MassVerdict::NotAsked => {}
         MassVerdict::Undecided(reason) => out.push(finding(
             "undecided",
             Severity::Information,

@@ -26,6 +26,8 @@ pub enum Unanswered {
     LargeFamily,
     /// The claim contains accelerations.
     Accelerations,
+    /// The mass matrix is singular, or not proved to be regular: motions need not pass through every state.
+    Degenerate,
 }
 
 impl std::fmt::Display for Unanswered {
@@ -35,6 +37,7 @@ impl std::fmt::Display for Unanswered {
                 "the constraints are not solved for coordinates, so that states on their surface are not known"
             }
             Unanswered::LargeFamily => "the accelerations of a family of more than 64 members are not solved for",
+            Unanswered::Degenerate => "the mass matrix is singular or not known to be regular, so that motions need not pass through every state",
             Unanswered::Accelerations => "the claim contains accelerations",
         })
     }

@@ -14,7 +14,7 @@ pub(crate) struct Fixture {
 }
 
 impl Fixture {
-    fn new() -> Fixture {
+    pub fn new() -> Fixture {
         Fixture {
             arena: Arena::new(),
             zero: ZeroTest::new(Assumptions::new()),

@@ -10,6 +10,7 @@ pub mod gauge;
 pub mod lagrange;
 pub mod mass;
 pub mod model;
+pub mod regularity;
 pub mod surface;
 pub mod symmetry;
 pub mod verdicts;

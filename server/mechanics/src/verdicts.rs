@@ -7,12 +7,13 @@ use crate::energy::{Energy, energy};
 use crate::forms::aligned;
 use crate::gauge::gauge_term;
 use crate::lagrange::{constraints_at_rest, force, generalised, multiplier, questions, residual, signed_parts};
-use crate::mass::{MassRows, blocks, dense, mass_rows, without_inertia};
+use crate::mass::{MassRows, mass_rows};
 use crate::model::{Image, Model};
+pub use crate::regularity::MassVerdict;
+use crate::regularity::{judge_families, mass_verdict};
 use crate::surface;
 use crate::symmetry::{self, Generator, NoGenerator, Status, Symmetry};
-use leastwise_algebra::{Arena, Expr, Rational, Reason, Sign, Stopped, Verdict};
-use std::collections::BTreeMap;
+use leastwise_algebra::{Arena, Expr, Rational, Reason, Stopped, Verdict};
 
 /// A culprit: a term, and its additive parts that break something.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -55,19 +56,6 @@ pub struct SymmetryAnswer {
     pub taken: Vec<Expr>,
     /// Whether the flow preserves the constraints, where that is proved.
     pub respects_constraints: Option<bool>,
-}
-
-/// What is said of the mass matrix.
-#[derive(Clone, PartialEq, Debug)]
-pub enum MassVerdict {
-    /// Regular, as far as is asked.
-    Regular,
-    /// det M ≡ 0; the coordinates without any kinetic term.
-    Singular(Vec<usize>),
-    /// A principal minor is nowhere positive: the coordinates of the minor.
-    NotPositive(Vec<usize>),
-    /// Not decided.
-    Undecided(String),
 }
 
 /// The model's own answers.
@@ -125,7 +113,9 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
     let large = model.coordinates.iter().any(|q| q.members.is_some());
     let mut rows = None;
     let mut mass = MassVerdict::Regular;
-    if !large && !model.coordinates.is_empty() {
+    if large {
+        mass = judge_families(cx, model)?;
+    } else if !model.coordinates.is_empty() {
         let found = mass_rows(cx, model)?;
         mass = mass_verdict(cx, &found)?;
         rows = Some(found);
@@ -133,7 +123,8 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
     let g = symmetry::delay(model);
     let work = symmetry::reaction_work(cx, model, &g)?;
     let rate: Parts = energy.rate.iter().map(|(e, c)| (*e, c.neg())).collect();
-    let energy_conserved = conserved_with_reactions(cx, model, &g, &rate, &work)?;
+    let regular = mass.is_regular();
+    let energy_conserved = on_motions(conserved_with_reactions(cx, model, &g, &rate, &work)?, regular);
     if !idle_reactions(cx, model, &g, &work)? {
         // The charge of a delay is −h: what reactions take from it they give to h.
         for (c, w) in model.constraints.iter().zip(&work) {
@@ -153,68 +144,6 @@ pub fn dependent_parts(cx: &mut Context<'_>, model: &Model, i: usize) -> Result<
     }
     let (_, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
     Ok(culprits(cx, model, rows)?.0)
-}
-
-/// The verdict on the mass matrix, remembered as long as it does not change.
-fn mass_verdict(cx: &mut Context<'_>, rows: &MassRows) -> Result<MassVerdict, Stopped> {
-    let facts = cx.zero.assumptions().fingerprint();
-    if let Some((f, known, verdict)) = &cx.memory.mass
-        && *f == facts
-        && known == rows
-    {
-        return Ok(verdict.clone());
-    }
-    let verdict = judge_mass(cx, rows)?;
-    cx.memory.mass = Some((facts, rows.clone(), verdict.clone()));
-    Ok(verdict)
-}
-
-/// More coordinates than this in one block are not eliminated.
-const MAX_BLOCK: usize = 128;
-
-fn judge_mass(cx: &mut Context<'_>, rows: &MassRows) -> Result<MassVerdict, Stopped> {
-    let idle = without_inertia(rows);
-    if !idle.is_empty() {
-        return Ok(MassVerdict::Singular(idle));
-    }
-    let block = blocks(rows);
-    let mut members: BTreeMap<usize, Vec<usize>> = BTreeMap::new();
-    for (i, &b) in block.iter().enumerate() {
-        members.entry(b).or_default().push(i);
-    }
-    let mut undecided = None;
-    for of in members.values() {
-        if of.len() > MAX_BLOCK {
-            undecided = Some(Reason::TooLarge.to_string());
-            continue;
-        }
-        let matrix = dense(cx, rows, of)?;
-        match cx.zero.determinant_is_zero(cx.arena, &matrix, cx.budget) {
-            Verdict::Proved => return Ok(MassVerdict::Singular(Vec::new())),
-            Verdict::Undecided(r) => undecided = Some(r.to_string()),
-            Verdict::Refuted(_) => {}
-        }
-        // A positive definite matrix has positive principal minors [Sylvester]; one that is never positive refutes it.
-        for i in 0..of.len() {
-            let sign = cx.zero.sign_of(cx.arena, matrix[i][i], cx.budget);
-            if matches!(sign, Sign::Negative | Sign::NonPositive | Sign::Zero) {
-                return Ok(MassVerdict::NotPositive(vec![of[i]]));
-            }
-        }
-        for i in 0..of.len().min(24) {
-            for j in 0..i {
-                if matrix[i][j] == Arena::ZERO {
-                    continue;
-                }
-                let (a, b) = (cx.arena.mul(matrix[i][i], matrix[j][j]), cx.arena.pow(matrix[i][j], 2));
-                let minor = cx.arena.sub(a, b);
-                if matches!(cx.zero.sign_of(cx.arena, minor, cx.budget), Sign::Negative | Sign::NonPositive) {
-                    return Ok(MassVerdict::NotPositive(vec![of[j], of[i]]));
-                }
-            }
-        }
-    }
-    Ok(undecided.map_or(MassVerdict::Regular, MassVerdict::Undecided))
 }
 
 /// Whom to blame that the rows do not sum to zero. `rows` holds, for each additive part of each term in order, what
@@ -281,13 +210,23 @@ fn blamed_parts(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Vec<usiz
 }
 
 /// Answers a symmetry claim.
-pub fn answer_symmetry(cx: &mut Context<'_>, model: &Model, images: &[Image]) -> Result<SymmetryAnswer, NoGenerator> {
+pub fn answer_symmetry(
+    cx: &mut Context<'_>,
+    model: &Model,
+    regular: bool,
+    images: &[Image],
+) -> Result<SymmetryAnswer, NoGenerator> {
     let g = symmetry::generator(cx, model, images)?;
-    Ok(answer_generator(cx, model, g)?)
+    Ok(answer_generator(cx, model, regular, g)?)
 }
 
 /// Answers for a generator.
-pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Result<SymmetryAnswer, Stopped> {
+pub fn answer_generator(
+    cx: &mut Context<'_>,
+    model: &Model,
+    regular: bool,
+    g: Generator,
+) -> Result<SymmetryAnswer, Stopped> {
     let symmetry = symmetry::examine(cx, model, g)?;
     let g = &symmetry.generator;
     let (mut culprit_list, mut smallest) = (Vec::new(), true);
@@ -346,7 +285,7 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
     let taken = symmetry::taken(cx, model, g)?;
     rate.extend(taken.iter().filter(|&&e| e != Arena::ZERO).map(|&e| (e, Rational::ONE)));
     let work = symmetry::reaction_work(cx, model, g)?;
-    let conserved = conserved_with_reactions(cx, model, g, &rate, &work)?;
+    let conserved = on_motions(conserved_with_reactions(cx, model, g, &rate, &work)?, regular);
     if !idle_reactions(cx, model, g, &work)? {
         for (c, w) in model.constraints.iter().zip(&work) {
             let lambda = multiplier(cx.arena, &c.name);
@@ -376,6 +315,14 @@ pub fn answer_generator(cx: &mut Context<'_>, model: &Model, g: Generator) -> Re
         respects_constraints: respects,
         symmetry,
     })
+}
+
+/// With a singular mass matrix a rate that is not zero everywhere may still vanish on the motions that there are.
+fn on_motions(verdict: Result<Verdict, Unanswered>, regular: bool) -> Result<Verdict, Unanswered> {
+    match verdict {
+        Ok(Verdict::Refuted(_)) if !regular => Err(Unanswered::Degenerate),
+        other => other,
+    }
 }
 
 /// Whether the reactions do no work against the flow: because it vanishes, or, for a delay, because the constraints are at
@@ -416,6 +363,10 @@ pub fn answer_claim(
     claim: Expr,
 ) -> Result<claims::Claim, Stopped> {
     let mut result = claims::examine(cx, model, answers.rows.as_ref(), claim)?;
+    // With constraints the whole system is solved, and says itself where it is singular.
+    if model.constraints.is_empty() {
+        result.verdict = on_motions(result.verdict, answers.mass.is_regular());
+    }
     if matches!(result.verdict, Err(Unanswered::LargeFamily | Unanswered::Constraints)) {
         let energy =
             (answers.energy.function, answers.energy_conserved.unwrap_or(Verdict::Undecided(Reason::Constraints)));
@@ -434,10 +385,11 @@ pub fn answer_claim(
 mod tests {
     use super::*;
     use crate::fixture::{Fixture, double_pendulum, kepler, rod, sleigh};
+    use crate::model::TermKind;
 
     fn check(f: &mut Fixture, images: &[Image], status: Status, blamed: &[usize]) -> SymmetryAnswer {
         let model = f.model.clone();
-        let a = answer_symmetry(&mut f.cx(), &model, images).expect("a generator");
+        let a = answer_symmetry(&mut f.cx(), &model, true, images).expect("a generator");
         assert_eq!(a.symmetry.status, status);
         assert_eq!(a.culprits.iter().map(|c| c.term).collect::<Vec<_>>(), blamed);
         a
@@ -485,7 +437,7 @@ mod tests {
         let eps = f.epsilon();
         let target = f.arena.mul(q, eps);
         let model = f.model.clone();
-        let got = answer_symmetry(&mut f.cx(), &model, &[Image { source: q, target }]);
+        let got = answer_symmetry(&mut f.cx(), &model, true, &[Image { source: q, target }]);
         assert_eq!(got, Err(NoGenerator::NotTheIdentity(0)));
     }
 
@@ -543,5 +495,19 @@ mod tests {
         // The sleigh with its centre of mass on the blade [NF ch. II].
         let (f, along, across, turning) = sleigh();
         check_constrained(f, true, &[(along, true), (turning, true), (across, false)]);
+    }
+
+    #[test]
+    fn with_a_singular_mass_matrix_nothing_is_refuted() {
+        // L = y ẋ: both coordinates rest, so that y is conserved though its rate ẏ is not zero by itself.
+        let mut f = Fixture::new();
+        let (_, vx) = f.coordinate("x");
+        let (y, _) = f.coordinate("y");
+        let l = f.arena.mul(y, vx);
+        f.term(TermKind::Lagrangian, "first order", &[l]);
+        let model = f.model.clone();
+        let answers = answer(&mut f.cx(), &model).unwrap();
+        let got = answer_claim(&mut f.cx(), &model, &answers, &[], y).unwrap();
+        assert_eq!(got.verdict, Err(Unanswered::Degenerate));
     }
 }
