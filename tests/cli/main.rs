@@ -5,4 +5,5 @@ mod formatting;
 mod readme;
 mod sources;
 mod support;
+mod traps;
 mod usage;
