@@ -294,3 +294,14 @@ conserved speed = x'
         ],
     );
 }
+
+#[test]
+fn a_witness_has_the_value_of_the_rate() {
+    // −c ẋ² = −(7/3)·9; F ẋ is positive at the points tried first.
+    let bob = "coordinate x, y\nparameter m, c, F\nkinetic bob = 1/2 m (x'^2 + y'^2)\n";
+    check(&format!("{bob}dissipation drag = 1/2 c x'^2\n"), &[("/energy/witness", "-21.000000 at ẋ = 3, c = 7/3")]);
+    let sheet = Folder::with("m.least", format!("{bob}force pull on x = F\n"))
+        .run(&["sheet", "m.least", "--as", "json"])
+        .json();
+    assert!(!sheet["energy"]["witness"].as_str().unwrap_or("-").starts_with('-'), "{}", sheet["energy"]);
+}

@@ -42,7 +42,11 @@ impl Context<'_> {
     pub fn vanishes(&mut self, parts: &[(Expr, Rational)]) -> Verdict {
         match parts {
             [] => Verdict::Proved,
-            [(e, _)] => self.zero.is_zero(self.arena, *e, self.budget),
+            // With its factor, so that a witness shows the value of the whole.
+            [(e, c)] => {
+                let e = self.arena.scale(*e, c);
+                self.zero.is_zero(self.arena, e, self.budget)
+            }
             _ => self.zero.sum_is_zero(self.arena, parts, self.budget),
         }
     }

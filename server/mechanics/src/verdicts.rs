@@ -122,9 +122,10 @@ pub fn answer(cx: &mut Context<'_>, model: &Model) -> Result<Answers, Stopped> {
     }
     let g = symmetry::delay(model);
     let work = symmetry::reaction_work(cx, model, &g)?;
-    let rate: Parts = energy.rate.iter().map(|(e, c)| (*e, c.neg())).collect();
     let regular = mass.is_regular();
-    let energy_conserved = on_motions(conserved_with_reactions(cx, model, &g, &rate, &work)?, regular);
+    // dh/dt = rate − Σ λ work: its own sign, so that a witness shows its own value.
+    let against: Vec<Expr> = work.iter().map(|&w| cx.arena.neg(w)).collect();
+    let energy_conserved = on_motions(conserved_with_reactions(cx, model, &g, &energy.rate, &against)?, regular);
     if !idle_reactions(cx, model, &g, &work)? {
         // The charge of a delay is −h: what reactions take from it they give to h.
         for (c, w) in model.constraints.iter().zip(&work) {
