@@ -103,11 +103,9 @@ fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
         symmetries.push(verdicts::answer_symmetry(cx, model, regular, &claim.images));
     }
     let mut known = Vec::new();
-    if !model.constraints.is_empty() || model.coordinates.iter().any(|q| q.members.is_some()) {
-        for s in symmetries.iter().flatten() {
-            if let Ok(verdict) = &s.conserved {
-                known.push((s.charge, *verdict));
-            }
+    for s in symmetries.iter().flatten() {
+        if let Ok(verdict) = &s.conserved {
+            known.push((s.charge, *verdict));
         }
     }
     let mut conserved = Vec::new();

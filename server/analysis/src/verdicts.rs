@@ -323,6 +323,7 @@ fn symmetry(
                     format!("`{name}` holds up to a total time derivative, of which no closed form was found"),
                 ));
             }
+            multivalued(maker, checked, claim, a, out);
             if matches!(a.conserved, Ok(Verdict::Refuted(_))) {
                 let forces: Vec<String> = checked
                     .model()
@@ -349,6 +350,40 @@ fn symmetry(
                 ));
             }
         }
+    }
+}
+
+/// A gauge term that changes when an angle makes a full turn: the charge is a function on the covering space only.
+fn multivalued(
+    maker: &mut Maker<'_>,
+    checked: &Checked,
+    claim: &crate::checked::SymmetryClaim,
+    a: &SymmetryAnswer,
+    out: &mut Vec<Finding>,
+) {
+    let Some(gauge) = a.gauge else { return };
+    let pi = maker.arena.pi();
+    for i in checked.angles() {
+        let q = &checked.model().coordinates[i];
+        if q.members.is_some() {
+            continue;
+        }
+        let atom = q.jet(maker.arena, 0);
+        let Some(change) = turned_once(maker, gauge, atom, pi) else { continue };
+        let mut cx = Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
+        if !cx.vanishes(&change).is_refuted() {
+            continue;
+        }
+        let (gauge, name) = (one_line(&maker.prints.text(maker.arena, gauge)), q.label(maker.arena));
+        out.push(finding(
+            "gauge-multivalued",
+            Severity::Information,
+            claim.range.clone(),
+            format!(
+                "`{}` holds up to d/dt of {gauge}, which changes when {name} turns by 2π: its charge is not single-valued",
+                claim.name
+            ),
+        ));
     }
 }
 

@@ -2,7 +2,7 @@
 
 use crate::context::{Context, Parts};
 use crate::model::{Model, time};
-use leastwise_algebra::{Expr, Node, Rational, Role, Stopped, Verdict, antiderivative};
+use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped, Verdict, antiderivative};
 
 /// F with dF/dt = V, proved; `None` where no closed form was found. V's Euler operator must vanish: then F exists
 /// locally. Costs an expansion of V and one antiderivative for each coordinate.
@@ -76,6 +76,9 @@ fn potential(cx: &mut Context<'_>, v: Expr, pairs: &[(Expr, Expr)]) -> Result<Op
         if cx.arena.as_number(b).is_some_and(Rational::is_zero) {
             continue;
         }
+        if cx.vanishes(&[(b, Rational::ONE)]).is_proved() {
+            continue;
+        }
         let Some(g) = antiderivative(cx.arena, b, q, cx.budget)? else { return Ok(None) };
         let rate = cx.arena.total(g, cx.budget)?;
         let left = cx.arena.sub(rest, rate);
@@ -87,13 +90,18 @@ fn potential(cx: &mut Context<'_>, v: Expr, pairs: &[(Expr, Expr)]) -> Result<Op
     let moving =
         |cx: &Context<'_>, e: Expr| cx.arena.atoms(e).iter().any(|a| pairs.iter().any(|p| p.0 == *a || p.1 == *a));
     if moving(cx, rest) {
-        // What is left may vanish without looking so.
-        if !matches!(cx.vanishes(&[(rest, Rational::ONE)]), Verdict::Proved) {
-            return Ok(None);
+        // What is left depends on the time alone, whatever it looks like: its value at rest, anywhere, is all of it.
+        let mut anywhere = hashbrown::HashMap::new();
+        for (k, &(q, velocity)) in pairs.iter().enumerate() {
+            anywhere.insert(q, cx.arena.integer(k as i64 + 2));
+            anywhere.insert(velocity, Arena::ZERO);
         }
-    } else {
-        let Some(g) = antiderivative(cx.arena, rest, t, cx.budget)? else { return Ok(None) };
-        f.push((g, Rational::ONE));
+        rest = cx.arena.substitute(rest, &anywhere, cx.budget)?;
     }
+    if rest == Arena::UNDEFINED {
+        return Ok(None);
+    }
+    let Some(g) = antiderivative(cx.arena, rest, t, cx.budget)? else { return Ok(None) };
+    f.push((g, Rational::ONE));
     Ok(Some(cx.build(&f)?))
 }

@@ -248,14 +248,19 @@ pub fn answer_generator(
         (culprit_list, smallest) = culprits(cx, model, rows)?;
     }
     // V without the terms to blame is exact or a total derivative.
-    let kept: Parts = symmetry
-        .variations
-        .iter()
-        .enumerate()
-        .filter(|(t, _)| !culprit_list.iter().any(|c| c.term == *t))
-        .flat_map(|(_, v)| v.iter().cloned())
-        .filter(|p| p.0 != Arena::ZERO)
-        .collect();
+    // A term's variation that vanishes without looking so would only be in the way.
+    let mut kept = Parts::new();
+    let mut varied = Parts::new();
+    for (t, v) in symmetry.variations.iter().enumerate() {
+        let v: Parts = v.iter().filter(|p| p.0 != Arena::ZERO).cloned().collect();
+        if v.is_empty() || symmetry.status != Status::Exact && cx.vanishes(&v).is_proved() {
+            continue;
+        }
+        if !culprit_list.iter().any(|c| c.term == t) {
+            kept.extend(v.iter().cloned());
+        }
+        varied.extend(v);
+    }
     let mut gauge = None;
     let mut gauge_unknown = false;
     let derivative_left = match symmetry.status {
@@ -278,7 +283,7 @@ pub fn answer_generator(
         _ => false,
     };
     if !known {
-        rate.extend(symmetry.variations.concat().into_iter().filter(|p| p.0 != Arena::ZERO));
+        rate.extend(varied);
         if let Some(f) = gauge {
             rate.push((cx.arena.total(f, cx.budget)?, Rational::MINUS_ONE));
         }
@@ -354,8 +359,8 @@ fn conserved_with_reactions(
     Ok(surface::rate_is_zero(cx, model, still, &none, work)?.ok_or(Unanswered::Constraints))
 }
 
-/// Answers a claim of conservation. For a large family, whose accelerations are not solved for, and with constraints, it is
-/// compared with the charges whose rates are known, and with the energy function.
+/// Answers a claim of conservation. Where accelerations are not solved for, the claim is compared with the charges whose
+/// rates are known, with momenta of cyclic coordinates, and with the energy function.
 pub fn answer_claim(
     cx: &mut Context<'_>,
     model: &Model,
@@ -368,13 +373,21 @@ pub fn answer_claim(
     if model.constraints.is_empty() {
         result.verdict = on_motions(result.verdict, answers.mass.is_regular());
     }
-    if matches!(result.verdict, Err(Unanswered::LargeFamily | Unanswered::Constraints)) {
+    if result.verdict.is_err() {
         let energy =
             (answers.energy.function, answers.energy_conserved.unwrap_or(Verdict::Undecided(Reason::Constraints)));
-        for (charge, verdict) in known.iter().chain([&energy]) {
+        let mut known: Vec<(Expr, Verdict)> = known.iter().copied().chain([energy]).collect();
+        if model.constraints.is_empty() {
+            for (i, q) in answers.cyclic.iter().enumerate() {
+                if q.momentum.is_proved() {
+                    known.push((symmetry::charge(cx, model, &symmetry::shift(model, i))?, Verdict::Proved));
+                }
+            }
+        }
+        for (charge, verdict) in known {
             let decided = !matches!(verdict, Verdict::Undecided(_));
-            if decided && claims::is_multiple(cx, claim, *charge) {
-                result.verdict = Ok(*verdict);
+            if decided && claims::is_multiple(cx, claim, charge) {
+                result.verdict = Ok(verdict);
                 break;
             }
         }
@@ -500,15 +513,18 @@ mod tests {
 
     #[test]
     fn with_a_singular_mass_matrix_nothing_is_refuted() {
-        // L = y ẋ: both coordinates rest, so that y is conserved though its rate ẏ is not zero by itself.
+        // L = y ẋ: both coordinates rest, so that x is conserved though its rate ẋ is not zero by itself.
         let mut f = Fixture::new();
-        let (_, vx) = f.coordinate("x");
+        let (x, vx) = f.coordinate("x");
         let (y, _) = f.coordinate("y");
         let l = f.arena.mul(y, vx);
         f.term(TermKind::Lagrangian, "first order", &[l]);
         let model = f.model.clone();
         let answers = answer(&mut f.cx(), &model).unwrap();
-        let got = answer_claim(&mut f.cx(), &model, &answers, &[], y).unwrap();
+        let got = answer_claim(&mut f.cx(), &model, &answers, &[], x).unwrap();
         assert_eq!(got.verdict, Err(Unanswered::Degenerate));
+        // y is the momentum of the cyclic x.
+        let got = answer_claim(&mut f.cx(), &model, &answers, &[], y).unwrap();
+        assert_eq!(got.verdict, Ok(Verdict::Proved));
     }
 }

@@ -190,3 +190,18 @@ conserved p = y'
 ",
     );
 }
+
+#[test]
+fn a_gauge_term_that_grows_with_an_angle() {
+    judge(
+        "
+coordinate x: length
+coordinate φ: angle
+parameter a: N s, m: mass, J: moment_of_inertia
+kinetic    body  = 1/2 m x'^2 + 1/2 J φ'^2
+lagrangian twine = a x φ'
+symmetry shift: x -> x + ε
+^^^^^^^^^^^^^^^^^^^^^^^^^^ gauge-multivalued: `shift` holds up to d/dt of a φ, which changes when φ turns by 2π
+",
+    );
+}
