@@ -54,7 +54,7 @@ pub struct SymmetryAnswer {
     pub smallest: bool,
     /// What each force takes from the charge.
     pub taken: Vec<Expr>,
-    /// Whether the flow preserves the constraints, where that is proved.
+    /// Whether the flow preserves the constraints, where that is decided.
     pub respects_constraints: Option<bool>,
 }
 
@@ -302,12 +302,23 @@ pub fn answer_generator(
     let mut respects = None;
     if !model.constraints.is_empty() {
         let functions: Vec<Expr> = model.constraints.iter().map(|c| c.f).collect();
-        let mut all = true;
+        respects = Some(true);
+        let none = vec![Arena::ZERO; model.coordinates.len()];
+        let idle = vec![Arena::ZERO; model.constraints.len()];
         for v in symmetry::variations_of_functions(cx, model, g, &functions)? {
-            all &= cx.vanishes(&[(v, Rational::ONE)]).is_proved();
+            if cx.vanishes(&[(v, Rational::ONE)]).is_proved() {
+                continue;
+            }
+            // A flow that moves the constraint functions may still preserve their zeros.
+            match surface::rate_is_zero(cx, model, v, &none, &idle)? {
+                Some(Verdict::Proved) => {}
+                Some(Verdict::Refuted(_)) => {
+                    respects = Some(false);
+                    break;
+                }
+                _ => respects = None,
+            }
         }
-        // A flow that moves the constraint functions may still preserve their zeros.
-        respects = all.then_some(true);
     }
     Ok(SymmetryAnswer {
         charge,
