@@ -205,3 +205,53 @@ symmetry shift: x -> x + ε
 ",
     );
 }
+
+#[test]
+fn a_disc_that_rolls_upright_keeps_its_two_rates() {
+    // [GPS §1.3 for the constraints]: spin and steering rates are constant, though steering leaves the constraints.
+    judge(
+        "
+coordinate x, y
+coordinate φ, ψ: angle
+parameter m, J, I, R
+kinetic disc = 1/2 m (x'^2 + y'^2) + 1/2 J ψ'^2 + 1/2 I φ'^2
+constraint a: x' = R ψ' cos φ
+constraint b: y' = R ψ' sin φ
+symmetry steer: φ -> φ + ε
+conserved turning = φ'
+conserved rolling = ψ'
+conserved total = energy
+conserved drift = x'
+^^^^^^^^^^^^^^^^^^^^ not-conserved: `drift` is not conserved
+",
+    );
+}
+
+#[test]
+fn a_rod_that_is_drawn_in_does_work() {
+    judge(
+        "
+coordinate x, y
+parameter m, l, v
+kinetic bob = 1/2 m (x'^2 + y'^2)
+constraint rod: x^2 + y^2 = (l - v t)^2
+conserved spin = m (x y' - y x')
+conserved total = energy
+^^^^^^^^^^^^^^^^^^^^^^^^ not-conserved: `total` is not conserved
+",
+    );
+}
+
+#[test]
+fn a_constraint_that_cannot_be_solved_leaves_claims_open() {
+    judge(
+        "
+coordinate x, y
+kinetic bob = 1/2 (x'^2 + y'^2)
+constraint track: sin x + exp(y) x^3 + sin(y) + y^5 = 1
+conserved drift = x'
+^^^^^^^^^^^^^^^^^^^^ undecided: whether `drift` is conserved is undecided: the constraints are not solved
+conserved total = energy
+",
+    );
+}
