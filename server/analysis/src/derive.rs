@@ -78,7 +78,7 @@ impl Session {
         self.with_maker(checked, |maker| maker.make(checked, derived).unwrap_or_else(|_| maker.terms_only(checked)))
     }
 
-    fn with_maker<T>(&mut self, checked: &Checked, f: impl FnOnce(&mut Maker<'_>) -> T) -> T {
+    pub(crate) fn with_maker<T>(&mut self, checked: &Checked, f: impl FnOnce(&mut Maker<'_>) -> T) -> T {
         let mut desk = self.desk_for(checked);
         let mut budget = Budget::new(NODES);
         let mut maker = Maker {
