@@ -63,6 +63,8 @@ pub enum Command {
     },
     /// Explain a finding's code, or list all codes.
     Explain(Option<String>),
+    /// Talk to an editor.
+    Lsp,
     /// Print a help page.
     Help(&'static str),
     /// Print the version.
@@ -70,7 +72,7 @@ pub enum Command {
 }
 
 /// The commands, as they are typed.
-pub const COMMANDS: [&str; 5] = ["check", "sheet", "format", "explain", "help"];
+pub const COMMANDS: [&str; 6] = ["check", "sheet", "format", "explain", "lsp", "help"];
 
 /// Reads the command line, without the program's name.
 ///
@@ -89,6 +91,7 @@ pub fn read(arguments: impl IntoIterator<Item = OsString>) -> Result<Command, St
                 "sheet" => sheet(parser),
                 "format" => format(parser),
                 "explain" => explain(parser),
+                "lsp" => lsp(parser),
                 "help" => topic(parser),
                 _ => Err(unknown("command", &word, COMMANDS.iter().copied())),
             }
@@ -115,6 +118,7 @@ fn words(mut parser: lexopt::Parser, options: &[&'static str]) -> Result<Words, 
                 let value = parser.value().map_err(|_| "--as needs a form behind it, such as --as json".to_string())?;
                 words.form = Some(value.to_string_lossy().into_owned());
             }
+            Arg::Long("stdio") if options.contains(&"--stdio") => {}
             Arg::Long("check") if options.contains(&"--check") => words.check = true,
             Arg::Value(word) => words.sources.push(word),
             option => {
@@ -169,6 +173,15 @@ fn explain(parser: lexopt::Parser) -> Result<Command, String> {
         [code] => Ok(Command::Explain(Some(code.to_string_lossy().into_owned()))),
         _ => Err("explain takes one code at a time".to_string()),
     }
+}
+
+fn lsp(parser: lexopt::Parser) -> Result<Command, String> {
+    // Clients add `--stdio` by habit; there is no other way to talk.
+    let words = words(parser, &["--stdio"])?;
+    if words.help {
+        return Ok(Command::Help(help::LSP));
+    }
+    if words.sources.is_empty() { Ok(Command::Lsp) } else { Err("lsp takes no file: an editor opens them".to_string()) }
 }
 
 fn topic(parser: lexopt::Parser) -> Result<Command, String> {

@@ -51,10 +51,16 @@ pub fn format(text: &str) -> String {
 /// The code of a file that is no text.
 pub const NOT_UTF8: &str = "not-utf8";
 
+/// The code of a defect of the program itself, told by the language server.
+pub const INTERNAL: &str = "internal-error";
+
 /// All codes of findings with their explanations, in alphabetical order.
 pub fn all_codes() -> Vec<(&'static str, &'static str)> {
-    let own = (NOT_UTF8, "a file that is not UTF-8 text");
-    let mut list: Vec<_> = codes::all().map(|c| (c.name, c.explanation)).chain([own]).collect();
+    let own = [
+        (NOT_UTF8, "a file that is not UTF-8 text"),
+        (INTERNAL, "a defect of the program itself; please report it with the file"),
+    ];
+    let mut list: Vec<_> = codes::all().map(|c| (c.name, c.explanation)).chain(own).collect();
     list.sort_unstable();
     list
 }

@@ -148,17 +148,24 @@ impl Disk {
         name
     }
 
+    /// Where an included file is looked for.
+    ///
+    /// # Errors
+    /// What is wrong with its name.
+    pub fn resolve(&self, from: &str, include: &str) -> Result<PathBuf, String> {
+        if include.is_empty() || include.contains('\0') {
+            return Err("no name of a file".to_string());
+        }
+        let from = self.shown.lock().ok().and_then(|s| s.get(from).cloned()).unwrap_or_else(|| PathBuf::from(from));
+        Ok(tidy(&from.parent().unwrap_or_else(|| Path::new("")).join(include)))
+    }
+
     /// The included file's name and text.
     ///
     /// # Errors
     /// What is wrong, in words that follow the file's name and a colon.
     pub fn include(&self, from: &str, include: &str) -> Result<(String, String), String> {
-        if include.is_empty() || include.contains('\0') {
-            return Err("no name of a file".to_string());
-        }
-        let from = self.shown.lock().ok().and_then(|s| s.get(from).cloned()).unwrap_or_else(|| PathBuf::from(from));
-        let raw = from.parent().unwrap_or_else(|| Path::new("")).join(include);
-        let path = tidy(&raw);
+        let path = self.resolve(from, include)?;
         let bytes = read(&path)?;
         match decode(bytes) {
             Content::Text(text) => Ok((self.show(&path), text)),

@@ -11,6 +11,7 @@ leastwise: Lagrangian mechanics from a model file, derived exactly
   leastwise sheet FILE        everything derived: equations, momenta, energy, symmetries
   leastwise format FILES…     lay models out in the one usual way
   leastwise explain [CODE]    what a finding's code stands for
+  leastwise lsp               the language server, for editors
   leastwise help [COMMAND]    this page, or one about a command
   leastwise --version         the version
 
@@ -83,6 +84,24 @@ code, lists all of them.
 Exit status: 0 explained, 2 there is no such code.
 ";
 
+/// `leastwise help lsp`.
+pub const LSP: &str = "\
+leastwise lsp
+
+Talks the Language Server Protocol over standard input and output; an editor starts it. In an open
+model it shows equations, momenta, verdicts and slips as hovers, hints and diagnostics while the
+model is typed.
+
+Settings, by initialisation options or by workspace/configuration (section `leastwise`):
+  hints.momentum, hints.claims, hints.summary    true or false: the kinds of hints
+  hints.maxLength                                longer hints are cut, 10 to 400 (60)
+  hover.maxLines                                 longer hovers are cut, 5 to 1000 (40)
+  diagnostics.readings                           true or false: hints on how a formula was read
+  diagnostics.max                                findings that are shown, 1 to 10000 (200)
+
+Exit status: 0 after `shutdown` and `exit`, else 1.
+";
+
 /// `leastwise help help`.
 pub const HELP: &str = "\
 leastwise help [COMMAND]
@@ -97,6 +116,7 @@ pub fn page(command: &str) -> Option<&'static str> {
         "sheet" => SHEET,
         "format" => FORMAT,
         "explain" => EXPLAIN,
+        "lsp" => LSP,
         "help" => HELP,
         _ => return None,
     })

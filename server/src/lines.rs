@@ -22,15 +22,7 @@ pub struct Lines<'a> {
 impl<'a> Lines<'a> {
     /// Finds the lines. Cost: one pass over the text.
     pub fn new(text: &'a str) -> Lines<'a> {
-        let bytes = text.as_bytes();
-        let mut starts = vec![0];
-        for (i, b) in bytes.iter().enumerate() {
-            let ends = *b == b'\n' || (*b == b'\r' && bytes.get(i + 1) != Some(&b'\n'));
-            if ends {
-                starts.push(i + 1);
-            }
-        }
-        Lines { text, starts }
+        Lines { text, starts: starts(text) }
     }
 
     /// The text.
@@ -63,6 +55,19 @@ impl<'a> Lines<'a> {
         let offset = floor(self.text, offset);
         self.text[self.starts[self.line_of(offset)]..offset].chars().count()
     }
+}
+
+/// Where each line begins. Cost: one pass over the text.
+pub fn starts(text: &str) -> Vec<usize> {
+    let bytes = text.as_bytes();
+    let mut starts = vec![0];
+    for (i, b) in bytes.iter().enumerate() {
+        let ends = *b == b'\n' || (*b == b'\r' && bytes.get(i + 1) != Some(&b'\n'));
+        if ends {
+            starts.push(i + 1);
+        }
+    }
+    starts
 }
 
 /// The nearest offset at or before this one at which a character begins.

@@ -6,6 +6,7 @@ mod engine;
 mod files;
 mod help;
 mod lines;
+mod lsp;
 mod output;
 mod print;
 
@@ -34,13 +35,18 @@ fn main() -> ExitCode {
     match worker.map(thread::JoinHandle::join) {
         Ok(Ok(code)) => ExitCode::from(code),
         Ok(Err(_)) => {
-            let what = PANIC.lock().map(|text| text.clone()).unwrap_or_default();
+            let what = last_panic();
             complain(&format!(
                 "internal error: {what}\nThis is a defect of leastwise, not of the model; please report it with the file."
             ))
         }
         Err(error) => complain(&format!("no thread for the analysis: {error}")),
     }
+}
+
+/// What the last panic said, and where.
+fn last_panic() -> String {
+    PANIC.lock().map(|text| text.clone()).unwrap_or_default()
 }
 
 fn complain(message: &str) -> ExitCode {

@@ -19,6 +19,7 @@ use leastwise_grammar::{CallableNames, RawItem, callable_names, parse_item, spli
 use std::collections::HashMap;
 use std::hash::{DefaultHasher, Hash, Hasher};
 use std::sync::Arc;
+use std::sync::atomic::AtomicBool;
 
 /// Nodes that the formula of one item may visit or make.
 const ITEM_NODES: u64 = 2_000_000;
@@ -49,6 +50,8 @@ pub struct Session {
     lowered: HashMap<u64, (Arc<Lowered>, u64)>,
     /// Items parsed and lowered by the last check, for tests of incrementality.
     pub(crate) work: (usize, usize),
+    /// Raised from outside, it ends what is being derived.
+    pub(crate) interrupt: Arc<AtomicBool>,
     /// What derivations leave behind for the next edit.
     pub(crate) desk: Option<Box<crate::derive::Desk>>,
 }
@@ -86,8 +89,15 @@ impl Session {
             definitions: HashMap::new(),
             lowered: HashMap::new(),
             work: (0, 0),
+            interrupt: Arc::default(),
             desk: None,
         }
+    }
+
+    /// Takes a flag that ends derivations and prints when it is raised. What they then return says nothing and is to be
+    /// thrown away; what they leave in the session's memory is whole.
+    pub fn set_interrupt(&mut self, flag: Arc<AtomicBool>) {
+        self.interrupt = flag;
     }
 
     /// The arena of this epoch.

@@ -51,13 +51,19 @@ impl Session {
             facts.assume(&mut self.arena, *difference, *relation);
         }
         desk.zero.set_assumptions(facts);
+        desk.prints.set_interrupt(self.interrupt.clone());
         desk
     }
 
     /// Derives everything that verdicts need; prints nothing. The model must be of the session's last epoch.
     pub fn derive(&mut self, checked: &Checked) -> Derived {
+        self.derive_within(checked, NODES)
+    }
+
+    /// The same with so many nodes to visit or make.
+    pub(crate) fn derive_within(&mut self, checked: &Checked, nodes: u64) -> Derived {
         let mut desk = self.desk_for(checked);
-        let mut budget = Budget::new(NODES);
+        let mut budget = Budget::cancellable(nodes, self.interrupt.clone());
         let mut cx =
             Context { arena: &mut self.arena, zero: &mut desk.zero, budget: &mut budget, memory: &mut desk.memory };
         let derived = derive(&mut cx, checked);
@@ -80,7 +86,7 @@ impl Session {
 
     pub(crate) fn with_maker<T>(&mut self, checked: &Checked, f: impl FnOnce(&mut Maker<'_>) -> T) -> T {
         let mut desk = self.desk_for(checked);
-        let mut budget = Budget::new(NODES);
+        let mut budget = Budget::cancellable(NODES, self.interrupt.clone());
         let mut maker = Maker {
             arena: &mut self.arena,
             zero: &mut desk.zero,

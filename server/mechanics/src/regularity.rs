@@ -61,7 +61,10 @@ pub(crate) fn mass_verdict(cx: &mut Context<'_>, rows: &MassRows) -> Result<Mass
         return Ok(verdict.clone());
     }
     let verdict = judge_mass(cx, rows)?;
-    cx.memory.mass = Some((facts, rows.clone(), verdict.clone()));
+    // What was not decided may be another time: the budget may have been spent, or the derivation cancelled.
+    if !matches!(verdict, MassVerdict::Undecided(_)) {
+        cx.memory.mass = Some((facts, rows.clone(), verdict.clone()));
+    }
     Ok(verdict)
 }
 

@@ -21,6 +21,7 @@ pub fn run(command: Command, streams: &mut Streams<'_>) -> io::Result<u8> {
         Command::Sheet { source, form } => sheet::run(&source, form, streams),
         Command::Format { sources, check } => format::run(&sources, check, streams),
         Command::Explain(code) => explain::run(code.as_deref(), streams),
+        Command::Lsp => crate::lsp::run(),
         Command::Help(page) => write!(streams.out, "{page}").map(|()| 0),
         Command::Version => writeln!(streams.out, "leastwise {}", env!("CARGO_PKG_VERSION")).map(|()| 0),
     }

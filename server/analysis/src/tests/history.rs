@@ -3,6 +3,7 @@
 use crate::database::Session;
 use crate::include::NoFiles;
 use crate::report::{Finding, Sheet};
+use std::sync::atomic::Ordering;
 
 const MODELS: [&str; 3] = [
     "\
@@ -107,4 +108,30 @@ fn a_chain_edited_at_random() {
 #[test]
 fn a_large_family_edited_at_random() {
     check(MODELS[2], 3, 120);
+}
+
+/// Derivations that were cut short leave nothing wrong behind.
+#[test]
+fn a_derivation_cut_short_is_made_good() {
+    for model in MODELS {
+        let fresh = all(&mut Session::new(), model);
+        let mut session = Session::new();
+        let mut nodes = 1;
+        while nodes < 2_000_000 {
+            let checked = session.check("model.least", model, &NoFiles);
+            session.derive_within(&checked, nodes);
+            session.interrupt.store(true, Ordering::Relaxed);
+            let derived = session.derive(&checked);
+            session.findings(&checked, &derived);
+            session.sheet(&checked, &derived);
+            session.interrupt.store(false, Ordering::Relaxed);
+            assert!(all(&mut session, model) == fresh, "after {nodes} nodes of\n{model}");
+            nodes = nodes * 3 / 2 + 7;
+            // A new text, lest all is known already.
+            let other = model.replace("1/2", &format!("{}/2", nodes % 1000 + 2));
+            let checked = session.check("model.least", &other, &NoFiles);
+            session.derive_within(&checked, nodes / 2);
+            assert!(all(&mut session, &other) == all(&mut Session::new(), &other), "after {nodes} nodes of\n{other}");
+        }
+    }
 }

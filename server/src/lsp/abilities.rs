@@ -1,0 +1,102 @@
+//! What the client can take. Nothing else is sent.
+
+use super::positions::Encoding;
+use tower_lsp::ls_types as lsp;
+
+/// What the client said of itself, as far as the server asks.
+#[derive(Clone, PartialEq, Debug)]
+pub struct Abilities {
+    /// How columns are counted.
+    pub encoding: Encoding,
+    /// It asks for diagnostics itself.
+    pub pulls: bool,
+    /// It is told when to ask for diagnostics again.
+    pub refreshes_diagnostics: bool,
+    /// It is told when to ask for hints again.
+    pub refreshes_hints: bool,
+    /// It is told when to ask for tokens again.
+    pub refreshes_tokens: bool,
+    /// Diagnostics may have related places.
+    pub related: bool,
+    /// Diagnostics may say that something is not needed.
+    pub unnecessary: bool,
+    /// Pushed diagnostics may have a version.
+    pub versions: bool,
+    /// Hovers may be Markdown.
+    pub markdown_hover: bool,
+    /// Documentation of completions may be Markdown.
+    pub markdown_completion: bool,
+    /// Completions may have details beside the label.
+    pub label_details: bool,
+    /// Code actions may be more than commands.
+    pub code_actions: bool,
+    /// One code action may be the preferred one.
+    pub preferred: bool,
+    /// Edits may name the version that they are for.
+    pub document_changes: bool,
+    /// Links may have an origin.
+    pub links: bool,
+    /// The outline may be a tree.
+    pub tree: bool,
+    /// Settings may be asked for.
+    pub configuration: bool,
+    /// The server may ask to be told of new settings.
+    pub registers_configuration: bool,
+    /// The server may ask to be told of changed files.
+    pub registers_files: bool,
+    /// Renaming can be asked about beforehand.
+    pub prepares_rename: bool,
+    /// Tooltips of hints may come later.
+    pub resolves_hints: bool,
+}
+
+impl Default for Abilities {
+    fn default() -> Abilities {
+        Abilities::of(&lsp::ClientCapabilities::default())
+    }
+}
+
+fn yes(flag: Option<bool>) -> bool {
+    flag == Some(true)
+}
+
+fn markdown(list: Option<&Vec<lsp::MarkupKind>>) -> bool {
+    // The first that is known is preferred.
+    list.and_then(|l| l.first()) == Some(&lsp::MarkupKind::Markdown)
+}
+
+impl Abilities {
+    /// Reads what the client says.
+    pub fn of(client: &lsp::ClientCapabilities) -> Abilities {
+        let text = client.text_document.clone().unwrap_or_default();
+        let work = client.workspace.clone().unwrap_or_default();
+        let general = client.general.clone().unwrap_or_default();
+        let push = text.publish_diagnostics.clone().unwrap_or_default();
+        let item = text.completion.as_ref().and_then(|c| c.completion_item.clone()).unwrap_or_default();
+        let action = text.code_action.clone().unwrap_or_default();
+        let hints = text.inlay_hint.clone().unwrap_or_default();
+        Abilities {
+            encoding: Encoding::agreed(general.position_encodings.as_deref()),
+            pulls: text.diagnostic.is_some(),
+            refreshes_diagnostics: yes(work.diagnostics.and_then(|d| d.refresh_support)),
+            refreshes_hints: yes(work.inlay_hint.and_then(|d| d.refresh_support)),
+            refreshes_tokens: yes(work.semantic_tokens.and_then(|d| d.refresh_support)),
+            related: yes(push.related_information),
+            unnecessary: push.tag_support.is_some_and(|t| t.value_set.contains(&lsp::DiagnosticTag::UNNECESSARY)),
+            versions: yes(push.version_support),
+            markdown_hover: markdown(text.hover.and_then(|h| h.content_format).as_ref()),
+            markdown_completion: markdown(item.documentation_format.as_ref()),
+            label_details: yes(item.label_details_support),
+            code_actions: action.code_action_literal_support.is_some(),
+            preferred: yes(action.is_preferred_support),
+            document_changes: yes(work.workspace_edit.and_then(|e| e.document_changes)),
+            links: yes(text.definition.and_then(|d| d.link_support)),
+            tree: yes(text.document_symbol.and_then(|d| d.hierarchical_document_symbol_support)),
+            configuration: yes(work.configuration),
+            registers_configuration: yes(work.did_change_configuration.and_then(|d| d.dynamic_registration)),
+            registers_files: yes(work.did_change_watched_files.and_then(|d| d.dynamic_registration)),
+            prepares_rename: yes(text.rename.and_then(|r| r.prepare_support)),
+            resolves_hints: hints.resolve_support.is_some_and(|r| r.properties.iter().any(|p| p == "tooltip")),
+        }
+    }
+}
