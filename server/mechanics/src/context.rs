@@ -1,6 +1,7 @@
 //! What every derivation works with: the arena, the zero test with its tables, a budget, and memory across edits.
 
 use crate::mass::MassRows;
+use crate::model::Coordinate;
 use crate::symmetry::Generator;
 use crate::verdicts::MassVerdict;
 use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, ZeroTest};
@@ -9,6 +10,8 @@ use std::collections::HashMap;
 /// Results that outlive an edit, keyed by the expressions they are of. Valid as long as the arena.
 #[derive(Default)]
 pub struct Memory {
+    /// The coordinates that the generators move, in their order: ηⁱ alone does not say which one it moves.
+    coordinates: Vec<Coordinate>,
     /// For each generator: the prolonged derivation's results.
     pub(crate) variations: HashMap<Generator, MemoMap>,
     /// For each generator and order of the jets: the derivation of charges and of works.
@@ -17,6 +20,17 @@ pub struct Memory {
     pub(crate) mass: Option<(u64, MassRows, MassVerdict)>,
     /// Velocity derivatives along motions without acceleration.
     pub(crate) coasting: MemoMap,
+}
+
+impl Memory {
+    /// Forgets what was derived for other coordinates, or for the same ones in another order.
+    pub(crate) fn keep_only(&mut self, coordinates: &[Coordinate]) {
+        if self.coordinates != coordinates {
+            self.coordinates = coordinates.to_vec();
+            self.variations.clear();
+            self.flows.clear();
+        }
+    }
 }
 
 /// A derivation's results.

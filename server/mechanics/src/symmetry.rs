@@ -102,6 +102,7 @@ pub fn variations(
     parts: &[Expr],
 ) -> Result<Vec<Expr>, Stopped> {
     let by_symbol = index_of(coordinates);
+    cx.memory.keep_only(coordinates);
     let memo = cx.memory.variations.remove(g).unwrap_or_default();
     let tau_rate = cx.arena.total(g.tau, cx.budget)?;
     let mut inner = Budget::new(cx.budget.left());
@@ -365,6 +366,7 @@ fn flow_derivations(
     };
     let mut d = Derivation::new(&mut rule);
     let key = (g.clone(), order);
+    cx.memory.keep_only(coordinates);
     d.memo = cx.memory.flows.remove(&key).unwrap_or_default();
     let result = of.iter().map(|&e| cx.arena.derive(e, &mut d, cx.budget)).collect();
     cx.memory.flows.insert(key, d.memo);

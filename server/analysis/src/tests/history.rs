@@ -110,6 +110,23 @@ fn a_large_family_edited_at_random() {
     check(MODELS[2], 3, 120);
 }
 
+/// A generator's shift of the second coordinate is another one when the coordinates have changed places.
+#[test]
+fn coordinates_change_their_places() {
+    let model = |first: &str, second: &str| {
+        format!(
+            "coordinate {first}\ncoordinate {second}\nparameter m, k, c\nkinetic T = 1/2 m (x'^2 + y'^2 + x' y')\n\
+             potential U = 1/2 k x^2\ndissipation D = 1/2 c y'^2\nsymmetry a: y -> y + ε\nsymmetry b: x -> x + ε\n\
+             symmetry d: t -> t + ε\nconserved p = momentum(y)\n"
+        )
+    };
+    let mut session = Session::new();
+    for (first, second) in [("x", "y"), ("y", "x"), ("x", "y"), ("x, y", "z"), ("z", "y, x")] {
+        let text = model(first, second);
+        assert!(all(&mut session, &text) == all(&mut Session::new(), &text), "{text}");
+    }
+}
+
 /// Derivations that were cut short leave nothing wrong behind.
 #[test]
 fn a_derivation_cut_short_is_made_good() {
