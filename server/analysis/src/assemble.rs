@@ -40,6 +40,7 @@ pub(crate) fn assemble(arena: &mut Arena, epoch: u64, reading: Reading) -> Check
         path: reading.sources[0].path.clone(),
         text: reading.sources[0].text.clone(),
         epoch,
+        included: reading.included.clone(),
         symbols,
         model,
         coordinates: places.coordinates,
@@ -289,6 +290,13 @@ impl<'a> Builder<'a> {
             let entry = &self.reading.entries[k];
             for used in &entry.parsed.uses.names {
                 uses.entry(&used.name).or_default().extend(used.spans.iter().map(|s| at(entry, *s)));
+            }
+            if let ItemKind::System { options, .. } = &entry.parsed.item.kind {
+                // The constants set to one.
+                for option in options {
+                    let SystemOption::With(names) = option else { continue };
+                    names.iter().for_each(|n| uses.entry(&n.text).or_default().push(at(entry, n.span)));
+                }
             }
         }
         let mut out = Vec::with_capacity(self.reading.scope.decls.len());

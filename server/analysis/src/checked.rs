@@ -23,6 +23,8 @@ pub struct Contents {
     pub epoch: u64,
     /// The items of the model's own file in order.
     pub items: Vec<ItemRow>,
+    /// The files that are included, by where the `include` begins.
+    pub included: Vec<(usize, Arc<str>)>,
     /// All names.
     pub symbols: Vec<SymbolRow>,
     /// The model for the mechanics.

@@ -65,6 +65,8 @@ impl Default for Session {
 /// Everything of one check, on its way to [`Checked`].
 pub(crate) struct Reading {
     pub sources: Vec<Source>,
+    /// The files that the model's own file includes, by where the `include` begins.
+    pub included: Vec<(usize, Arc<str>)>,
     pub entries: Vec<Entry>,
     pub scope: Scope,
     /// The meaning of each entry, where it has one.
@@ -141,6 +143,7 @@ impl Session {
         let mut raw: Vec<(Vec<RawItem>, Option<usize>)> = Vec::new();
         let mut refused: Vec<(usize, usize, LocalFinding)> = Vec::new();
         let mut file = 0;
+        let mut included = Vec::new();
         let mut vias: Vec<Option<usize>> = vec![None];
         while file < sources.len() {
             let items = split(&sources[file].text);
@@ -153,12 +156,18 @@ impl Session {
                 if parsed.is_faulty() {
                     continue;
                 }
+                let mut note = |path: &Arc<str>| {
+                    if file == 0 {
+                        included.push((item.range.start, path.clone()));
+                    }
+                };
                 match include::include(&sources, file, name, *span, files) {
                     Inclusion::New(source) => {
+                        note(&source.path);
                         sources.push(source);
                         vias.push(vias[file].or(Some(k)));
                     }
-                    Inclusion::Known => {}
+                    Inclusion::Known(path) => note(&path),
                     Inclusion::Refused(finding) => refused.push((file, k, finding)),
                 }
             }
@@ -195,7 +204,7 @@ impl Session {
             findings.push((starts[file] + k, finding));
         }
         let meanings = vec![None; entries.len()];
-        Reading { sources, entries, scope, meanings, failed, findings }
+        Reading { sources, included, entries, scope, meanings, failed, findings }
     }
 
     fn parse(&mut self, item: &RawItem, callable: &CallableNames) -> Arc<Parsed> {

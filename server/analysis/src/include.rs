@@ -42,8 +42,8 @@ pub(crate) struct Source {
 pub(crate) enum Inclusion {
     /// A file that is new.
     New(Source),
-    /// A file that is taken in already.
-    Known,
+    /// A file that is taken in already: its path.
+    Known(Arc<str>),
     /// A finding.
     Refused(LocalFinding),
 }
@@ -89,8 +89,8 @@ pub(crate) fn include(sources: &[Source], from: usize, file: &str, span: Span, f
         }
         at = sources[at].parent;
     }
-    if sources.iter().any(|s| *s.path == *path) {
-        return Inclusion::Known;
+    if let Some(known) = sources.iter().find(|s| *s.path == *path) {
+        return Inclusion::Known(known.path.clone());
     }
     let bytes: usize = sources.iter().map(|s| s.text.len()).sum::<usize>() + text.len();
     if bytes > MAX_BYTES {

@@ -222,7 +222,7 @@ const GREEK: [(&str, char); 24] = [
 ];
 
 /// Names that read alike have the same likeness: Greek letters written out, raised and lowered digits.
-fn likeness(name: &str) -> String {
+pub(crate) fn likeness(name: &str) -> String {
     let mut out = String::with_capacity(name.len());
     let end = name.find(|c: char| !c.is_alphabetic()).unwrap_or(name.len());
     let (word, rest) = name.split_at(end);

@@ -10,3 +10,6 @@ pub mod outline;
 pub mod place;
 pub mod rename;
 pub mod tokens;
+
+#[cfg(test)]
+pub(crate) mod models;

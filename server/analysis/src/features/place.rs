@@ -229,31 +229,30 @@ pub fn symbol_at<'c>(checked: &'c Contents, range: &Range<usize>) -> Option<&'c 
 
 /// The quantity or unit symbol at a place.
 fn unit_at(kind: &ItemKind, span: Span) -> Option<String> {
-    let mut found = None;
-    let mut look = |unit: Option<&UnitText>| {
-        for f in unit.iter().flat_map(|u| &u.factors) {
-            if f.symbol.span.start <= span.start && span.end <= f.symbol.span.end {
-                found = Some(f.symbol.text.clone());
-            }
-        }
-    };
+    let holds = |f: &&UnitFactor| f.symbol.span.start <= span.start && span.end <= f.symbol.span.end;
+    unit_factors(kind).into_iter().find(holds).map(|f| f.symbol.text.clone())
+}
+
+/// The factors of all units and quantities in an item.
+pub fn unit_factors(kind: &ItemKind) -> Vec<&UnitFactor> {
+    let mut units: Vec<&UnitText> = Vec::new();
     match kind {
         ItemKind::Coordinate { quantity, .. }
         | ItemKind::Input { quantity, .. }
-        | ItemKind::Function { quantity, .. } => look(quantity.as_ref()),
+        | ItemKind::Function { quantity, .. } => units.extend(quantity),
         ItemKind::Parameter(list) => {
             for d in list {
-                look(d.quantity.as_ref());
-                look(d.value.as_ref().and_then(|v| v.unit.as_ref()));
+                units.extend(&d.quantity);
+                units.extend(d.value.as_ref().and_then(|v| v.unit.as_ref()));
             }
         }
         ItemKind::Run { from, over, .. } => {
-            from.iter().for_each(|(_, v)| look(v.unit.as_ref()));
-            look(over.as_ref().and_then(|v| v.unit.as_ref()));
+            units.extend(from.iter().filter_map(|(_, v)| v.unit.as_ref()));
+            units.extend(over.as_ref().and_then(|v| v.unit.as_ref()));
         }
         _ => {}
     }
-    found
+    units.into_iter().flat_map(|u| &u.factors).collect()
 }
 
 /// All formulas of an item, outermost ones only, in the order of the text.
