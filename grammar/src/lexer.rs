@@ -195,6 +195,43 @@ pub fn superscript(c: char) -> Option<char> {
     })
 }
 
+/// What a piece of text is to somebody who only looks at it.
+#[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
+pub enum WordKind {
+    /// A name, keyword, function or unit.
+    Word,
+    /// A number.
+    Number,
+    /// A text in quotes.
+    Text,
+    /// A comment, its mark included.
+    Comment,
+    /// A raised number.
+    Raised,
+    /// Primes.
+    Prime,
+    /// Any other sign.
+    Sign,
+}
+
+/// The pieces of a text, in order, with their places; spaces and line ends are left out. None goes over a line's end.
+/// Linear in the text.
+pub fn words(text: &str) -> impl Iterator<Item = (Span, WordKind)> + '_ {
+    lex(text).filter_map(|l| {
+        let kind = match l.kind {
+            Kind::Newline | Kind::Space => return None,
+            Kind::Word => WordKind::Word,
+            Kind::Number => WordKind::Number,
+            Kind::Text | Kind::OpenText => WordKind::Text,
+            Kind::Comment => WordKind::Comment,
+            Kind::Superscript => WordKind::Raised,
+            Kind::Prime(_) => WordKind::Prime,
+            _ => WordKind::Sign,
+        };
+        Some((l.span, kind))
+    })
+}
+
 /// The lexemes of a text, comments and line ends included, spaces left out.
 pub fn lex(text: &str) -> impl Iterator<Item = Lexeme> + '_ {
     Kind::lexer(text).spanned().filter_map(|(kind, range)| {

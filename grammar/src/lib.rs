@@ -32,6 +32,7 @@ mod model {
 pub use format::{format, format_with};
 pub use items::{RawItem, callable_names, description_at, split};
 pub use keywords::{Arity, Keyword, KeywordRole, builtin, keywords, nearest};
+pub use lexer::{WordKind, words};
 pub use names::{CallableNames, begins_name, continues_name, fold_letters, fold_name, read_name};
 pub use parse::{ParsedItem, parse_formula, parse_item};
 pub use pieces::NESTING;
