@@ -43,9 +43,14 @@ impl Reader<'_> {
                 Kind::Prime(_) => self.prime(piece),
                 Kind::Degree => {
                     self.at += 1;
-                    self.slips
-                        .error(codes::UNIT_IN_FORMULA, piece.span, "units do not stand in formulas")
-                        .help("declare a parameter with this value and name it here");
+                    let number = self.pieces[..self.at - 1].last().filter(|p| p.kind == Kind::Number);
+                    let degrees = number.map(|p| (p.span.to(piece.span), &self.text[p.span.range()]));
+                    let slip = self.slips.error(codes::UNIT_IN_FORMULA, piece.span, "units do not stand in formulas");
+                    slip.help("declare a parameter with this value and name it here");
+                    if let Some((span, number)) = degrees.filter(|_| self.text[piece.span.range()] == *"°") {
+                        let radians = format!("({number} π/180)");
+                        slip.mend(format!("write {radians}"), span, radians);
+                    }
                 }
                 Kind::Close => {
                     self.bound.retain(|(depth, _)| *depth != piece.depth);
@@ -175,9 +180,23 @@ impl Reader<'_> {
         } else if self.callable.declares(&name) && self.kind(self.marks_end(self.at + 1)) == Some(Kind::Open) {
             if order > 0 {
                 let marks = "'".repeat(order.min(4) as usize);
-                self.slips
-                    .error(codes::DOTTED_FUNCTION, piece.span, "a dot on a function may mean two derivatives")
-                    .help(format!("by its argument write {name}{marks}(…), by the time {name}(…){marks}"));
+                let open = self.marks_end(self.at + 1);
+                let close = self.pieces[open..]
+                    .iter()
+                    .skip(1)
+                    .find(|p| p.kind == Kind::Close && p.depth == self.pieces[open].depth)
+                    .map(|p| point(p.span.end));
+                let slip = self.slips.error(
+                    codes::DOTTED_FUNCTION,
+                    piece.span,
+                    "a dot on a function may mean two derivatives",
+                );
+                slip.help(format!("by its argument write {name}{marks}(…), by the time {name}(…){marks}"));
+                slip.mend(format!("write {name}{marks}(…), by its argument"), piece.span, format!("{name}{marks}"));
+                if let Some(close) = close {
+                    let edits = vec![(piece.span, name.clone()), (close, marks.clone())];
+                    slip.mends(format!("write {name}(…){marks}, by the time"), edits);
+                }
             }
             self.at += 1;
             self.emit(Token::Call(name), piece.span);

@@ -153,7 +153,7 @@ fn unknown(character: &str, span: Span, slips: &mut Slips) {
     };
     let slip = slips.error(codes::UNKNOWN_CHARACTER, span, format!("the language has no character {shown}"));
     if instead.is_empty() {
-        slip.help("take it away, or spell it in letters");
+        slip.help("take it away, or spell it in letters").mend("take it away", span, "");
     } else {
         slip.mend(format!("write {instead}"), span, instead);
     }

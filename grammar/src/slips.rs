@@ -37,6 +37,9 @@ impl Slips {
     pub fn extend_last(&mut self, end: u32) {
         if let Some(last) = self.list.last_mut() {
             last.span.end = last.span.end.max(end);
+            // A mend that takes the place away takes all of it away; another was of the first character alone.
+            last.mends.retain(|m| m.edits.iter().all(|(_, text)| text.is_empty()));
+            last.mends.iter_mut().flat_map(|m| &mut m.edits).for_each(|(span, _)| span.end = span.end.max(end));
         }
     }
 

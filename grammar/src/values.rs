@@ -117,9 +117,19 @@ impl Reader<'_> {
             return false;
         }
         let span = self.pieces[at].span;
-        self.slips
+        let outside = |p: &Piece| p.depth == 0 && matches!(p.kind, Kind::Comma | Kind::Colon);
+        let parameter = self.is_word(0, "parameter") && !self.pieces.iter().any(outside);
+        let (keyword, word) = (self.pieces[0].span, self.kind(at) == Some(Kind::Word));
+        // A word behind a number, or alone, may be a unit.
+        let unit =
+            self.kind(end - 1) == Some(Kind::Word) && (end == from + 1 || self.pieces[end - 2].kind.ends_operand());
+        let slip = self
+            .slips
             .error(codes::VALUE_FORM, span, "a value is arithmetic of numbers, then one unit; it has no names")
             .help("write the number, or define the quantity with `let`");
+        if parameter && word && !unit {
+            slip.mend("make it a definition with `let`", keyword, "let");
+        }
         self.emit(Token::Gap, self.pieces[from].span.to(self.pieces[end - 1].span));
         true
     }
@@ -133,9 +143,11 @@ impl Reader<'_> {
                 self.at > start && self.pieces[self.at - 1].kind.ends_operand() && piece.kind.begins_operand();
             if side_by_side && !self.slips.touches(piece.span) {
                 let span = self.pieces[self.at - 1].span.to(piece.span);
+                let gap = Span { start: self.pieces[self.at - 1].span.end, end: piece.span.start };
                 self.slips
                     .error(codes::VALUE_FORM, span, "two numbers stand side by side")
-                    .help("write `*` between them, or take one away");
+                    .help("write `*` between them, or take one away")
+                    .mend("put in `*`", gap, " * ");
             }
             match piece.kind {
                 Kind::Number => self.decimal(piece),
