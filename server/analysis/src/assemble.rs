@@ -6,6 +6,7 @@ use crate::database::Reading;
 use crate::finding::{LocalFinding, Place};
 use crate::include::shortened;
 use crate::lower::{Lowered, Meaning, Part, UNROLLED};
+use crate::mends;
 use crate::names::{is_dimensionless, title};
 use crate::report::{Finding, Fix, Related};
 use crate::scope::{Decl, Entry, SymbolKind};
@@ -462,14 +463,11 @@ fn finding(reading: &Reading, entry: &Entry, f: &LocalFinding) -> Finding {
             related.push(Related { range: at(e, span), message: message.clone() });
         }
     }
-    let fixes = f.fixes.iter().map(|fix| {
-        let mut edits: Vec<(Range<usize>, String)> =
-            fix.edits.iter().map(|(span, text)| (at(entry, *span), text.clone())).collect();
-        if let Some(line) = &fix.line_before {
-            edits.insert(0, (entry.offset..entry.offset, format!("{line}\n")));
-        }
-        Fix { title: fix.title.clone(), edits }
-    });
+    let fixes = f
+        .fixes
+        .iter()
+        .filter(|_| entry.file == 0)
+        .map(|fix| Fix { title: fix.title.clone(), edits: mends::edits(reading, entry, &fix.change) });
     Finding {
         code: f.code,
         severity: f.severity,

@@ -296,6 +296,7 @@ impl Session {
                 findings.push(if a > b {
                     LocalFinding::error(codes::SUM_RANGE, span, format!("no index runs from {a} to {b}"))
                         .help("write the smaller bound first")
+                        .fixes(format!("write {b}..{a}"), vec![(span, format!("{b}..{a}"))])
                 } else {
                     LocalFinding::error(codes::TOO_LARGE, span, "this range has too many values")
                         .help(format!("an index has at most {MAX_MEMBERS} values"))

@@ -28,13 +28,24 @@ pub(crate) struct LocalFinding {
     pub fixes: Vec<LocalFix>,
 }
 
-/// A mend with its edits.
+/// A mend.
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub(crate) struct LocalFix {
     pub title: String,
-    pub edits: Vec<(Span, String)>,
-    /// A line to put in before the item.
-    pub line_before: Option<String>,
+    pub change: Change,
+}
+
+/// What a mend changes.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub(crate) enum Change {
+    /// Places of the item and their new texts.
+    Edits(Vec<(Span, String)>),
+    /// A declaration on a line of its own, beside others of its kind, or else before the item.
+    Declare(String),
+    /// The item goes, or of several names that it declares the one with this number.
+    Remove(usize),
+    /// The item goes to the top of the file.
+    MoveFirst,
 }
 
 impl LocalFinding {
@@ -64,13 +75,21 @@ impl LocalFinding {
         self
     }
 
-    pub fn fix(mut self, title: impl Into<String>, span: Span, text: impl Into<String>) -> LocalFinding {
-        self.fixes.push(LocalFix { title: title.into(), edits: vec![(span, text.into())], line_before: None });
-        self
+    pub fn fix(self, title: impl Into<String>, span: Span, text: impl Into<String>) -> LocalFinding {
+        self.fixes(title, vec![(span, text.into())])
     }
 
-    pub fn line(mut self, title: impl Into<String>, line: impl Into<String>) -> LocalFinding {
-        self.fixes.push(LocalFix { title: title.into(), edits: Vec::new(), line_before: Some(line.into()) });
+    pub fn fixes(self, title: impl Into<String>, edits: Vec<(Span, String)>) -> LocalFinding {
+        self.change(title, Change::Edits(edits))
+    }
+
+    pub fn declare(self, line: impl Into<String>) -> LocalFinding {
+        let line = line.into();
+        self.change(format!("declare `{line}`"), Change::Declare(line))
+    }
+
+    pub fn change(mut self, title: impl Into<String>, change: Change) -> LocalFinding {
+        self.fixes.push(LocalFix { title: title.into(), change });
         self
     }
 }
@@ -87,7 +106,7 @@ impl From<&Slip> for LocalFinding {
             fixes: slip
                 .mends
                 .iter()
-                .map(|m| LocalFix { title: m.title.clone(), edits: m.edits.clone(), line_before: None })
+                .map(|m| LocalFix { title: m.title.clone(), change: Change::Edits(m.edits.clone()) })
                 .collect(),
         }
     }

@@ -30,19 +30,12 @@ impl Lowerer<'_> {
         let end = right.span.end;
         let open = Span { start: function.span.end, end: argument.span.start };
         let close = Span { start: end, end };
-        let mut finding =
+        let alone = Span { start: argument.span.end, end: argument.span.end };
+        let finding =
             LocalFinding::new(codes::READ_FUNCTION_OF_PARAMETER, Severity::Warning, left.span.to(right.span), message)
-                .help("put the whole argument in parentheses, or the function before the product");
-        finding.fixes.push(crate::finding::LocalFix {
-            title: "put both into the argument".into(),
-            edits: vec![(open, "(".into()), (close, ")".into())],
-            line_before: None,
-        });
-        finding.fixes.push(crate::finding::LocalFix {
-            title: format!("put `{name}` alone in parentheses"),
-            edits: vec![(open, "(".into()), (Span { start: argument.span.end, end: argument.span.end }, ")".into())],
-            line_before: None,
-        });
+                .help("put the whole argument in parentheses, or the function before the product")
+                .fixes("put both into the argument", vec![(open, "(".into()), (close, ")".into())])
+                .fixes(format!("put `{name}` alone in parentheses"), vec![(open, "(".into()), (alone, ")".into())]);
         self.hint(finding);
     }
 
@@ -81,10 +74,16 @@ impl Lowerer<'_> {
                 format!("{} needs no argument", kind.described()),
             ),
         };
-        let finding = LocalFinding::error(codes::CALLED_NAME, whole, message)
+        let mut finding = LocalFinding::error(codes::CALLED_NAME, whole, message)
             .help(help)
             .related(Place::Declaration(name.clone()), format!("`{name}` is declared here as {}", kind.described()))
             .fix(format!("write {name} alone"), right.span, "");
+        let before = Span { start: left.span.end, end: right.span.start };
+        if of_number {
+            finding = finding.fix("write the product with `·`", before, "·");
+        } else if kind == SymbolKind::Parameter {
+            finding = finding.fix(format!("write the product {name} t"), before.to(right.span), " t");
+        }
         self.hint(finding);
         true
     }

@@ -1,7 +1,7 @@
 //! Included files: read through an interface that the program provides, each once, within bounds.
 
 use crate::codes;
-use crate::finding::LocalFinding;
+use crate::finding::{Change, LocalFinding};
 use leastwise_grammar::tree::{ItemKind, Span};
 use std::sync::Arc;
 
@@ -82,7 +82,10 @@ pub(crate) fn include(sources: &[Source], from: usize, file: &str, span: Span, f
             } else {
                 format!("`{shown}` includes this file, so this would never end")
             };
-            return refuse(codes::INCLUDE_CIRCLE, message, "move what both need into a file of its own");
+            let finding = LocalFinding::error(codes::INCLUDE_CIRCLE, span, message)
+                .help("move what both need into a file of its own")
+                .change("remove this line", Change::Remove(0));
+            return Inclusion::Refused(finding);
         }
         if at == 0 {
             break;

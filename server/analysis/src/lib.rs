@@ -11,6 +11,7 @@ mod formula;
 mod hints;
 pub mod include;
 mod lower;
+mod mends;
 mod names;
 pub mod quantities;
 pub mod report;

@@ -2,7 +2,7 @@
 
 use crate::codes;
 use crate::database::Reading;
-use crate::finding::{LocalFinding, Place};
+use crate::finding::{Change, LocalFinding, Place};
 use crate::include::is_taken_in;
 use crate::quantities;
 use crate::scope::{Entry, Scope, SymbolKind};
@@ -108,7 +108,7 @@ fn undeclared(reading: &mut Reading) {
             if let Some(near) = near {
                 finding = finding.fix(format!("write {near}"), one.span, near.to_string());
             }
-            finding = finding.line(format!("declare `index {name}: 1..3`"), format!("index {name}: 1..3"));
+            finding = finding.declare(format!("index {name}: 1..3"));
             reading.findings.push((one.entry, finding));
             continue;
         }
@@ -142,12 +142,23 @@ fn undeclared(reading: &mut Reading) {
         if let Some(near) = near {
             finding = finding.fix(format!("write {near}"), one.span, near.to_string());
         }
-        let declaration = match called {
-            Some(argument) => format!("function {name}({argument})"),
-            None if one.primed => format!("coordinate {name}"),
-            None => format!("parameter {name}"),
+        let value = match &entry.parsed.item.kind {
+            // `let g = 9.81 m/s^2`.
+            ItemKind::Let { declared, formals, body } => {
+                unit && declared.index.is_none() && formals.is_empty() && crate::lower::declarations::measure_like(body)
+            }
+            _ => false,
         };
-        finding = finding.line(format!("declare `{declaration}`"), declaration);
+        if value {
+            finding = finding.fix("make it a parameter with this value", entry.parsed.item.keyword, "parameter");
+        }
+        finding = match called {
+            Some(argument) => {
+                finding.declare(format!("function {name}({argument})")).declare(format!("parameter {name}"))
+            }
+            None if one.primed => finding.declare(format!("coordinate {name}")).declare(format!("input {name}")),
+            None => finding.declare(format!("parameter {name}")),
+        };
         for (at, span) in one.further.iter().filter(|(at, s)| (*at, *s) != (one.entry, one.span)).take(SHOWN_USES) {
             let place = if *at == one.entry { Place::Here(*span) } else { Place::Entry(*at, *span) };
             finding = finding.related(place, format!("`{name}` is used here too"));
@@ -290,11 +301,13 @@ fn systems(reading: &mut Reading) {
         let finding = match (first, before) {
             (Some((e, s)), _) => LocalFinding::error(codes::SYSTEM_PLACE, keyword, "a model has one `system`")
                 .help("take one of them out")
-                .related(Place::Entry(e, s), "the first is here"),
+                .related(Place::Entry(e, s), "the first is here")
+                .change("remove this one", Change::Remove(0)),
             (None, Some((e, s))) => {
                 LocalFinding::error(codes::SYSTEM_PLACE, keyword, "`system` stands before all other items")
                     .help("move it to the top of the file")
                     .related(Place::Entry(e, s), "this stands before it")
+                    .change("move it to the top", Change::MoveFirst)
             }
             (None, None) => {
                 first = Some((at, keyword));
@@ -323,7 +336,12 @@ pub(crate) fn title(kind: &ItemKind) -> Option<(u8, &Name)> {
 fn titles(reading: &mut Reading) {
     let mut first: HashMap<(u8, &str), (usize, Span)> = HashMap::new();
     let mut found = Vec::new();
-    for (at, entry) in reading.entries.iter().enumerate().filter(|(_, e)| e.file == 0) {
+    let own = || reading.entries.iter().enumerate().filter(|(_, e)| e.file == 0);
+    let taken: HashSet<(u8, &str)> = own()
+        .filter_map(|(_, e)| title(&e.parsed.item.kind))
+        .map(|(class, name)| (class, name.text.as_str()))
+        .collect();
+    for (at, entry) in own() {
         let Some((class, name)) = title(&entry.parsed.item.kind) else { continue };
         let what = ["term or force", "symmetry", "claim", "constraint", "run"][class as usize];
         match first.entry((class, &name.text)) {
@@ -333,9 +351,13 @@ fn titles(reading: &mut Reading) {
             std::collections::hash_map::Entry::Occupied(slot) => {
                 let (e, s) = *slot.get();
                 let message = format!("another {what} is named `{}` already", name.text);
-                let finding = LocalFinding::error(codes::NAMED_TWICE, name.span, message)
+                let mut finding = LocalFinding::error(codes::NAMED_TWICE, name.span, message)
                     .help("results are told apart by these names: choose another")
                     .related(Place::Entry(e, s), "the first is here");
+                let numbered = |n: &usize| format!("{}_{n}", name.text);
+                if let Some(n) = (2..100).find(|n| !taken.contains(&(class, numbered(n).as_str()))) {
+                    finding = finding.fix(format!("call it {}", numbered(&n)), name.span, numbered(&n));
+                }
                 found.push((at, finding));
             }
         }
@@ -496,7 +518,7 @@ pub(crate) fn unused(reading: &mut Reading) {
             format!("{} `{}` is not used", d.kind.described().split_once(' ').map_or("name", |p| p.1), d.name);
         let mut finding = LocalFinding::new(codes::UNUSED_NAME, Severity::Warning, d.span, message);
         finding.message = format!("the {}", finding.message);
-        found.push((at, finding));
+        found.push((at, finding.change(format!("remove `{}`", d.name), Change::Remove(d.place))));
     }
     reading.findings.extend(found);
 }

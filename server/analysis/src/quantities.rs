@@ -154,6 +154,54 @@ pub fn dimension(unit_text: &UnitText) -> Option<[i64; 7]> {
     Some(out)
 }
 
+/// The unit in which a quantity of this name, or else of this dimension (in sixtieths), is usually given.
+pub fn usual_unit(name: &str, dimension: [i64; 7]) -> Option<String> {
+    let written = match name {
+        "angular_velocity" | "angular_frequency" => "rad/s",
+        "angular_acceleration" => "rad/s^2",
+        "torque" | "rotational_stiffness" | "torsional_stiffness" => "N m",
+        "momentum" | "impulse" => "N s",
+        "moment_of_inertia" => "kg m^2",
+        _ => "",
+    };
+    let units: Vec<&str> = std::iter::once(written).chain(USUAL.iter().copied()).filter(|u| !u.is_empty()).collect();
+    let found = units.into_iter().find(|u| spelled_dimension(u) == Some(dimension)).map(str::to_owned);
+    found.or_else(|| {
+        let base = ["m", "kg", "s", "A", "K", "mol", "cd"];
+        let mut out: Vec<String> = Vec::new();
+        for (symbol, sixtieths) in base.iter().zip(dimension) {
+            match sixtieths {
+                0 => {}
+                60 => out.push((*symbol).to_owned()),
+                n if n % 60 == 0 => out.push(format!("{symbol}^{}", n / 60)),
+                n => out.push(format!("{symbol}^({n}/60)")),
+            }
+        }
+        (!out.is_empty()).then(|| out.join(" "))
+    })
+}
+
+/// Units in which values are given, the most usual of each dimension first.
+const USUAL: &[&str] = &[
+    "m", "kg", "s", "A", "K", "m/s", "m/s^2", "N", "J", "W", "N s", "J s", "kg m^2", "N/m", "N s/m", "Hz", "C", "V",
+    "Ω", "H", "F", "Wb", "T", "Pa", "m^2", "m^3", "kg/m", "kg/m^3", "kg/s", "V s/m", "V/m", "mol", "cd",
+];
+
+/// The dimension of a unit that is spelled with at most one `/` and whole exponents, in sixtieths.
+fn spelled_dimension(text: &str) -> Option<[i64; 7]> {
+    let mut out = [0i64; 7];
+    for (k, product) in text.split('/').enumerate() {
+        for factor in product.split(' ') {
+            let (symbol, power) = factor.split_once('^').unwrap_or((factor, "1"));
+            let power = power.parse::<i64>().ok()? * if k == 0 { 60 } else { -60 };
+            for (sum, exponent) in out.iter_mut().zip(unit(symbol)?) {
+                *sum += power * exponent as i64;
+            }
+        }
+    }
+    Some(out)
+}
+
 /// All quantity names.
 pub fn quantity_names() -> impl Iterator<Item = &'static str> {
     QUANTITIES.iter().map(|q| q.0)

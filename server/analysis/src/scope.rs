@@ -1,7 +1,7 @@
 //! What a model declares: the names, who declares them, and what each of them needs.
 
 use crate::codes;
-use crate::finding::{LocalFinding, Place};
+use crate::finding::{Change, LocalFinding, Place};
 use crate::uses::{Uses, is_built_in};
 use leastwise_grammar::tree::*;
 use std::collections::HashMap;
@@ -214,7 +214,8 @@ impl Scope {
             self.decls[first].disputed = true;
             let first = &self.decls[first];
             let mut finding = LocalFinding::error(codes::DECLARED_TWICE, span, format!("`{name}` is declared twice"))
-                .help("a name is declared once; choose another name, or take one declaration out");
+                .help("a name is declared once; choose another name, or take one declaration out")
+                .change("remove this declaration", Change::Remove(place));
             match first.entry {
                 Some(e) if entries[e].file == 0 => {
                     finding = finding

@@ -2,7 +2,8 @@
 
 use crate::checked::Checked;
 use crate::derive::{Derived, total};
-use crate::report::{Finding, Related};
+use crate::mends;
+use crate::report::{Finding, Fix, Related};
 use crate::sheet::Maker;
 use leastwise_algebra::{Arena, Expr, Function, Node, Rational, Verdict};
 use leastwise_grammar::tree::Severity;
@@ -14,6 +15,10 @@ use std::ops::Range;
 
 fn finding(code: &'static str, severity: Severity, range: Range<usize>, message: String) -> Finding {
     Finding { code, severity, message, help: None, range, related: Vec::new(), fixes: Vec::new() }
+}
+
+fn fix(title: impl Into<String>, edits: Option<mends::Edits>) -> Option<Fix> {
+    edits.map(|edits| Fix { title: title.into(), edits })
 }
 
 /// All findings that need the mechanics.
@@ -42,7 +47,7 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
     for (claim, answer) in checked.symmetries().iter().zip(&derived.symmetries) {
         match answer {
             Ok(a) => symmetry(maker, checked, claim, a, &mut out),
-            Err(why) => no_generator(maker, claim, why, &mut out),
+            Err(why) => no_generator(maker, checked, claim, why, &mut out),
         }
     }
     for (claim, answer) in checked.conserved().iter().zip(&derived.conserved) {
@@ -164,6 +169,7 @@ fn cyclic(maker: &mut Maker<'_>, checked: &Checked, answers: &Answers, out: &mut
                 );
                 f.help = Some(format!("drop `cyclic` before {q}, or the part of the term that depends on it"));
                 f.related = related_parts(checked, &places[1..]);
+                f.fixes.extend(fix("take `cyclic` away: the claim is dropped", mends::without_cyclic(checked, &range)));
                 f.related.push(Related { range, message: format!("{q} is claimed cyclic here") });
                 out.push(f);
             }
@@ -273,7 +279,7 @@ fn symmetry(
         )),
         Status::Broken if claim.expected_broken => {
             if matches!(a.conserved, Ok(Verdict::Proved)) {
-                holds_after_all(maker, claim, a, out);
+                holds_after_all(maker, checked, claim, a, out);
             }
         }
         Status::Broken => {
@@ -300,18 +306,14 @@ fn symmetry(
             f.help = Some(format!("write `broken symmetry {name}` if this is meant"));
             f.related = related_parts(checked, places.get(1..).unwrap_or_default());
             f.related.push(Related { range: claim.range.clone(), message: format!("`{name}` is claimed here") });
-            if let Some(at) = claim.keyword_start {
-                f.fixes.push(crate::report::Fix {
-                    title: format!("declare `{name}` as broken"),
-                    edits: vec![(at..at, "broken ".to_string())],
-                });
-            }
+            let title = format!("declare `{name}` broken: it is known to give no constant of the motion");
+            f.fixes.extend(fix(title, mends::broken(checked, &claim.range, true)));
             out.push(f);
         }
         Status::Exact | Status::UpToGauge => {
             if claim.expected_broken {
                 if matches!(a.conserved, Ok(Verdict::Proved)) {
-                    holds_after_all(maker, claim, a, out);
+                    holds_after_all(maker, checked, claim, a, out);
                 }
                 return;
             }
@@ -404,6 +406,7 @@ fn effect(maker: &mut Maker<'_>, checked: &Checked, a: &SymmetryAnswer, share: &
 
 fn holds_after_all(
     maker: &mut Maker<'_>,
+    checked: &Checked,
     claim: &crate::checked::SymmetryClaim,
     a: &SymmetryAnswer,
     out: &mut Vec<Finding>,
@@ -416,17 +419,13 @@ fn holds_after_all(
         format!("`{}` is declared broken, but its charge {charge} is conserved", claim.name),
     );
     f.help = Some("write `symmetry` without `broken`".into());
-    if let Some(at) = claim.keyword_start {
-        f.fixes.push(crate::report::Fix {
-            title: "drop `broken`".into(),
-            edits: vec![(at..at + "broken ".len(), String::new())],
-        });
-    }
+    f.fixes.extend(fix("take `broken` away", mends::broken(checked, &claim.range, false)));
     out.push(f);
 }
 
 fn no_generator(
     maker: &mut Maker<'_>,
+    checked: &Checked,
     claim: &crate::checked::SymmetryClaim,
     why: &NoGenerator,
     out: &mut Vec<Finding>,
@@ -481,7 +480,20 @@ fn no_generator(
     };
     let mut f = finding(code, severity, range, message);
     f.help = help;
+    if let NoGenerator::NotTheIdentity(k) = why
+        && vanishes_at_zero(maker, claim.images[*k].target)
+        && let Some((title, edits)) = mends::with_source(checked, &claim.range, &f.range)
+    {
+        f.fixes.push(Fix { title, edits });
+    }
     out.push(f);
+}
+
+/// Whether an image is zero at ε = 0: then the coordinate itself was forgotten.
+fn vanishes_at_zero(maker: &mut Maker<'_>, target: Expr) -> bool {
+    let epsilon = leastwise_mechanics::model::epsilon(maker.arena);
+    let map = [(maker.arena.sym(epsilon), Arena::ZERO)].into_iter().collect();
+    maker.arena.substitute(target, &map, maker.budget).is_ok_and(|e| e == Arena::ZERO)
 }
 
 /// A potential that is not 2π-periodic in an angle.
@@ -524,6 +536,8 @@ fn periodicity(maker: &mut Maker<'_>, checked: &Checked, out: &mut Vec<Finding>)
                 format!("`{}` changes when {name} turns by 2π, though {name} is an angle", term.name),
             );
             f.help = Some(format!("declare {name} as `twist` if it counts its turns"));
+            let title = format!("declare {name} as `twist`: it counts its turns");
+            f.fixes.extend(fix(title, mends::twisted(checked, &checked.coordinate_range(i))));
             f.related.push(Related {
                 range: checked.coordinate_range(i),
                 message: format!("{name} is an angle, the same after a full turn"),

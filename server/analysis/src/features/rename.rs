@@ -405,10 +405,10 @@ run a: from ξ = 1 m, ξ' = 0, over 1 s
     #[test]
     fn dots_stay_where_the_name_bears_them() {
         let model = |y: &str, dotted: &str| format!("coordinate {y}\nkinetic T = {dotted}² + {dotted}^2 + y_0\n");
-        let from = format!("coordinate y$0\nkinetic T = ẏ² + ẏ^2 + y_0\n");
-        check(&from, "θ", &model("θ", "θ̇"));
-        check(&from, "x_cart", &model("x_cart", "ẋ_cart"));
-        check(&from, "height", &model("height", "height'"));
+        let from = "coordinate y$0\nkinetic T = ẏ² + ẏ^2 + y_0\n";
+        check(from, "θ", &model("θ", "θ̇"));
+        check(from, "x_cart", &model("x_cart", "ẋ_cart"));
+        check(from, "height", &model("height", "height'"));
         check("coordinate x$0\nkinetic T = ẍ' x\nkinetic ẋ²\n", "𝑥", "coordinate 𝑥\nkinetic T = 𝑥̈' 𝑥\nkinetic 𝑥̇²\n");
         check("coordinate x$0\nkinetic ẋ² sin ẋ ẋ'\n", "up", "coordinate up\nkinetic up'² sin up' up''\n");
         check(

@@ -122,7 +122,9 @@ impl<'a> Lowerer<'a> {
                     let message = format!("`{name}` takes a number, and this is {shape}");
                     let mut finding = LocalFinding::error(codes::NOT_A_NUMBER, arg.span, message);
                     if name == "abs" {
+                        let word = Span { start: span.start, end: span.start + name.len() as u32 };
                         finding = finding.help("the length of a vector is |P| or norm(P)");
+                        finding = finding.fix("write norm for the length", word, "norm");
                     }
                     self.report(finding);
                     return Value::Missing;
@@ -186,7 +188,17 @@ impl<'a> Lowerer<'a> {
                 "the axis of a turn has length one, and this has not",
             )
             .help("divide it by its length: n/|n|");
-            self.report(finding);
+            let end = Span { start: args[0].span.end, end: args[0].span.end };
+            let components = match &args[0].kind {
+                FormulaKind::Name(name) => Some(name.clone()),
+                _ => None,
+            };
+            self.report(match components {
+                Some(name) if square != Arena::ZERO => {
+                    finding.fix(format!("write {name}/|{name}|"), end, format!("/|{name}|"))
+                }
+                _ => finding,
+            });
             return Value::Missing;
         }
         turn(self.arena, axis, angle)

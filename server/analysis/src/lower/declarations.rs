@@ -30,7 +30,11 @@ impl<'a> Lowerer<'a> {
                 "this multiplies and divides by declared names; units do not stand in formulas",
             )
             .help(format!("for a value with a unit write: parameter {} = …", decl.name));
-            self.report(finding);
+            self.report(if decl.is_family() {
+                finding
+            } else {
+                finding.fix("make it a parameter with this value", source.item.keyword, "parameter")
+            });
         }
         // The shapes of the arguments are known at the calls only.
         for formal in &decl.formals {
@@ -172,7 +176,11 @@ impl Lowerer<'_> {
                     format!("`{name}` is {what}: its value needs a unit"),
                 )
                 .help("write the unit behind the number, or name the system `dimensionless`");
-                self.report(finding);
+                let end = Span { start: value.span.end, end: value.span.end };
+                self.report(match crate::quantities::usual_unit(shown, dimension) {
+                    Some(unit) => finding.fix(format!("write the unit {unit}"), end, format!(" {unit}")),
+                    None => finding,
+                });
             }
             return;
         };
@@ -191,13 +199,19 @@ impl Lowerer<'_> {
                 "Hz counts turns: 1 Hz is 2π rad/s, and is read as 1/s here",
             )
             .help("write rad/s, or declare a frequency and multiply by 2 π");
-            self.report(finding);
+            // `50 Hz` alone; of kHz the number would be another.
+            let plain = matches!(&*unit.factors, [f] if f.symbol.text == "Hz" && f.exponent == (1, 1));
+            self.report(if plain {
+                finding.fix("write r/s, turns per second", unit.span, "r/s").fix("write rad/s", unit.span, "rad/s")
+            } else {
+                finding
+            });
         }
     }
 }
 
 /// A hint at a definition that looks like a number with its unit: `let g = 9.81 m/s^2`.
-fn measure_like(body: &Formula) -> bool {
+pub(crate) fn measure_like(body: &Formula) -> bool {
     let list = super::products::factors(body);
     let number = matches!(list.first(), Some((_, f)) if matches!(f.kind, FormulaKind::Number(_)));
     let unit = |f: &Formula| match &f.kind {

@@ -2,7 +2,7 @@
 
 use super::Lowerer;
 use crate::codes;
-use crate::finding::{LocalFinding, Place};
+use crate::finding::{Change, LocalFinding, LocalFix, Place};
 use crate::scope::{Parsed, SymbolKind};
 use crate::values::{Shape, Value};
 use leastwise_algebra::{Arena, Expr};
@@ -77,7 +77,31 @@ impl<'a> Lowerer<'a> {
             _ => self.meaning(&parsed.item),
         };
         let failed = meaning.is_none();
+        self.offer_sums(parsed);
         Lowered { meaning: meaning.unwrap_or(Meaning::Nothing), findings: self.findings, failed }
+    }
+
+    /// At a free index the mend is a sum over the summand that it stands in.
+    fn offer_sums(&mut self, parsed: &Parsed) {
+        let (ItemKind::Term { body, .. }
+        | ItemKind::Dissipation { body, .. }
+        | ItemKind::Force { body, .. }
+        | ItemKind::Conserved { body, .. }) = &parsed.item.kind
+        else {
+            return;
+        };
+        let list = super::products::summands(body);
+        let point = |at: u32| Span { start: at, end: at };
+        for finding in self.findings.iter_mut().filter(|f| f.code == codes::FREE_INDEX) {
+            let holds = |s: &Span| s.start <= finding.span.start && finding.span.end <= s.end;
+            let named = parsed.uses.names.iter().find(|u| u.spans.contains(&finding.span));
+            let Some(index) = named.map(|u| &u.name) else { continue };
+            if let Some(whole) = list.iter().map(|(_, f)| f.span).find(holds) {
+                let edits = vec![(point(whole.start), format!("sum({index}: ")), (point(whole.end), ")".to_owned())];
+                let title = format!("sum over {index}");
+                finding.fixes.push(LocalFix { title, change: Change::Edits(edits) });
+            }
+        }
     }
 
     fn meaning(&mut self, item: &Item) -> Option<Meaning> {

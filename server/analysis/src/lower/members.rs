@@ -18,7 +18,7 @@ impl<'a> Lowerer<'a> {
         };
         let Some(decl) = family.filter(|d| d.is_family() || d.kind == SymbolKind::Undeclared) else {
             let value = self.lower(base);
-            return indices.iter().fold(value, |v, i| self.component(v, i));
+            return indices.iter().fold(value, |v, i| self.component(v, i, base, span));
         };
         let Some(first) = indices.first() else { return Value::Missing };
         let Some(at) = self.member_index(decl, first) else { return Value::Missing };
@@ -27,7 +27,7 @@ impl<'a> Lowerer<'a> {
         } else {
             self.member(decl, at, span)
         };
-        indices[1..].iter().fold(value, |v, i| self.component(v, i))
+        indices[1..].iter().fold(value, |v, i| self.component(v, i, base, span))
     }
 
     /// The index of a member of a family, in its range.
@@ -121,13 +121,14 @@ impl<'a> Lowerer<'a> {
     }
 
     /// A component of a vector, a row of a matrix.
-    fn component(&mut self, value: Value, f: &Formula) -> Value {
+    fn component(&mut self, value: Value, f: &Formula, base: &Formula, whole: Span) -> Value {
         let items = match &value {
             Value::Missing => return Value::Missing,
             Value::Scalar(_) => {
                 let message = "a number has no components";
                 let finding = LocalFinding::error(codes::NO_FAMILY, f.span, message)
-                    .help("an index stands behind a family or a vector; a product needs `*`");
+                    .help("an index stands behind a family or a vector; a product needs `*`")
+                    .fix("leave out the index", Span { start: base.span.end, end: whole.end }, "");
                 self.report(finding);
                 return Value::Missing;
             }

@@ -5,7 +5,7 @@
 mod assumptions;
 mod calls;
 mod claims;
-mod declarations;
+pub(crate) mod declarations;
 mod items;
 mod members;
 mod motion;
@@ -323,7 +323,12 @@ impl<'a> Lowerer<'a> {
                     format!("`{name}` has members, and none is chosen"),
                 )
                 .help(format!("write `{name}[{index}]` inside a sum over {index}, or a number for the index"));
-                self.report(finding);
+                let inner = self.bindings[self.base..].iter().rev().find(|b| b.index).map(|b| b.name.clone());
+                let end = Span { start: span.end, end: span.end };
+                self.report(match inner {
+                    Some(i) => finding.fix(format!("write {name}[{i}]"), end, format!("[{i}]")),
+                    None => finding,
+                });
                 Value::Missing
             }
             SymbolKind::Definition => {
@@ -375,12 +380,16 @@ impl<'a> Lowerer<'a> {
         let constant = order > 0 && out.flat().iter().all(|e| *e == Arena::ZERO);
         if constant && self.constant_name(base).is_some_and(|d| d.kind != SymbolKind::Undeclared && !d.disputed) {
             let name = self.constant_name(base).map(|d| d.name.clone()).unwrap_or_default();
-            self.report(LocalFinding::new(
+            let finding = LocalFinding::new(
                 codes::PRIME_OF_CONSTANT,
                 Severity::Hint,
                 span,
                 format!("`{name}` does not depend on time: its derivative is zero"),
-            ));
+            );
+            self.report(match &base.kind {
+                FormulaKind::Name(name) => finding.fix(format!("write {name} without its prime"), span, name.clone()),
+                _ => finding,
+            });
         }
         out
     }

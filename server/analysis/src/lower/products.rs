@@ -253,22 +253,32 @@ impl Lowerer<'_> {
         let mut finding = LocalFinding::error(codes::TWO_VECTORS, span, format!("a power of {shape} is not defined"));
         let behind = Span { start: base.span.end, end: span.end };
         let square = matches!(&exponent.kind, FormulaKind::Number(n) if n.digits == "2" && n.exponent == 0);
+        let name = match &base.kind {
+            FormulaKind::Name(name) => Some(name.clone()),
+            FormulaKind::Prime { base, order } => match &base.kind {
+                FormulaKind::Name(name) => Some(format!("{name}{}", "'".repeat(*order as usize))),
+                _ => None,
+            },
+            _ => None,
+        };
         match shape {
             Shape::Vector(_) if square => {
                 let before = Span { start: base.span.start, end: base.span.start };
                 let raised = Span { start: base.span.end, end: base.span.end };
-                finding = finding.help("write P·P, or |P|² for the square of the length");
-                finding.fixes.push(crate::finding::LocalFix {
-                    title: "write |…|²".into(),
-                    edits: vec![(before, "|".into()), (raised, "|".into())],
-                    line_before: None,
-                });
-                if let FormulaKind::Name(name) = &base.kind {
+                finding = finding
+                    .help("write P·P, or |P|² for the square of the length")
+                    .fixes("write |…|²", vec![(before, "|".into()), (raised, "|".into())]);
+                if let Some(name) = name {
                     finding = finding.fix(format!("write {name}·{name}"), behind, format!("·{name}"));
                 }
             }
             Shape::Vector(_) => finding = finding.help("a power of its length is written |P|^n"),
-            _ => finding = finding.help("products of matrices are written R·R"),
+            _ => {
+                finding = finding.help("products of matrices are written R·R");
+                if let Some(name) = name.filter(|_| square) {
+                    finding = finding.fix(format!("write {name}·{name}"), behind, format!("·{name}"));
+                }
+            }
         }
         self.report(finding);
         Value::Missing

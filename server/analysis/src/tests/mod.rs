@@ -4,6 +4,7 @@ mod formulas;
 mod history;
 mod incremental;
 mod lowering;
+mod mends;
 mod names;
 mod values;
 mod verdicts;
