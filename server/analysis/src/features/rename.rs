@@ -343,7 +343,7 @@ fn without_places(structure: &str) -> String {
 #[cfg(test)]
 mod tests {
     use super::*;
-    use crate::features::models::with_models;
+    use crate::features::models::{broken, with_models};
     use crate::fixture::Folder;
     use crate::include::NoFiles;
 
@@ -515,6 +515,27 @@ run a: from ξ = 1 m, ξ' = 0, over 1 s
         // Another file uses it.
         let said = renamed(&text.replace("parameter h", "parameter $0h"), "height", &files).expect_err("a refusal");
         assert!(said.contains("would not be read as it is now"), "{said}");
+    }
+
+    /// While somebody types, a renaming gives the same model or a reason.
+    #[test]
+    fn texts_with_errors() {
+        let mut done = 0;
+        with_models(|text| {
+            for text in broken(text) {
+                let mut session = Session::new();
+                let checked = session.check("model.least", &text, &NoFiles);
+                for (span, _) in words(&text).step_by(3) {
+                    for name in ["ζ", "e1", "on", "sum"] {
+                        let Ok(edits) = session.rename(&checked, span.start as usize, name, &NoFiles) else { continue };
+                        let after = edited(&text, &edits);
+                        assert_eq!(after.lines().count(), text.lines().count());
+                        done += 1;
+                    }
+                }
+            }
+        });
+        assert!(done > 1000, "{done}");
     }
 
     /// Every name of every example goes to a fresh name and back.

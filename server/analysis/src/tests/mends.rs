@@ -2,6 +2,7 @@
 
 use crate::Session;
 use crate::features::actions::{Action, actions};
+use crate::features::models::{broken, with_models};
 use crate::fixture::Folder;
 use crate::report::Finding;
 use leastwise_grammar::tree::Severity;
@@ -439,18 +440,35 @@ fn every_code_has_a_mend_or_a_reason_for_none() {
     assert_eq!(without.len(), WITHOUT.len());
 }
 
+/// All mends of a text can be applied.
+#[track_caller]
+fn apply(text: &str) -> usize {
+    let (_, list) = found(text);
+    for action in &list {
+        let mut end = 0;
+        for (range, _) in &action.edits {
+            assert!(end <= range.start && range.start <= range.end && range.end <= text.len(), "{action:?} of {text}");
+            assert!(text.is_char_boundary(range.start) && text.is_char_boundary(range.end), "{action:?} of {text}");
+            end = range.end;
+        }
+        assert!(action.title.starts_with(char::is_uppercase), "{}", action.title);
+    }
+    list.len()
+}
+
 #[test]
 fn edits_are_in_order_and_within_the_text() {
     for (_, text, ..) in MENDED {
-        let (_, list) = found(text);
-        for action in list {
-            let mut end = 0;
-            for (range, _) in &action.edits {
-                assert!(end <= range.start && range.start <= range.end && range.end <= text.len(), "{action:?}");
-                assert!(text.is_char_boundary(range.start) && text.is_char_boundary(range.end));
-                end = range.end;
-            }
-            assert!(action.title.starts_with(char::is_uppercase), "{}", action.title);
+        assert!(apply(text) > 0);
+        // Whatever stands around it, and however it is cut off.
+        apply(&format!("\u{feff}# A model.\r{}", text.replace('\n', "\r")));
+        for (at, _) in text.char_indices() {
+            apply(&text[..at]);
         }
     }
+    with_models(|text| {
+        for text in broken(text) {
+            apply(&text);
+        }
+    });
 }
