@@ -191,9 +191,11 @@ fn near_name(scope: &Scope, name: &str, kind: Option<SymbolKind>) -> Option<Arc<
     Some(near.into())
 }
 
-/// Whether a number stands right before this place.
+/// Whether a number stands right before this place that is no denominator: behind `1/2` stands a factor, not a unit.
 fn behind_number(text: &str, span: Span) -> bool {
-    text.get(..span.start as usize).is_some_and(|t| t.trim_end().ends_with(|c: char| c.is_ascii_digit()))
+    let Some(before) = text.get(..span.start as usize) else { return false };
+    let rest = before.trim_end().trim_end_matches(|c: char| c.is_ascii_digit() || c == '.');
+    rest.len() < before.trim_end().len() && !rest.trim_end().ends_with('/')
 }
 
 /// The name in parentheses right behind this place: `U(r)`.
