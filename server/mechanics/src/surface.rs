@@ -13,7 +13,7 @@ use crate::context::Context;
 use crate::lagrange::depends_on_velocities;
 use crate::mass::{coasting, dense, mass_rows, right_sides};
 use crate::model::Model;
-use leastwise_algebra::{Arena, Expr, Motion, Rational, Stopped, Verdict};
+use leastwise_algebra::{Arena, Expr, Motion, Node, Rational, Sign, Stopped, Verdict};
 
 /// What is put in for atoms, each expression free of all the atoms.
 type Solved = Vec<(Expr, Expr)>;
@@ -176,4 +176,25 @@ fn solve(cx: &mut Context<'_>, model: &Model, f: Expr, order: u16) -> Result<Opt
         out.push((x, cx.arena.div(above, curvature)));
     }
     Ok(Some(out))
+}
+
+/// Whether each constraint takes a degree of freedom: all are solved, one after the other, for coordinates or velocities
+/// of their own, and no root is known to be of a negative number. `false` says that this is not known.
+pub fn are_independent(cx: &mut Context<'_>, model: &Model) -> Result<bool, Stopped> {
+    let (n, m) = (model.coordinates.len(), model.constraints.len());
+    if n + m > MAX_UNKNOWNS || m > n || model.coordinates.iter().any(|q| q.members.is_some()) {
+        return Ok(false);
+    }
+    let Some(branches) = branches(cx, model)? else { return Ok(false) };
+    let mut radicands = Vec::new();
+    for (_, value) in branches.iter().flatten() {
+        cx.arena.visit(*value, &mut |_, node| {
+            if let Node::Product(factors) = node {
+                radicands.extend(factors.iter().filter(|(_, n)| !n.is_integer()).map(|(b, _)| *b));
+            }
+        });
+    }
+    let real =
+        |e: Expr| !matches!(cx.zero.sign_of(cx.arena, e, cx.budget), Sign::Negative | Sign::NonPositive | Sign::Zero);
+    Ok(radicands.into_iter().all(real))
 }

@@ -1,0 +1,277 @@
+//! Hints as they stand in the text.
+
+use super::*;
+use crate::include::Files;
+
+/// The site that examples include.
+struct Site;
+
+impl Files for Site {
+    fn read(&self, _: &str, include: &str) -> Result<(String, String), String> {
+        match include {
+            "site.least" => {
+                Ok(("site.least".into(), include_str!("../../../../../grammar/examples/site.least").into()))
+            }
+            _ => Err("there is no such file".into()),
+        }
+    }
+}
+
+pub(super) fn hints(session: &mut Session, text: &str) -> Vec<Inlay> {
+    let checked = session.check("model.least", text, &Site);
+    let derived = session.derive(&checked);
+    session.inlays(&checked, &derived, 0..text.len())
+}
+
+/// The lines with hints, each hint in ⟦…⟧ where it stands; `→` what it points to.
+fn shown(text: &str) -> String {
+    let mut out = String::new();
+    let hints = hints(&mut Session::new(), text);
+    let mut start = 0;
+    for line in text.split_inclusive('\n') {
+        let here: Vec<&Inlay> = hints.iter().filter(|h| start <= h.offset && h.offset < start + line.len()).collect();
+        if let Some(first) = here.first() {
+            out.push_str(&text[start..first.offset]);
+            for h in here {
+                let target = h.target.as_ref().map_or(String::new(), |t| format!(" → {}", &text[t.clone()]));
+                out.push_str(&format!(" ⟦{}{target}⟧", h.label));
+            }
+            out.push('\n');
+        }
+        start += line.len();
+    }
+    out
+}
+
+/// One line of the model with its hints.
+#[track_caller]
+fn check(model: &str, line: &str) {
+    let all = shown(model);
+    assert!(all.lines().any(|l| l == line), "no line\n{line}\nin\n{all}");
+}
+
+macro_rules! example {
+    ($test:ident, $file:literal) => {
+        #[test]
+        fn $test() {
+            insta::assert_snapshot!(shown(include_str!(concat!("../../../../../grammar/examples/", $file, ".least"))));
+        }
+    };
+}
+
+example!(ballistic_gravimeter, "ballistic_gravimeter");
+example!(buoy_chain, "buoy_chain");
+example!(charged_drop, "charged_drop");
+example!(elastic_gravimeter, "elastic_gravimeter");
+example!(gimballed_rotor, "gimballed_rotor");
+example!(moving_coil_geophone, "moving_coil_geophone");
+example!(sampling_arm, "sampling_arm");
+example!(seismometer, "seismometer");
+example!(shaft_winch, "shaft_winch");
+example!(tethered_buoys, "tethered_buoys");
+
+const SWING: &str = "\
+coordinate x, y: length
+parameter m: mass, k: stiffness, c: damping, F: force
+input u: force
+assume m > 0, k > 0, c > 0
+kinetic T = 1/2 m (x'^2 + y'^2)
+";
+
+/// Lines after the swing's, of which one is looked at.
+#[track_caller]
+fn swing(more: &str, line: &str) {
+    check(&format!("{SWING}{more}"), line);
+}
+
+#[test]
+fn momenta_say_what_acts_on_them() {
+    swing("", "coordinate x, y: length ⟦cyclic: p_x = m ẋ, p_y = m ẏ⟧");
+    swing("potential U = 1/2 k x^2\n", "coordinate x, y: length ⟦p_x = m ẋ; cyclic: p_y = m ẏ⟧");
+    swing(
+        "force brake on y = -c y'\n",
+        "coordinate x, y: length ⟦cyclic: p_x = m ẋ; cyclic, but brake acts: p_y = m ẏ → brake⟧",
+    );
+    swing(
+        "potential U = F x\nforce hand on x = F\n",
+        "coordinate x, y: length ⟦conserved: p_x = m ẋ; cyclic: p_y = m ẏ⟧",
+    );
+    // The multiplier of x = 0 is zero on every motion.
+    swing("constraint wall: x = 0\n", "coordinate x, y: length ⟦cyclic: p_x = m ẋ, p_y = m ẏ⟧");
+    swing(
+        "constraint rod: x^2 + y^2 = 4\n",
+        "coordinate x, y: length ⟦cyclic, but rod acts: p_x = m ẋ, p_y = m ẏ → constraint rod: x^2 + y^2 = 4⟧",
+    );
+    check("coordinate x,\n    y\nkinetic 1/2 (x'^2 + y'^2)\n", "coordinate x, ⟦cyclic: p = ẋ⟧");
+    check("coordinate x\nparameter p\nkinetic 1/2 p x'^2\n", "coordinate x ⟦cyclic: p_x = p ẋ⟧");
+}
+
+/// A row of masses, few of which are written out and many of which are not.
+#[track_caller]
+fn row(n: usize, more: &str, hint: &str) {
+    let model =
+        format!("index i: 1..{n}\ncoordinate x[i]\nparameter m[i], k\nkinetic T = sum(i: 1/2 m[i] x[i]'^2)\n{more}\n");
+    check(&model, &format!("coordinate x[i] ⟦{hint}⟧"));
+}
+
+#[test]
+fn families_have_one_form_where_there_is_one() {
+    row(1, "", "cyclic: p[1] = m[1] x[1]'");
+    for n in [5, 400] {
+        row(n, "", "cyclic: p[i] = m[i] x[i]'");
+        let push = format!("cyclic: p[1] = m[1] x[1]' + k, p[i] = m[i] x[i]' for i = 2..{n}");
+        row(n, "lagrangian push = k x[1]'", &push);
+        let hung = format!("cyclic: p[1] = m[1] x[1]'; p[2] = m[2] x[2]'; cyclic: p[i] = m[i] x[i]' for i = 3..{n}");
+        row(n, "potential U = k x[2]^2", &hung);
+        let braked = format!(
+            "cyclic: p[1] = m[1] x[1]'; cyclic, but D acts: p[2] = m[2] x[2]'; \
+             cyclic: p[i] = m[i] x[i]' for i = 3..{n} → D"
+        );
+        row(n, "dissipation D = k x[2]'^2", &braked);
+        let coupled = format!(
+            "cyclic: p[1] = x[2]' + m[1] x[1]', p[i] = x[i - 1]' + x[i + 1]' + m[i] x[i]' for i = 2..3, \
+             p[4] = x[3]' + m[4] x[4]', p[{0}] = m[{0}] x[{0}]'{1}",
+            if n == 5 { "5" } else { "i" },
+            if n == 5 { "" } else { " for i = 5..400" },
+        );
+        row(n, "kinetic c = sum(i in 1..3: x[i]' x[i+1]')", &coupled);
+    }
+    // Two bound masses coast: the reaction does nothing. Of a large family that is not asked.
+    row(5, "constraint rod: x[1] = x[2]", "cyclic: p[i] = m[i] x[i]'");
+    row(
+        400,
+        "constraint rod: x[1] = x[2]",
+        "cyclic, but rod may act: p[i] = m[i] x[i]' for i = 1..2; cyclic: p[i] = m[i] x[i]' for i = 3..400 \
+         → constraint rod: x[1] = x[2]",
+    );
+}
+
+#[test]
+fn claims_have_their_verdicts() {
+    swing("symmetry s: x -> x + ε\n", "symmetry s: x -> x + ε ⟦exact: p = m ẋ⟧");
+    swing("symmetry s: x -> x + 2 ε  # twice\n", "symmetry s: x -> x + 2 ε ⟦exact: Q = 2 m ẋ⟧");
+    swing("symmetry s: x -> x + ε t\n", "symmetry s: x -> x + ε t ⟦up to d/dt(m x): Q = m (t ẋ - x)⟧");
+    swing(
+        "potential spring = 1/2 k x^2\nsymmetry s: x -> x + ε\n",
+        "symmetry s: x -> x + ε ⟦broken by spring → 1/2 k x^2⟧",
+    );
+    swing(
+        "potential spring = 1/2 k x^2\nbroken symmetry s: x -> x + ε\n",
+        "broken symmetry s: x -> x + ε ⟦broken by spring, as declared → 1/2 k x^2⟧",
+    );
+    swing("broken symmetry s: x -> x + ε\n", "broken symmetry s: x -> x + ε ⟦not broken, exact: p = m ẋ⟧");
+    swing(
+        "force brake on x = -c x'\nsymmetry s: x -> x + ε\n",
+        "symmetry s: x -> x + ε ⟦exact, but brake takes p = m ẋ → brake⟧",
+    );
+    swing(
+        "constraint rod: x^2 + y^2 = 4\nsymmetry s: x -> x + ε\n",
+        "symmetry s: x -> x + ε ⟦exact, but rod takes p = m ẋ → constraint rod: x^2 + y^2 = 4⟧",
+    );
+    swing("symmetry s: x -> 2 x + ε\n", "symmetry s: x -> 2 x + ε ⟦not the identity at ε = 0 → x⟧");
+    swing("conserved p = m x'\n", "conserved p = m x' ⟦conserved⟧");
+    swing("potential U = 1/2 k x^2\nconserved p = m x'\n", "conserved p = m x' ⟦not conserved: rate m ẍ⟧");
+    swing("dissipation D = 1/2 c x'^2\nconserved h = energy\n", "conserved h = energy ⟦not conserved: rate -c ẋ²⟧");
+    swing("conserved P = (x', x)\n", "conserved P = (x', x) ⟦P[1] conserved; P[2] not conserved: rate ẋ⟧");
+    check(
+        "cyclic coordinate x\nparameter k\nkinetic 1/2 x'^2\npotential spring = 1/2 k x^2\n",
+        "cyclic coordinate x ⟦not cyclic: spring → 1/2 k x^2⟧ ⟦p = ẋ⟧",
+    );
+    check(
+        "cyclic coordinate x, y\nparameter k\nkinetic 1/2 (x'^2 + y'^2)\npotential spring = 1/2 k y^2\n",
+        "cyclic coordinate x, y ⟦y is not cyclic: spring → 1/2 k y^2⟧ ⟦cyclic: p_x = ẋ; p_y = ẏ⟧",
+    );
+}
+
+#[test]
+fn the_summary_tells_of_the_energy() {
+    let last = "kinetic T = 1/2 m (x'^2 + y'^2)";
+    swing("", &format!("{last} ⟦2 degrees of freedom, energy conserved⟧"));
+    swing("dissipation D = 1/2 c x'^2\n", &format!("{last} ⟦2 degrees of freedom, energy dissipated by D → D⟧"));
+    swing("dissipation D = 1/2 F x'^2\n", &format!("{last} ⟦2 degrees of freedom, energy not conserved: D → D⟧"));
+    swing(
+        "dissipation D = 1/2 c x'^2\nforce hand on x = F\n",
+        &format!("{last} ⟦2 degrees of freedom, energy not conserved: D, hand → D⟧"),
+    );
+    swing(
+        "potential push = F x sin(t) + u y\n",
+        "potential push = F x sin(t) + u y ⟦2 degrees of freedom, energy not conserved: t, u in push → F x sin(t)⟧",
+    );
+    swing(
+        "constraint rod: x^2 + y^2 = 4\n",
+        &format!("{last} ⟦1 degree of freedom with 1 constraint, energy conserved⟧"),
+    );
+    swing(
+        "constraint rod: x^2 + y^2 = 4 + t\n",
+        &format!("{last} ⟦1 degree of freedom with 1 constraint, energy not conserved: moving constraints⟧"),
+    );
+    // Twice the same takes one degree of freedom only.
+    swing(
+        "constraint a: x = y\nconstraint b: 2 x = 2 y\n",
+        &format!("{last} ⟦2 coordinates, 2 constraints, energy conserved⟧"),
+    );
+    swing("constraint a: x^2 + y^2 = -1\n", &format!("{last} ⟦2 coordinates, 1 constraint, energy conserved⟧"));
+    check(
+        "coordinate x, y\nlagrangian y x'\n",
+        "lagrangian y x' ⟦2 coordinates, singular mass matrix, energy function h conserved⟧",
+    );
+    // A bead on a turning wire: h is not the energy [GPS §2.7].
+    check(
+        "coordinate r\nparameter m, Ω\nkinetic T = 1/2 m (r'^2 + r^2 Ω^2)\n",
+        "kinetic T = 1/2 m (r'^2 + r^2 Ω^2) ⟦1 degree of freedom, energy function h conserved, not the total energy⟧",
+    );
+}
+
+#[test]
+fn nothing_is_said_while_an_item_has_no_meaning() {
+    assert_eq!(hints(&mut Session::new(), &format!("{SWING}potential U = (\n")), []);
+    assert_eq!(hints(&mut Session::new(), ""), []);
+}
+
+#[test]
+fn only_what_is_asked_for() {
+    let mut session = Session::new();
+    let text = include_str!("../../../../../grammar/examples/shaft_winch.least");
+    let checked = session.check("model.least", text, &Site);
+    let derived = session.derive(&checked);
+    let all = session.inlays(&checked, &derived, 0..text.len());
+    assert!(all.len() > 7);
+    for h in &all {
+        let some = session.inlays(&checked, &derived, h.offset..h.offset);
+        assert!(some.contains(h) && some.iter().all(|s| s.offset == h.offset), "{h:?}");
+    }
+    let parted: Vec<Inlay> =
+        [0..900, 901..text.len()].into_iter().flat_map(|part| session.inlays(&checked, &derived, part)).collect();
+    assert_eq!(parted, all);
+}
+
+/// Of a chain that is too long to be printed behind a name, the hint says that there is more.
+#[test]
+fn long_momenta_end_somewhere() {
+    let links = "index i: 1..10\ncoordinate θ[i]: angle\nparameter m[i], l[i]\n\
+        let P[i] = (sum(j in 1..i: l[j] sin θ[j]), -sum(j in 1..i: l[j] cos θ[j]))\n\
+        kinetic bobs = sum(i: 1/2 m[i] |P[i]'|^2)\n";
+    let hints = hints(&mut Session::new(), links);
+    let label = &hints[0].label;
+    assert!(label.starts_with("p[1] = ") && label.ends_with(", …"), "{label}");
+    assert!(label.chars().count() < 4000, "{label}");
+    assert_eq!(hints[1].label, "10 degrees of freedom, energy conserved");
+}
+
+#[test]
+fn no_text_makes_hints_fail() {
+    let mut session = Session::new();
+    crate::features::models::with_models(|text| {
+        for text in crate::features::models::broken(text) {
+            let mut last = 0;
+            for h in hints(&mut session, &text) {
+                assert!(text.is_char_boundary(h.offset) && last <= h.offset, "{h:?} in\n{text}");
+                assert!(!h.label.is_empty() && !h.label.contains(['\n', '\r']), "{h:?}");
+                assert!(h.target.is_none_or(|t| text.get(t).is_some()));
+                let line = text[h.offset..].split(['\n', '\r']).next().unwrap_or_default().trim_start();
+                assert!(line.is_empty() || line.starts_with('#'), "{} stands before {line}", h.label);
+                last = h.offset;
+            }
+        }
+    });
+}
