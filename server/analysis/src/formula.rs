@@ -12,7 +12,10 @@ const NODES: u64 = 4_000_000;
 /// Prints of the arena's expressions, kept as long as the arena.
 #[derive(Default)]
 pub(crate) struct Prints {
-    known: HashMap<Expr, Formula>,
+    /// With the nodes that each took.
+    known: HashMap<Expr, (Formula, u64)>,
+    /// What would have taken more than so many.
+    refused: HashMap<Expr, u64>,
     options: DisplayOptions,
     /// Raised from outside, it ends a print.
     interrupt: Arc<AtomicBool>,
@@ -26,16 +29,39 @@ impl Prints {
 
     /// The textbook form.
     pub fn formula(&mut self, arena: &mut Arena, e: Expr) -> Formula {
-        if let Some(f) = self.known.get(&e) {
+        if let Some((f, _)) = self.known.get(&e) {
             return f.clone();
         }
-        let layout = textbook(arena, e, &self.options, &mut Budget::cancellable(NODES, self.interrupt.clone()));
+        self.print(arena, e, NODES).0
+    }
+
+    /// The textbook form, where it can be had within so many nodes, whatever was printed before.
+    pub fn within(&mut self, arena: &mut Arena, e: Expr, nodes: u64) -> Option<Formula> {
+        if let Some((f, taken)) = self.known.get(&e) {
+            return (*taken <= nodes).then(|| f.clone());
+        }
+        if self.refused.get(&e).is_some_and(|n| *n >= nodes) {
+            return None;
+        }
+        let (f, taken) = self.print(arena, e, nodes);
+        (taken <= nodes).then_some(f)
+    }
+
+    /// The form, and the nodes that it took; more than given where they did not suffice.
+    fn print(&mut self, arena: &mut Arena, e: Expr, nodes: u64) -> (Formula, u64) {
+        let mut budget = Budget::cancellable(nodes, self.interrupt.clone());
+        let layout = textbook(arena, e, &self.options, &mut budget);
+        let taken = if budget.left() == 0 { nodes + 1 } else { nodes - budget.left() };
+        if taken > nodes && nodes < NODES {
+            self.refused.insert(e, nodes);
+            return (Formula { text: layout.text(), plain: String::new(), latex: String::new() }, taken);
+        }
         let f = Formula { text: layout.text(), plain: layout.plain(), latex: layout.latex() };
         // A print that was cut short is not the one that is wanted next time.
         if !self.interrupt.load(Ordering::Relaxed) {
-            self.known.insert(e, f.clone());
+            self.known.insert(e, (f.clone(), taken));
         }
-        f
+        (f, taken)
     }
 
     /// The textbook form in Unicode.

@@ -65,6 +65,12 @@ impl Session {
     }
 }
 
+/// Nodes that the print of one formula may visit or make: what takes more is too long for a hint.
+const NODES: u64 = 10_000;
+
+/// Stands for what is too long.
+const MORE: &str = "…";
+
 /// Where hints are made.
 struct Desk<'m, 'a, 'c> {
     maker: &'m mut Maker<'a>,
@@ -96,10 +102,10 @@ impl Desk<'_, '_, '_> {
         self.out.push(Inlay { offset, kind, label, target });
     }
 
-    /// A formula on one line.
+    /// A formula on one line; an ellipsis for one that is too large to be read in a hint.
     fn print(&mut self, e: Expr) -> String {
-        let text = self.maker.prints.text(self.maker.arena, e);
-        text.lines().map(str::trim).collect::<Vec<_>>().join(", ")
+        let Some(f) = self.maker.prints.within(self.maker.arena, e, NODES) else { return MORE.to_string() };
+        f.text.lines().map(str::trim).collect::<Vec<_>>().join(", ")
     }
 
     /// A letter for a result; another where the model has that name for something else.

@@ -4,7 +4,7 @@
 //! or reaction takes it; `conserved: p = …` where force and ∂L/∂q cancel; else `p = …`. A family has one form for all its
 //! members where there is one, else its first forms.
 
-use super::{Desk, InlayKind, code_end, list, verb};
+use super::{Desk, InlayKind, MORE, code_end, list, verb};
 use crate::derive::Derived;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped, Verdict};
 use leastwise_mechanics::context::Parts;
@@ -18,11 +18,8 @@ use std::ops::Range;
 /// A hint longer than this is shown nowhere: further forms are not printed.
 const LONGEST: usize = 400;
 
-/// After so many different forms of a family's members the others are not looked at.
-const MANY: usize = 8;
-
-/// A momentum larger than this is not printed for a hint.
-const LARGEST: usize = 3000;
+/// After so many members in a row of which none is like the next, the others are not looked at.
+const MANY: usize = 4;
 
 /// A name that declares one coordinate or a family.
 struct Declared {
@@ -82,8 +79,9 @@ fn line(
     let mut lead: Option<String> = None;
     let mut target = None;
     'names: for name in names {
-        for m in momenta(desk, answers, name, names.len() > 1)? {
-            if label.chars().count() > LONGEST {
+        let (momenta, more) = momenta(desk, answers, name, names.len() > 1)?;
+        for m in momenta {
+            if label.chars().count() > LONGEST || label.ends_with(MORE) {
                 label.push_str(", …");
                 break 'names;
             }
@@ -96,7 +94,7 @@ fn line(
                 label.push_str(&m.lead);
                 label.push_str(": ");
             }
-            let value = if is_large(desk.maker.arena, m.value) { "…".to_string() } else { desk.print(m.value) };
+            let value = desk.print(m.value);
             label.push_str(&format!("{} = {value}", m.name));
             if let Some((index, a, b)) = m.members {
                 label.push_str(&format!(" for {index} = {a}..{b}"));
@@ -104,14 +102,11 @@ fn line(
             lead = Some(m.lead);
             target = target.or(m.target);
         }
+        if more {
+            label.push_str(", …");
+        }
     }
     Ok((label, target))
-}
-
-fn is_large(arena: &Arena, e: Expr) -> bool {
-    let mut count = 0;
-    arena.visit(e, &mut |_, _| count += 1);
-    count > LARGEST
 }
 
 /// What is said of a coordinate or member, or of members of a large family.
@@ -123,12 +118,13 @@ struct Said {
     range: Option<(i64, i64)>,
 }
 
+/// The momenta that a name has, and whether there are more of them.
 fn momenta(
     desk: &mut Desk<'_, '_, '_>,
     answers: &Answers,
     name: &Declared,
     several: bool,
-) -> Result<Vec<Momentum>, Stopped> {
+) -> Result<(Vec<Momentum>, bool), Stopped> {
     let checked = desk.checked;
     let model = checked.model();
     let info = desk.maker.arena.info(model.coordinates[name.coordinates.start].symbol).clone();
@@ -139,13 +135,14 @@ fn momenta(
         let said = said(desk, answers, name.coordinates.start)?;
         let momentum =
             |s: Said| Momentum { lead: s.lead, name: letter.clone(), value: s.value, members: None, target: s.target };
-        return Ok(said.into_iter().map(momentum).collect());
+        return Ok((said.into_iter().map(momentum).collect(), false));
     };
     let variable = desk.maker.arena.symbol(&index, None, Role::Index);
     let variable = desk.maker.arena.sym(variable);
     // Neighbours of which the same is said, in terms of the index: put back at each member it is that member's own.
     let mut runs: Vec<Said> = Vec::new();
     let mut form: Option<Expr> = None;
+    let mut more = false;
     let large = model.coordinates[name.coordinates.start].members.is_some();
     for (i, k) in name.coordinates.clone().zip(all.0..) {
         for s in said(desk, answers, i)? {
@@ -162,8 +159,10 @@ fn momenta(
                 }
             }
         }
-        // Where no member is like the next, the first ones stand for all.
-        if runs.len() > MANY {
+        // The first ones stand for all.
+        let alone = |s: &Said| s.range.is_none_or(|(a, b)| a == b);
+        if runs.len() > MANY && runs[runs.len() - MANY..].iter().all(alone) {
+            more = k < all.1;
             break;
         }
     }
@@ -180,7 +179,7 @@ fn momenta(
             target: run.target,
         });
     }
-    Ok(out)
+    Ok((out, more))
 }
 
 /// An expression of the member `k` in terms of the index: `x[k + 1]` becomes `x[i + 1]`.

@@ -245,6 +245,23 @@ fn only_what_is_asked_for() {
     assert_eq!(parted, all);
 }
 
+#[test]
+fn of_many_forms_the_first_are_said() {
+    row(
+        5,
+        "lagrangian g = sum(i: i^2 x[i]')",
+        &(1..=5)
+            .map(|k| format!("p[{k}] = m[{k}] x[{k}]' + {}", k * k))
+            .fold("cyclic: ".to_string(), |all, p| if all.ends_with(": ") { all + &p } else { all + ", " + &p }),
+    );
+    row(
+        9,
+        "lagrangian g = sum(i: i^2 x[i]')",
+        "cyclic: p[1] = m[1] x[1]' + 1, p[2] = m[2] x[2]' + 4, \
+        p[3] = m[3] x[3]' + 9, p[4] = m[4] x[4]' + 16, p[5] = m[5] x[5]' + 25, …",
+    );
+}
+
 /// Of a chain that is too long to be printed behind a name, the hint says that there is more.
 #[test]
 fn long_momenta_end_somewhere() {
@@ -274,4 +291,134 @@ fn no_text_makes_hints_fail() {
             }
         }
     });
+}
+
+/// The next number of a fixed sequence, below `n`.
+fn draw(state: &mut u64, n: usize) -> usize {
+    *state = state.wrapping_mul(6364136223846793005).wrapping_add(1442695040888963407);
+    (*state >> 33) as usize % n.max(1)
+}
+
+/// One thing that a hand does: take a line out, put one in twice, change a character, type a letter, change line ends.
+fn edited(text: &str, original: &str, state: &mut u64) -> String {
+    let places: Vec<usize> = text.char_indices().map(|c| c.0).collect();
+    let mut lines: Vec<&str> = text.split_inclusive('\n').collect();
+    let Some(&place) = places.get(draw(state, places.len())) else { return original.to_string() };
+    let line = draw(state, lines.len());
+    let end = place + text[place..].chars().next().map_or(0, char::len_utf8);
+    let letter = ["2", "θ", "𝑥", "'", " ", "m", "\u{307}", "(", "\n", "#"][draw(state, 10)];
+    match draw(state, 9) {
+        0 => drop(lines.remove(line)),
+        1 => lines.insert(line, lines[draw(state, lines.len())]),
+        2 => return original.to_string(),
+        3 => return text.replace('\n', "\r\n"),
+        4 => return text.replace("\r\n", "\n"),
+        5 => return format!("{}{}", &text[..place], &text[end..]),
+        6 => return format!("{}{letter}{}", &text[..place], &text[end..]),
+        _ => return format!("{}{letter}{}", &text[..place], &text[place..]),
+    }
+    lines.concat()
+}
+
+#[test]
+fn a_session_that_has_lived_shows_what_a_new_one_shows() {
+    let mut session = Session::new();
+    let mut state = 11;
+    crate::features::models::with_models(|original| {
+        let mut text = original.to_string();
+        for step in 0..40 {
+            let lived = hints(&mut session, &text);
+            assert_eq!(lived, hints(&mut Session::new(), &text), "after step {step} of\n{text}");
+            text = edited(&text, original, &mut state);
+        }
+    });
+}
+
+/// Hints of the first text, carried to the second: as they stand in it.
+#[track_caller]
+fn carry(before: &str, after: &str) {
+    let mut plain = String::new();
+    let mut old = Vec::new();
+    let mut rest = before;
+    while let Some((head, tail)) = rest.split_once('⟦') {
+        plain.push_str(head);
+        let (label, tail) = tail.split_once('⟧').expect("a hint");
+        old.push(Inlay { offset: plain.len(), kind: InlayKind::Claim, label: label.into(), target: None });
+        rest = tail;
+    }
+    plain.push_str(rest);
+    let text: String = {
+        let mut out = String::new();
+        let mut inside = false;
+        for c in after.chars() {
+            inside |= c == '⟦';
+            if !inside {
+                out.push(c);
+            }
+            inside &= c != '⟧';
+        }
+        out
+    };
+    let mut shown = String::new();
+    let mut at = 0;
+    for h in carried(&old, &plain, &text) {
+        shown.push_str(&text[at..h.offset]);
+        shown.push_str(&format!("⟦{}⟧", h.label));
+        at = h.offset;
+    }
+    shown.push_str(&text[at..]);
+    assert_eq!(shown, after);
+}
+
+#[test]
+fn hints_stay_with_their_lines() {
+    let before = "kinetic a = x⟦A⟧  # of x\npotential b = y⟦B⟧\nsymmetry c: t -> t⟦C⟧\n";
+    carry(before, before);
+    // Typing in a line, at its end, in its comment.
+    carry(before, "kinetic a = 2 x⟦A⟧  # of x\npotential b = y⟦B⟧\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x + (⟦A⟧  # of x\npotential b = y⟦B⟧\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x⟦A⟧  # of θ̇\npotential b = y⟦B⟧\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x⟦A⟧  # of x\npotential b = y + 𝑥⟦B⟧\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x⟦A⟧  # of x\npotential b =⟦B⟧ \nsymmetry c: t -> t⟦C⟧\n");
+    // Lines put in, taken out, moved.
+    carry(before, "\nkinetic a = x⟦A⟧  # of x\nk\npotential b = y⟦B⟧\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x⟦A⟧  # of x\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "potential b = y⟦B⟧\nkinetic a = x⟦A⟧  # of x\nsymmetry c: t -> t⟦C⟧\nlet d = (\n");
+    carry(before, "kinetic a = x⟦A⟧  # of x\npotential b =⟦B⟧\n  y\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "kinetic a = x⟦A⟧  # of x\npotential b = y symmetry c: t -> t⟦B⟧\n");
+    // Another line has come in its place.
+    carry(before, "kinetic a = x⟦A⟧  # of x\nforce u on q = 1\nsymmetry c: t -> t⟦C⟧\n");
+    carry(before, "");
+    // Line ends changed.
+    carry(before, &before.replace('\n', "\r\n"));
+    carry(&before.replace('\n', "\r"), before);
+}
+
+proptest::proptest! {
+    /// Wherever hints stood and whatever the text has become: they stand between characters, in order, and stay where the
+    /// text is the same.
+    #[test]
+    fn carried_hints_stand_in_the_text(
+        before in "[a-cθ𝑥\u{307}# \r\n]{0,60}", after in "[a-cθ𝑥\u{307}# \r\n]{0,60}", head in 0usize..60, places in proptest::collection::vec(0usize..60, 0..8)
+    ) {
+        let whole = |text: &str, n: usize| text.char_indices().map(|c| c.0).nth(n).unwrap_or(text.len());
+        // The two share what they begin with.
+        let after = format!("{}{after}", &before[..whole(&before, head)]);
+        let mut hints: Vec<Inlay> = places
+            .iter()
+            .map(|&n| whole(&before, n))
+            .map(|offset| Inlay { offset, kind: InlayKind::Claim, label: offset.to_string(), target: Some(0..offset) })
+            .collect();
+        hints.sort_by_key(|h| h.offset);
+        let moved = carried(&hints, &before, &after);
+        let mut last = 0;
+        for h in &moved {
+            proptest::prop_assert!(last <= h.offset && after.is_char_boundary(h.offset), "{h:?}");
+            if let Some(t) = &h.target {
+                proptest::prop_assert!(after.get(t.clone()).is_some(), "{h:?}");
+            }
+            last = h.offset;
+        }
+        proptest::prop_assert_eq!(carried(&hints, &before, &before), hints);
+    }
 }
