@@ -34,3 +34,30 @@ pub(crate) fn broken(text: &str) -> Vec<String> {
     }
     out
 }
+
+/// The next number of a fixed sequence, below `n`.
+fn draw(state: &mut u64, n: usize) -> usize {
+    *state = state.wrapping_mul(6364136223846793005).wrapping_add(1442695040888963407);
+    (*state >> 33) as usize % n.max(1)
+}
+
+/// One thing that a hand does: take a line out, put one in twice, change a character, type a letter, change line ends.
+pub(crate) fn edited(text: &str, original: &str, state: &mut u64) -> String {
+    let places: Vec<usize> = text.char_indices().map(|c| c.0).collect();
+    let mut lines: Vec<&str> = text.split_inclusive('\n').collect();
+    let Some(&place) = places.get(draw(state, places.len())) else { return original.to_string() };
+    let line = draw(state, lines.len());
+    let end = place + text[place..].chars().next().map_or(0, char::len_utf8);
+    let letter = ["2", "θ", "𝑥", "'", " ", "m", "\u{307}", "(", "\n", "#"][draw(state, 10)];
+    match draw(state, 9) {
+        0 => drop(lines.remove(line)),
+        1 => lines.insert(line, lines[draw(state, lines.len())]),
+        2 => return original.to_string(),
+        3 => return text.replace('\n', "\r\n"),
+        4 => return text.replace("\r\n", "\n"),
+        5 => return format!("{}{}", &text[..place], &text[end..]),
+        6 => return format!("{}{letter}{}", &text[..place], &text[end..]),
+        _ => return format!("{}{letter}{}", &text[..place], &text[place..]),
+    }
+    lines.concat()
+}

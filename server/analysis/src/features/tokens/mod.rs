@@ -2,6 +2,7 @@
 
 use super::place::{Binder, binders, head_name, unit_factors};
 use crate::checked::Contents;
+use crate::quantities;
 use crate::scope::SymbolKind;
 use leastwise_grammar::tree::ItemKind;
 use leastwise_grammar::{KeywordRole, WordKind, keywords, read_name, words};
@@ -74,10 +75,14 @@ pub fn tokens(checked: &Contents) -> Vec<Token> {
     let mut out: Vec<Token> = Vec::new();
     let mut item = 0;
     let mut list = words(text).peekable();
+    let mut before = "";
+    // The names before the brackets that are open, and the one before the last that was closed, with its end.
+    let (mut open, mut closed): (Vec<Option<usize>>, Option<(usize, usize)>) = (Vec::new(), None);
     while let Some((span, kind)) = list.next() {
         let range = span.range();
         while checked.items.get(item).is_some_and(|i| i.range.end <= range.start) {
             item += 1;
+            open.clear();
         }
         let inside = checked.items.get(item).is_some_and(|i| i.range.start <= range.start).then_some(item);
         let plain = |kind| Some((kind, Modifiers::default()));
@@ -85,16 +90,34 @@ pub fn tokens(checked: &Contents) -> Vec<Token> {
             WordKind::Number | WordKind::Raised => plain(TokenKind::Number),
             WordKind::Text => plain(TokenKind::Text),
             WordKind::Comment => plain(TokenKind::Comment),
-            WordKind::Prime => plain(TokenKind::Operator),
+            WordKind::Prime => {
+                // Of a member, `x[i]'`, it is the family's name that stands for the derivative.
+                if let Some((end, name)) = closed
+                    && end == range.start
+                {
+                    out[name].modifiers.derivative = true;
+                }
+                // Minutes and seconds of arc stand behind a number.
+                let arc = before.ends_with(|c: char| c.is_ascii_digit());
+                plain(if arc { TokenKind::Unit } else { TokenKind::Operator })
+            }
             WordKind::Sign => known
                 .sign(&range)
                 .or_else(|| is_operator(&text[range.clone()]).then_some(TokenKind::Operator))
                 .and_then(plain),
             WordKind::Word => {
                 let primed = list.peek().is_some_and(|(next, k)| *k == WordKind::Prime && next.start == span.end);
-                known.word(checked, &text[range.clone()], &range, inside, primed)
+                known
+                    .word(checked, &text[range.clone()], &range, inside, primed)
+                    .or_else(|| plain(guess(before, &text[range.clone()])))
             }
         };
+        before = &text[range.clone()];
+        match before {
+            "[" => open.push(out.len().checked_sub(1).filter(|&k| out[k].range.end == range.start)),
+            "]" => closed = open.pop().flatten().map(|name| (range.end, name)),
+            _ => {}
+        }
         if let Some((kind, modifiers)) = found {
             out.push(Token { range, kind, modifiers });
         }
@@ -105,6 +128,14 @@ pub fn tokens(checked: &Contents) -> Vec<Token> {
 /// Brackets and commas are no operators; arrows and signs of arithmetic are.
 fn is_operator(sign: &str) -> bool {
     !matches!(sign, "(" | ")" | "[" | "]" | "," | ":" | "{" | "}" | ";" | ".")
+}
+
+/// What a word of an item that could not be read is most likely: a quantity behind a colon, a unit behind a number, else a
+/// constant, as names that are not declared are.
+fn guess(before: &str, word: &str) -> TokenKind {
+    let quantity = || quantities::quantity(word).is_some() || quantities::unit(word).is_some();
+    let behind_number = before.ends_with(|c: char| c.is_ascii_digit()) && quantities::unit(word).is_some();
+    if before == ":" && quantity() || behind_number { TokenKind::Unit } else { TokenKind::Parameter }
 }
 
 /// What is known of places, by where they begin.
@@ -137,7 +168,9 @@ impl<'c> Known<'c> {
         }
         for b in list {
             for place in &b.places {
-                known.bound.insert(place.start, (b.kind, b.declared.as_ref() == Some(place)));
+                known
+                    .bound
+                    .insert(place.start, (b.kind, b.kind != Binder::Member && b.declared.as_ref() == Some(place)));
             }
         }
         known
@@ -215,57 +248,4 @@ fn symbol(kind: SymbolKind, declaration: bool, derivative: bool) -> (TokenKind, 
 }
 
 #[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::features::models::{broken, with_models};
-
-    /// The tokens of a text, one on a line.
-    fn shown(text: &str) -> String {
-        let checked = crate::Session::new().check("swing.least", text, &crate::include::NoFiles);
-        let mut out = String::new();
-        for t in tokens(&checked) {
-            let m = t.modifiers;
-            let marks = [(m.declaration, "declared"), (m.derivative, "derivative"), (m.built_in, "built in")];
-            let marks: Vec<&str> = marks.iter().filter(|(on, _)| *on).map(|(_, w)| *w).collect();
-            out.push_str(&format!("{:<10} {:?} {}\n", &text[t.range], t.kind, marks.join(", ")).replace(" \n", "\n"));
-        }
-        out
-    }
-
-    #[test]
-    fn a_small_model() {
-        insta::assert_snapshot!(shown(
-            "system swing  # a swing\n\
-             coordinate θ: angle\n\
-             parameter m: mass = 2 kg, l = 1 m\n\
-             let f(x) = x² sin x\n\
-             kinetic bob = 1/2 m l^2 θ̇^2 + f(θ') t\n\
-             force push on θ = -m θ'\n\
-             symmetry turn: θ -> θ + ε\n\
-             conserved h = energy\n"
-        ));
-    }
-
-    #[test]
-    fn words_of_a_broken_item_keep_their_kinds() {
-        let text = "coordinate θ\nparameter m\nkinetic bob = 1/2 m θ'^2 + (\n";
-        assert!(shown(text).contains("θ          Coordinate derivative\n"), "{}", shown(text));
-        assert!(shown(text).contains("m          Parameter\n"));
-    }
-
-    #[test]
-    fn tokens_are_in_order_and_within_lines() {
-        with_models(|text| {
-            for text in broken(text) {
-                let checked = crate::Session::new().check("model.least", &text, &crate::include::NoFiles);
-                let mut end = 0;
-                for t in tokens(&checked) {
-                    assert!(end <= t.range.start && t.range.start < t.range.end, "{t:?}");
-                    let word = &text[t.range.clone()];
-                    assert!(!word.contains(['\n', '\r']), "{word:?}");
-                    end = t.range.end;
-                }
-            }
-        });
-    }
-}
+mod tests;
