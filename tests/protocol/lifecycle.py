@@ -135,7 +135,7 @@ def test_a_planted_panic_does_not_end_the_server():
         before = document.hover(0, 11)
         refused(-32603, lambda: s.ask("leastwise/testPanic", document.at(0, 0)))
         assert document.hover(0, 11) == before
-        document.edit(1, 24, 25, "3")
+        document.edit(1, 20, 21, "3")
         assert document.diagnostics() == []
         assert any("internal error" in p["message"] for m, p in s.told if m == "window/logMessage")
 

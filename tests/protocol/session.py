@@ -202,6 +202,7 @@ class Session:
     def open(self, text, uri="file:///observatory/swing.least", version=1):
         document = {"uri": uri, "languageId": "leastwise", "version": version, "text": text}
         self.texts[uri] = [version, text]
+        self.published.pop(uri, None)
         self.tell("textDocument/didOpen", {"textDocument": document})
         return Document(self, uri)
 
@@ -311,7 +312,8 @@ def edited(text, edits, encoding="utf-16"):
         if p["line"] >= len(starts):
             return len(text)
         k, left = starts[p["line"]], p["character"]
-        while left > 0 and k < len(text) and text[k] not in "\r\n":
+        # A place inside of a letter is before it.
+        while k < len(text) and text[k] not in "\r\n" and left >= width(text[k], encoding):
             left -= width(text[k], encoding)
             k += 1
         return k

@@ -45,6 +45,8 @@ impl Settings {
         let mut wrong = Vec::new();
         let groups = match value {
             Value::Null => return (settings, wrong),
+            // An empty table of Lua.
+            Value::Array(list) if list.is_empty() => return (settings, wrong),
             Value::Object(groups) => groups,
             _ => return (settings, vec!["the settings are no object; the usual ones are used".into()]),
         };
@@ -117,6 +119,7 @@ mod tests {
     fn what_is_not_said_is_as_usual() {
         check(Value::Null, |_| {}, &[]);
         check(json!({}), |_| {}, &[]);
+        check(json!([]), |_| {}, &[]);
         check(
             json!({"hints": {"claims": false, "maxLength": 20}}),
             |s| (s.claim_hints, s.hint_length) = (false, 20),
