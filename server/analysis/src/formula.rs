@@ -69,3 +69,31 @@ impl Prints {
         self.formula(arena, e).text
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use leastwise_algebra::Role;
+
+    /// (x + y)³ sin y: what a print takes decides, not what was printed before.
+    #[test]
+    fn a_print_has_no_more_nodes_than_it_is_given() {
+        let mut arena = Arena::new();
+        let mut symbol = |name: &str| {
+            let s = arena.symbol(name, None, Role::Coordinate);
+            arena.sym(s)
+        };
+        let (x, y) = (symbol("x"), symbol("y"));
+        let sum = arena.add(x, y);
+        let power = arena.pow(sum, 3);
+        let sine = arena.call(leastwise_algebra::Function::Sin, &[y]);
+        let e = arena.mul(power, sine);
+        let mut prints = Prints::default();
+        assert_eq!(prints.within(&mut arena, e, 3), None);
+        assert_eq!(prints.within(&mut arena, e, 3), None);
+        let whole = prints.formula(&mut arena, e);
+        assert_eq!(prints.within(&mut arena, e, 3), None);
+        assert_eq!(prints.within(&mut arena, e, 100_000), Some(whole.clone()));
+        assert_eq!(Prints::default().within(&mut arena, e, 100_000), Some(whole));
+    }
+}

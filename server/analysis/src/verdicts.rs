@@ -548,7 +548,7 @@ fn periodicity(maker: &mut Maker<'_>, checked: &Checked, out: &mut Vec<Finding>)
 }
 
 /// What a full turn of `atom` adds to `e`, as parts; `None` where it stands in sines and cosines only, with integers.
-fn turned_once(maker: &mut Maker<'_>, e: Expr, atom: Expr, pi: Expr) -> Option<Parts> {
+pub(crate) fn turned_once(maker: &mut Maker<'_>, e: Expr, atom: Expr, pi: Expr) -> Option<Parts> {
     if !maker.arena.atoms(e).contains(&atom) {
         return None;
     }

@@ -198,3 +198,36 @@ pub fn are_independent(cx: &mut Context<'_>, model: &Model) -> Result<bool, Stop
         |e: Expr| !matches!(cx.zero.sign_of(cx.arena, e, cx.budget), Sign::Negative | Sign::NonPositive | Sign::Zero);
     Ok(radicands.into_iter().all(real))
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::fixture::{rod, sleigh};
+    use crate::model::Constraint;
+
+    #[test]
+    fn constraints_are_independent_where_each_takes_a_coordinate() {
+        let (mut f, _) = rod(false);
+        let mut model = f.model.clone();
+        assert_eq!(are_independent(&mut f.cx(), &model), Ok(true));
+        // The same once more, and one that no real point satisfies.
+        let first = model.constraints[0].clone();
+        model.constraints.push(Constraint { name: "again".into(), ..first.clone() });
+        assert_eq!(are_independent(&mut f.cx(), &model), Ok(false));
+        let squares: Vec<Expr> = model
+            .coordinates
+            .iter()
+            .map(|q| q.jet(&mut f.arena, 0))
+            .collect::<Vec<_>>()
+            .into_iter()
+            .map(|x| f.arena.pow(x, 2))
+            .collect();
+        let sum =
+            f.arena.linear(&[(squares[0], Rational::ONE), (squares[1], Rational::ONE), (Arena::ONE, Rational::ONE)]);
+        model.constraints = vec![Constraint { name: "nowhere".into(), f: sum }];
+        assert_eq!(are_independent(&mut f.cx(), &model), Ok(false));
+        let (mut f, ..) = sleigh();
+        let model = f.model.clone();
+        assert_eq!(are_independent(&mut f.cx(), &model), Ok(true));
+    }
+}

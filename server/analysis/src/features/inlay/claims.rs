@@ -3,10 +3,12 @@
 use super::{Desk, InlayKind, list, verb};
 use crate::checked::Contents;
 use crate::derive::{Derived, total};
-use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
+use crate::verdicts::turned_once;
+use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped, Verdict};
 use leastwise_mechanics::claims::Claim;
-use leastwise_mechanics::lagrange::multiplier;
-use leastwise_mechanics::symmetry::{NoGenerator, Status};
+use leastwise_mechanics::context::Parts;
+use leastwise_mechanics::lagrange::{self, multiplier, signed_parts};
+use leastwise_mechanics::symmetry::{Generator, NoGenerator, Status};
 use leastwise_mechanics::verdicts::{Answers, Culprit, SymmetryAnswer};
 use std::ops::Range;
 
@@ -49,7 +51,8 @@ pub(super) fn first_place(checked: &Contents, culprits: &[Culprit]) -> Option<Ra
     })
 }
 
-/// The charge by the trade's name: p where one coordinate is shifted, the energy or h where time is, else Q.
+/// The charge by the trade's name: p where one coordinate is shifted, the energy or h where time is, the momentum or
+/// angular momentum where it is that, else Q.
 fn charge(desk: &mut Desk<'_, '_, '_>, a: &SymmetryAnswer) -> (String, Expr) {
     let g = &a.symmetry.generator;
     let model = desk.checked.model();
@@ -71,7 +74,85 @@ fn charge(desk: &mut Desk<'_, '_, '_>, a: &SymmetryAnswer) -> (String, Expr) {
         let other = desk.letter(&format!("p_{q}"), "momentum");
         return (desk.letter("p", &other), a.charge);
     }
+    if a.gauge.is_none()
+        && g.tau == Arena::ZERO
+        && let Some(name) = mechanical_name(desk, g)
+    {
+        return (name.to_string(), a.charge);
+    }
     (desk.letter("Q", "charge"), a.charge)
+}
+
+/// The trade's word for the charge of a shift or rotation: where coordinates are lengths and each momentum is mass times
+/// velocity, with one mass for both coordinates of a rotation, it is the momentum or the angular momentum.
+fn mechanical_name(desk: &mut Desk<'_, '_, '_>, g: &Generator) -> Option<&'static str> {
+    let checked = desk.checked;
+    let model = checked.model();
+    let moved: Vec<usize> = (0..g.eta.len()).filter(|&i| g.eta[i] != Arena::ZERO).collect();
+    let mut masses = Vec::with_capacity(moved.len());
+    for &i in &moved {
+        let place = &checked.coordinates[i];
+        if place.quantity.as_deref().is_none_or(|q| q.trim() != "length") {
+            return None;
+        }
+        masses.push(mass_of(desk, i)?);
+    }
+    if moved.iter().all(|&i| g.eta[i] == Arena::ONE) {
+        // Members of one family lie along one axis; of other coordinates that is not known.
+        let infos: Vec<_> = moved.iter().map(|&i| desk.maker.arena.info(model.coordinates[i].symbol)).collect();
+        let family = infos.windows(2).all(|w| w[0].name == w[1].name) && infos.iter().all(|s| s.member.is_some());
+        return family.then_some("momentum");
+    }
+    // Pairs with ηˣ = −y, ηʸ = x.
+    for (&i, mass) in moved.iter().zip(&masses) {
+        let turned = moved.iter().zip(&masses).any(|(&j, other)| {
+            let arena = &mut *desk.maker.arena;
+            let (x, y) = (model.coordinates[i].jet(arena, 0), model.coordinates[j].jet(arena, 0));
+            let (minus_x, minus_y) = (arena.neg(x), arena.neg(y));
+            let pair = (g.eta[i], g.eta[j]);
+            other == mass && (pair == (minus_y, x) || pair == (y, minus_x))
+        });
+        if !turned {
+            return None;
+        }
+    }
+    (!moved.is_empty()).then_some("angular momentum")
+}
+
+/// m where p = m q̇ and m is made from constants.
+fn mass_of(desk: &mut Desk<'_, '_, '_>, i: usize) -> Option<Expr> {
+    let model = desk.checked.model();
+    let q = &model.coordinates[i];
+    if q.members.is_some() {
+        return None;
+    }
+    let all: Parts = signed_parts(model).concat();
+    let parts = lagrange::momentum(&mut desk.cx(), &all, q).ok()?;
+    let parts: Parts = parts.iter().flat_map(|(f, c)| f.iter().map(|f| (f.expr, c.clone()))).collect();
+    let p = total(desk.maker.arena, &parts);
+    let velocity = q.jet(desk.maker.arena, 1);
+    let mass = desk.maker.arena.partial(p, velocity, desk.maker.budget).ok()?;
+    let arena = &mut *desk.maker.arena;
+    let constant = arena.atoms(mass).into_iter().all(|a| match arena.node(a) {
+        Node::Symbol(s) => arena.info(*s).role == Role::Parameter,
+        _ => false,
+    });
+    let rest = [(p, Rational::ONE), (arena.mul(mass, velocity), Rational::MINUS_ONE)];
+    (constant && desk.cx().vanishes(&rest).is_proved()).then_some(mass)
+}
+
+/// Whether a gauge term changes when an angle makes a full turn.
+fn is_multivalued(desk: &mut Desk<'_, '_, '_>, gauge: Expr) -> bool {
+    let checked = desk.checked;
+    let pi = desk.maker.arena.pi();
+    checked.angles().any(|i| {
+        let q = &checked.model().coordinates[i];
+        if q.members.is_some() {
+            return false;
+        }
+        let atom = q.jet(desk.maker.arena, 0);
+        turned_once(desk.maker, gauge, atom, pi).is_some_and(|change| desk.cx().vanishes(&change).is_refuted())
+    })
 }
 
 fn charge_text(desk: &mut Desk<'_, '_, '_>, a: &SymmetryAnswer) -> String {
@@ -99,7 +180,10 @@ fn symmetry(desk: &mut Desk<'_, '_, '_>, expected_broken: bool, a: &SymmetryAnsw
         }
         Status::Exact => "exact".to_string(),
         Status::UpToGauge => match a.gauge {
-            Some(f) => format!("up to d/dt({})", desk.print(f)),
+            Some(f) => {
+                let single = if is_multivalued(desk, f) { ", not single-valued" } else { "" };
+                format!("up to d/dt({}){single}", desk.print(f))
+            }
             None => {
                 let what = "up to a total time derivative, not found in closed form";
                 return (what.to_string(), None);

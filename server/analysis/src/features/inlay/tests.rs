@@ -184,6 +184,39 @@ fn claims_have_their_verdicts() {
 }
 
 #[test]
+fn charges_have_the_names_of_the_trade() {
+    let turn = "symmetry s: x -> x cos ε - y sin ε, y -> x sin ε + y cos ε";
+    swing(&format!("{turn}\n"), &format!("{turn} ⟦exact: angular momentum = m (x ẏ - y ẋ)⟧"));
+    let back = "symmetry s: x -> x + ε y, y -> y - ε x";
+    swing(&format!("{back}\n"), &format!("{back} ⟦exact: angular momentum = m (y ẋ - x ẏ)⟧"));
+    // Canonical, not mechanical: a field has its share.
+    swing(
+        &format!("lagrangian magnet = F (x y' - y x')\n{turn}\n"),
+        &format!("{turn} ⟦exact: Q = m (x ẏ - y ẋ) + F (x² + y²)⟧"),
+    );
+    swing("symmetry s: x -> x + ε, y -> y + ε\n", "symmetry s: x -> x + ε, y -> y + ε ⟦exact: Q = m (ẋ + ẏ)⟧");
+    check(
+        "index i: 1..2\ncoordinate x[i]: length\nparameter m[i]\nkinetic T = sum(i: 1/2 m[i] x[i]'^2)\n\
+         symmetry s: x[i] -> x[i] + ε\n",
+        "symmetry s: x[i] -> x[i] + ε ⟦exact: momentum = m[1] x[1]' + m[2] x[2]'⟧",
+    );
+    check(
+        "coordinate α, β: angle\nparameter J\nkinetic T = 1/2 J (α'^2 + β'^2)\nsymmetry s: α -> α + ε, β -> β + ε\n",
+        "symmetry s: α -> α + ε, β -> β + ε ⟦exact: Q = J (α̇ + β̇)⟧",
+    );
+    // The charge of a turn in a constant torque grows with the angle.
+    check(
+        "coordinate φ: angle\nparameter J, M\nkinetic T = 1/2 J φ'^2\nlagrangian U = M φ\nsymmetry s: t -> t + ε\n\
+         symmetry l: φ -> φ + ε t\n",
+        "symmetry l: φ -> φ + ε t ⟦up to d/dt(J φ + 1/2 M t²), not single-valued: Q = J (t φ̇ - φ) - 1/2 M t²⟧",
+    );
+    check(
+        "coordinate x\nparameter Q\nkinetic T = 1/2 Q x'^2\nsymmetry s: x -> x + 2 ε\n",
+        "symmetry s: x -> x + 2 ε ⟦exact: charge = 2 Q ẋ⟧",
+    );
+}
+
+#[test]
 fn the_summary_tells_of_the_energy() {
     let last = "kinetic T = 1/2 m (x'^2 + y'^2)";
     swing("", &format!("{last} ⟦2 degrees of freedom, energy conserved⟧"));
