@@ -5,7 +5,7 @@ use crate::codes;
 use crate::database::Reading;
 use crate::finding::{LocalFinding, Place};
 use crate::include::shortened;
-use crate::lower::{Lowered, Meaning, Part, UNROLLED};
+use crate::lower::{Definitions, Lowered, Meaning, Part, UNROLLED};
 use crate::mends;
 use crate::names::{is_dimensionless, title};
 use crate::report::{Finding, Fix, Related};
@@ -31,12 +31,12 @@ fn parts_at(entry: &Entry, parts: &[Part]) -> Vec<Range<usize>> {
 }
 
 /// Puts everything together.
-pub(crate) fn assemble(arena: &mut Arena, epoch: u64, reading: Reading) -> Checked {
+pub(crate) fn assemble(arena: &mut Arena, epoch: u64, definitions: &Definitions, reading: Reading) -> Checked {
     let mut out = Builder { arena, reading: &reading, own: Vec::new() };
     out.own = reading.entries.iter().enumerate().filter(|(_, e)| e.file == 0).map(|(k, _)| k).collect();
     let items = out.items();
     let (model, places) = out.model();
-    let symbols = out.symbols();
+    let symbols = out.symbols(definitions);
     let contents = Contents {
         path: reading.sources[0].path.clone(),
         text: reading.sources[0].text.clone(),
@@ -283,7 +283,7 @@ impl<'a> Builder<'a> {
         })
     }
 
-    fn symbols(&self) -> Vec<SymbolRow> {
+    fn symbols(&self, definitions: &Definitions) -> Vec<SymbolRow> {
         let mut uses: HashMap<&str, Vec<Range<usize>>> = HashMap::new();
         let mut position = HashMap::new();
         for (row, &k) in self.own.iter().enumerate() {
@@ -322,6 +322,7 @@ impl<'a> Builder<'a> {
                 index: d.index.as_ref().map(|i| i.text.as_str().into()),
                 members: d.range,
                 formals: d.formals.clone(),
+                definition: definitions.get(&d.fingerprint).and_then(|d| d.value.clone()),
                 uses: uses.remove(&*d.name).unwrap_or_default(),
             });
         }

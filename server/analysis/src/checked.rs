@@ -3,6 +3,7 @@
 
 use crate::report::Finding;
 use crate::scope::{Parsed, SymbolKind};
+use crate::values::Value;
 use leastwise_algebra::{Expr, Relation, Symbol};
 use leastwise_grammar::tree::UnitText;
 use leastwise_mechanics::model::{Image, Model};
@@ -91,6 +92,8 @@ pub struct SymbolRow {
     pub members: Option<(i64, i64)>,
     /// Formal arguments of a function.
     pub formals: Vec<Arc<str>>,
+    /// The value of a plain definition, all definitions in it expanded.
+    pub(crate) definition: Option<Value>,
     /// Every place in the model's file where it is used.
     pub uses: Vec<Range<usize>>,
 }

@@ -130,7 +130,7 @@ impl Session {
         self.resolve(&mut reading, &mut budget);
         self.lower(&mut reading, &mut budget);
         names::unused(&mut reading);
-        let checked = assemble::assemble(&mut self.arena, self.epoch, reading);
+        let checked = assemble::assemble(&mut self.arena, self.epoch, &self.definitions, reading);
         self.forget();
         checked
     }

@@ -173,7 +173,7 @@ fn row_text<'c>(checked: &'c Contents, row: &ItemRow) -> &'c str {
 }
 
 /// Whether the text before ends in a comment.
-fn within_comment(before: &str) -> bool {
+pub(crate) fn within_comment(before: &str) -> bool {
     let line = before.rfind(['\n', '\r']).map_or(0, |at| at + 1);
     let mut quoted = false;
     before[line..].chars().any(|c| {

@@ -1,0 +1,486 @@
+//! Hovers of claims: the verdict with its grade, the generator, the charge, the balance law term by term.
+
+use super::writer::{SHOWN, Writer, labelled, plural, quoted, short, witness};
+use crate::report::Answer;
+use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
+use leastwise_mechanics::context::Parts;
+use leastwise_mechanics::energy::is_total_energy;
+use leastwise_mechanics::lagrange::{self, multiplier};
+use leastwise_mechanics::model::TermKind;
+use leastwise_mechanics::symmetry::{self, NoGenerator, Status};
+use leastwise_mechanics::verdicts::SymmetryAnswer;
+
+/// More known charges than this a claimed constant is not compared with.
+const COMPARED: usize = 24;
+
+/// The verdict on a symmetry in a few words. Of an incomplete model only what breaks it is told.
+pub(super) fn verdict(w: &Writer<'_, '_>, a: &SymmetryAnswer) -> String {
+    let complete = w.checked.complete;
+    match &a.symmetry.status {
+        Status::Broken => match breakers(w, a) {
+            names if names.is_empty() => "broken".into(),
+            names => format!("broken by {}", quoted(&names)),
+        },
+        _ if !complete => "not judged, the model is incomplete".into(),
+        Status::Exact => "exact symmetry".into(),
+        Status::UpToGauge => "symmetry up to a gauge term".into(),
+        Status::Undecided(why) => format!("undecided: {why}"),
+    }
+}
+
+/// The terms to blame for a broken claim.
+fn breakers(w: &Writer<'_, '_>, a: &SymmetryAnswer) -> Vec<String> {
+    a.culprits.iter().map(|c| w.checked.model.terms[c.term].name.clone()).collect()
+}
+
+/// The charge as it is presented.
+struct Charge {
+    /// `p_φ`, `h`, `Q`.
+    symbol: String,
+    /// `canonical momentum`, `energy`, …
+    name: &'static str,
+    value: Expr,
+    /// The charge is this times what is presented: −1 for an energy function.
+    sign: i64,
+}
+
+/// What a symmetry's charge is called in the trade, and only where it is that.
+fn charge(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) -> Charge {
+    let model = &w.checked.model;
+    let g = &a.symmetry.generator;
+    let moved: Vec<usize> = (0..g.eta.len()).filter(|&i| g.eta[i] != Arena::ZERO).collect();
+    if a.gauge.is_none() && g.tau == Arena::ONE && moved.is_empty() {
+        let value = w.maker.arena.neg(a.charge);
+        return Charge { symbol: "h".into(), name: energy_name(w, value), value, sign: -1 };
+    }
+    let symbol = "Q".to_owned();
+    let plain = Charge { symbol, name: "charge", value: a.charge, sign: 1 };
+    if a.gauge.is_some() || a.gauge_unknown || g.tau != Arena::ZERO {
+        return plain;
+    }
+    let is_length = |i: usize| w.checked.coordinates[i].quantity.as_deref() == Some("length");
+    match moved[..] {
+        [i] if g.eta[i] == Arena::ONE && model.coordinates[i].members.is_none() => {
+            let symbol = format!("p_{}", model.coordinates[i].label(w.maker.arena));
+            Charge { symbol, name: "canonical momentum", ..plain }
+        }
+        _ if moved.len() > 1 && moved.iter().all(|&i| g.eta[i] == Arena::ONE) => {
+            Charge { name: "total canonical momentum", ..plain }
+        }
+        _ if moved.iter().all(|&i| is_length(i)) && is_rotation(w, g, &moved) => {
+            // A term linear in the velocities adds to the charge what is no angular momentum of the masses.
+            let other = model.terms.iter().any(|t| t.kind == TermKind::Lagrangian);
+            Charge { name: if other { "canonical angular momentum" } else { "angular momentum" }, ..plain }
+        }
+        _ => plain,
+    }
+}
+
+/// The symbol of a claim's charge, and a share in its rate with the sign that goes with it.
+pub(super) fn share(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, e: Expr) -> (String, Expr) {
+    let charge = charge(w, a);
+    let e = if charge.sign < 0 { w.maker.arena.neg(e) } else { e };
+    (charge.symbol, e)
+}
+
+/// `energy` where h is kinetic + potential, else `energy function`.
+pub(super) fn energy_name(w: &mut Writer<'_, '_>, h: Expr) -> &'static str {
+    let model = &w.checked.model;
+    if is_total_energy(&mut w.cx(), model, h).is_proved() { "energy" } else { "energy function" }
+}
+
+/// Whether the moved coordinates are turned pair by pair, (x, y) by (−y, x).
+fn is_rotation(w: &mut Writer<'_, '_>, g: &symmetry::Generator, moved: &[usize]) -> bool {
+    let model = &w.checked.model;
+    if moved.iter().any(|&i| model.coordinates[i].members.is_some()) {
+        return false;
+    }
+    let mut turned = |i: usize| {
+        let q = model.coordinates[i].jet(w.maker.arena, 0);
+        let minus = w.maker.arena.neg(q);
+        let partner = moved.iter().copied().find(|&j| g.eta[j] == q || g.eta[j] == minus)?;
+        let p = model.coordinates[partner].jet(w.maker.arena, 0);
+        let back = if g.eta[partner] == q { w.maker.arena.neg(p) } else { p };
+        (g.eta[i] == back && partner != i).then_some(())
+    };
+    !moved.is_empty() && moved.iter().all(|&i| turned(i).is_some())
+}
+
+/// Says what is known of a claimed symmetry.
+pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
+    let checked = w.checked;
+    let claim = &checked.symmetries[k];
+    let name = &claim.name;
+    let a = match &w.derived.symmetries[k] {
+        Ok(a) => a,
+        Err(why) => {
+            let why = no_generator(w, k, why);
+            w.prose(format!("`{name}` is no family of transformations: {why}"));
+            w.description(claim.description.as_deref());
+            return w.missing();
+        }
+    };
+    let charge = charge(w, a);
+    let value = w.text(charge.value);
+    let named = match (charge.name, short(&value)) {
+        ("charge", Some(v)) => format!("`Q = {v}`"),
+        (what, Some(v)) => format!("the {what} `{} = {v}`", charge.symbol),
+        (what, None) => format!("the {what} `{}`", charge.symbol),
+    };
+    let rate = total_rate(w, a, &charge);
+    let answer = match &a.conserved {
+        Ok(v) => w.maker.answer(rate, &signed(*v, &charge)),
+        Err(why) => Answer::Undecided(why.to_string()),
+    };
+    let first = first_line(w, k, &charge, &named, rate, &answer);
+    w.prose(first);
+    w.missing();
+    w.description(claim.description.as_deref());
+    generator(w, a);
+    let mut lines = labelled(&format!("{} = ", charge.symbol), &value, "");
+    if let Some(f) = a.gauge {
+        let f = w.text(f);
+        let of = if a.symmetry.status == Status::Broken { ", for the terms not to blame" } else { "" };
+        lines.extend(labelled("F = ", &f, &format!("   (δL = dF/dt{of})")));
+    }
+    if charge.name != "charge" {
+        w.prose(format!("{}:", capital(charge.name)));
+    } else {
+        w.prose(if a.gauge.is_some() { "Charge Q and gauge term F:" } else { "Charge:" });
+    }
+    w.formulas(lines);
+    if a.gauge_unknown {
+        w.prose(
+            "L changes by a total time derivative dF/dt, of which no closed form was found: F is not in the charge.",
+        );
+    }
+    balance(w, a, &charge, rate, &answer);
+    if !a.smallest {
+        w.prose("The set of terms to blame is minimal, perhaps not a smallest one.");
+    }
+    match a.respects_constraints {
+        Some(true) => w.prose("The flow preserves the constraints."),
+        Some(false) => w.prose("The flow leaves the surface of the constraints."),
+        None if !checked.model.constraints.is_empty() => {
+            w.prose("Whether the flow preserves the constraints is undecided.");
+        }
+        None => {}
+    }
+}
+
+/// The witness of the presented charge's rate has its own sign only where the sign is +.
+fn signed(v: Verdict, charge: &Charge) -> Verdict {
+    match v {
+        Verdict::Refuted(Some(w)) if charge.sign < 0 => {
+            Verdict::Refuted(Some(leastwise_algebra::Witness { lower: -w.upper, upper: -w.lower, ..w }))
+        }
+        v => v,
+    }
+}
+
+/// The rate of what is presented.
+fn total_rate(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge) -> Expr {
+    let rate = w.total(&a.rate);
+    if charge.sign < 0 { w.maker.arena.neg(rate) } else { rate }
+}
+
+fn first_line(w: &mut Writer<'_, '_>, k: usize, charge: &Charge, named: &str, rate: Expr, answer: &Answer) -> String {
+    let Ok(a) = &w.derived.symmetries[k] else { return String::new() };
+    let claim = &w.checked.symmetries[k];
+    let name = &claim.name;
+    if a.symmetry.status == Status::Broken {
+        let how = verdict(w, a);
+        let meant = if claim.expected_broken { ", as declared" } else { "" };
+        if w.checked.complete && *answer == Answer::Yes {
+            return format!("`{name}` is no symmetry of L ({how}), yet {named} is conserved (proved)");
+        }
+        let text = w.text(rate);
+        let law = short(&text).map_or(String::new(), |r| format!(": `d{}/dt = {r}`", charge.symbol));
+        return format!("`{name}` is {how}{meant} (refuted){law}");
+    }
+    if !w.checked.complete {
+        return format!("`{name}` is not judged: the model is incomplete");
+    }
+    let what = match &a.symmetry.status {
+        Status::Exact => "an exact symmetry",
+        Status::UpToGauge => "a symmetry up to a gauge term",
+        Status::Broken | Status::Undecided(_) => {
+            let why = match &a.symmetry.status {
+                Status::Undecided(why) => why.clone(),
+                _ => String::new(),
+            };
+            return format!("Whether `{name}` is a symmetry is undecided: {why}");
+        }
+    };
+    let takers = takers(w, a);
+    let unexpected = if claim.expected_broken { ", though it is declared broken" } else { "" };
+    match answer {
+        Answer::Yes => format!("`{name}` is {what} (proved){unexpected}: {named} is conserved"),
+        Answer::No(_) if takers.is_empty() => {
+            format!("`{name}` is {what} of L (proved), but reactions change {named}")
+        }
+        Answer::No(_) => {
+            let verb = plural(takers.len(), "changes", "change");
+            format!("`{name}` is {what} of L (proved), but {} {verb} {named}", quoted(&takers))
+        }
+        Answer::Undecided(why) => {
+            format!("`{name}` is {what} of L (proved); whether {named} is conserved is undecided: {why}")
+        }
+    }
+}
+
+/// The forces that change the charge.
+fn takers(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) -> Vec<String> {
+    let forces = w.checked.model.forces.iter().zip(&a.taken);
+    let acting: Vec<_> = forces.filter(|(_, e)| **e != Arena::ZERO).map(|(f, e)| (f.name.clone(), *e)).collect();
+    acting.into_iter().filter(|(_, e)| !w.vanishes(*e)).map(|f| f.0).collect()
+}
+
+fn capital(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or(String::new(), |c| c.to_uppercase().chain(letters).collect())
+}
+
+/// τ and the ηⁱ that are not zero.
+fn generator(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) {
+    let g = &a.symmetry.generator;
+    let mut lines = Vec::new();
+    if g.tau != Arena::ZERO {
+        let text = w.text(g.tau);
+        lines.extend(labelled("τ = ", &text, ""));
+    }
+    let mut more = 0;
+    for (q, &eta) in w.checked.model.coordinates.iter().zip(&g.eta) {
+        if eta == Arena::ZERO {
+            continue;
+        }
+        if lines.len() >= SHOWN {
+            more += 1;
+            continue;
+        }
+        let (name, text) = (q.label(w.maker.arena), w.text(eta));
+        lines.extend(labelled(&format!("η_{name} = "), &text, ""));
+    }
+    if more > 0 {
+        lines.push(format!("and {more} more"));
+    }
+    if lines.is_empty() {
+        return w.prose("Generator: nothing is moved.");
+    }
+    w.prose("Generator:");
+    w.formulas(lines);
+}
+
+/// d/dt of the charge on motions, with who contributes what.
+fn balance(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge, rate: Expr, answer: &Answer) {
+    let symbol = &charge.symbol;
+    let complete = w.checked.complete;
+    if *answer == Answer::Yes {
+        if complete {
+            w.prose("Balance law:");
+            w.formulas(vec![format!("d{symbol}/dt = 0")]);
+        }
+        return;
+    }
+    let shares = shares(w, a, charge);
+    w.prose(if complete { "Balance law:" } else { "Balance law of what is left of the model:" });
+    let text = w.text(rate);
+    let mut lines = labelled(&format!("d{symbol}/dt = "), &text, "");
+    if shares.len() > 1 {
+        for (name, e) in shares.iter().take(SHOWN) {
+            let text = w.text(*e);
+            lines.extend(labelled(&format!("  {name}: "), &text, ""));
+        }
+        if shares.len() > SHOWN {
+            lines.push(format!("  and {} more", shares.len() - SHOWN));
+        }
+    } else if let [(name, _)] = &shares[..]
+        && let Some(line) = lines.last_mut()
+    {
+        line.push_str(&format!("   ({name})"));
+    }
+    w.formulas(lines);
+    if complete && let Answer::No(Some(at)) = answer {
+        w.prose(format!("Refuted: d{symbol}/dt is {}.", witness(at)));
+    }
+}
+
+/// Who changes the charge: terms, forces, dissipations, reactions.
+fn shares(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge) -> Vec<(String, Expr)> {
+    let model = &w.checked.model;
+    let mut out: Vec<(String, Expr)> = Vec::new();
+    // Where F is known, the terms that are not to blame have their whole variation in it.
+    let settled = !a.gauge_unknown && matches!(a.symmetry.status, Status::Exact | Status::UpToGauge | Status::Broken);
+    for (t, parts) in a.symmetry.variations.iter().enumerate() {
+        let blamed = a.culprits.iter().any(|c| c.term == t);
+        if settled && !blamed {
+            continue;
+        }
+        let parts: Parts = parts.iter().filter(|p| p.0 != Arena::ZERO).cloned().collect();
+        let e = w.total(&parts);
+        out.push((format!("term {}", model.terms[t].name), e));
+    }
+    for (f, &e) in model.forces.iter().zip(&a.taken) {
+        let kind = match f.action {
+            leastwise_mechanics::model::Action::Applied(_) => "force",
+            leastwise_mechanics::model::Action::Dissipation(_) => "dissipation",
+        };
+        out.push((format!("{kind} {}", f.name), e));
+    }
+    for c in &model.constraints {
+        let lambda = multiplier(w.maker.arena, &c.name);
+        let holds = |p: &&(Expr, Rational)| factor(w, p.0, lambda);
+        let parts: Parts = a.rate.iter().filter(holds).cloned().collect();
+        let e = w.total(&parts);
+        out.push((format!("reaction of {}", c.name), e));
+    }
+    out.retain(|(_, e)| *e != Arena::ZERO);
+    let mut kept = Vec::new();
+    for (name, e) in out {
+        if !w.vanishes(e) {
+            kept.push((name, if charge.sign < 0 { w.maker.arena.neg(e) } else { e }));
+        }
+    }
+    kept
+}
+
+/// Whether an expression is a product with this factor.
+fn factor(w: &Writer<'_, '_>, e: Expr, of: Expr) -> bool {
+    e == of
+        || matches!(w.maker.arena.node(e), Node::Product(_)) && w.maker.arena.factors(e).iter().any(|f| f.0 == of)
+        || matches!(w.maker.arena.node(e), Node::Sum(..)) && w.maker.arena.atoms(e).contains(&of)
+}
+
+/// Why there is no generator, in words.
+fn no_generator(w: &mut Writer<'_, '_>, k: usize, why: &NoGenerator) -> String {
+    let claim = &w.checked.symmetries[k];
+    let mut source = |k: &usize| claim.images.get(*k).map_or("it".into(), |i| w.text(i.source));
+    match why {
+        NoGenerator::NotTheIdentity(k) => {
+            let x = source(k);
+            format!("at ε = 0 the image of {x} is not {x}")
+        }
+        NoGenerator::Velocities(k) => format!("the image of {} contains velocities", source(k)),
+        NoGenerator::NoCoordinate(k) => format!("{} is neither a coordinate nor the time", source(k)),
+        NoGenerator::SingleMember(k) => format!("{} is one member of a family of more than 64", source(k)),
+        NoGenerator::Stopped(s) => s.to_string(),
+    }
+}
+
+/// Says what is known of a claimed constant, or of its components.
+pub(super) fn conserved(w: &mut Writer<'_, '_>, first: usize) {
+    let checked = w.checked;
+    let start = checked.conserved[first].range.start;
+    let own: Vec<usize> = (0..checked.conserved.len()).filter(|&k| checked.conserved[k].range.start == start).collect();
+    for &k in own.iter().take(SHOWN) {
+        constant(w, k);
+    }
+    if own.len() > SHOWN {
+        w.prose(format!("and {} more components", own.len() - SHOWN));
+    }
+    w.description(checked.conserved[first].description.as_deref());
+    w.missing();
+}
+
+fn constant(w: &mut Writer<'_, '_>, k: usize) {
+    let checked = w.checked;
+    let claim = &checked.conserved[k];
+    let name = &claim.name;
+    let (answer, rate) = match &w.derived.conserved[k] {
+        Ok(c) => match &c.verdict {
+            Ok(v) => {
+                let of = state(w, c.rate);
+                (w.maker.answer(of, v), Some(c.rate))
+            }
+            Err(why) => (Answer::Undecided(why.to_string()), Some(c.rate)),
+        },
+        Err(why) => (Answer::Undecided(why.to_string()), None),
+    };
+    let equal = if checked.complete { equals(w, claim.expr) } else { Vec::new() };
+    let equal = equal.join(", which is ");
+    let it_is = if equal.is_empty() { String::new() } else { format!(": it is {equal}") };
+    let which = if equal.is_empty() { String::new() } else { format!(", which is {equal},") };
+    w.prose(match &answer {
+        _ if !checked.complete => format!("`{name}` is not judged: the model is incomplete"),
+        Answer::Yes => format!("`{name}` is conserved (proved){it_is}"),
+        Answer::No(_) => format!("`{name}` is not conserved (refuted){it_is}"),
+        Answer::Undecided(why) => format!("Whether `{name}`{which} is conserved is undecided: {why}"),
+    });
+    let text = w.text(claim.expr);
+    let mut lines = labelled(&format!("{name} = "), &text, "");
+    if checked.complete {
+        if answer == Answer::Yes {
+            lines.push(format!("d/dt {name} = 0"));
+        } else if let Some(rate) = rate {
+            let rate = w.text(rate);
+            lines.extend(labelled(&format!("d/dt {name} = "), &rate, ""));
+        }
+    }
+    w.formulas(lines);
+    // A verdict that was taken from a known charge has that one's witness.
+    let own = checked.model.constraints.is_empty() && w.derived.answers.as_ref().is_ok_and(|a| a.rows.is_some());
+    if checked.complete
+        && own
+        && let Answer::No(Some(at)) = &answer
+    {
+        w.prose(format!("For instance d/dt {name} is {}.", witness(at)));
+    }
+}
+
+/// An expression with the atoms on which a rate depends along motions: accelerations are replaced by what the equations
+/// of motion say of them.
+fn state(w: &mut Writer<'_, '_>, rate: Expr) -> Expr {
+    let model = &w.checked.model;
+    let mut atoms = w.maker.arena.atoms(rate);
+    let (mut at, mut solved) = (0, Vec::new());
+    while let Some(&atom) = atoms.get(at) {
+        at += 1;
+        let Node::Jet(symbol, order) = *w.maker.arena.node(atom) else { continue };
+        let Some(i) = model.coordinates.iter().position(|q| q.symbol == symbol && order > 1) else { continue };
+        solved.push(atom);
+        let Ok(equation) = lagrange::equation(&mut w.cx(), model, &model.coordinates[i]) else { continue };
+        for e in equation.iter().flat_map(|(forms, _)| forms.iter().map(|f| f.expr)) {
+            let fresh: Vec<Expr> = w.maker.arena.atoms(e).into_iter().filter(|a| !atoms.contains(a)).collect();
+            atoms.extend(fresh);
+        }
+    }
+    atoms.retain(|a| !solved.contains(a));
+    w.maker.arena.sum(&atoms)
+}
+
+/// The known charges that a claimed constant is, with their sign.
+fn equals(w: &mut Writer<'_, '_>, claim: Expr) -> Vec<String> {
+    let model = &w.checked.model;
+    let mut known: Vec<(String, Expr)> = Vec::new();
+    if let Ok(answers) = &w.derived.answers {
+        let h = answers.energy.function;
+        let name = energy_name(w, h);
+        known.push((format!("the {name}"), h));
+        for (i, q) in model.coordinates.iter().enumerate() {
+            if q.members.is_none()
+                && answers.cyclic[i].cyclic.is_proved()
+                && let Ok(p) = symmetry::charge(&mut w.cx(), model, &symmetry::shift(model, i))
+            {
+                known.push((format!("the canonical momentum `p_{}`", q.label(w.maker.arena)), p));
+            }
+        }
+    }
+    for (symmetry, answer) in w.checked.symmetries.iter().zip(&w.derived.symmetries) {
+        let Ok(a) = answer else { continue };
+        let delay =
+            a.symmetry.generator.tau == Arena::ONE && a.symmetry.generator.eta.iter().all(|&e| e == Arena::ZERO);
+        if !delay {
+            known.push((format!("the charge of `{}`", symmetry.name), a.charge));
+        }
+    }
+    let mut out = Vec::new();
+    for (name, e) in known.into_iter().take(COMPARED) {
+        for (sign, word) in [(Rational::MINUS_ONE, ""), (Rational::ONE, "minus ")] {
+            if claim != Arena::ZERO && w.cx().vanishes(&[(claim, Rational::ONE), (e, sign)]).is_proved() {
+                out.push(format!("{word}{name}"));
+                break;
+            }
+        }
+    }
+    out
+}

@@ -1,0 +1,82 @@
+//! No text makes a hover panic, and a session that has lived says what a new one says.
+
+use super::SITE;
+use crate::database::Session;
+use crate::features::hover::Hover;
+use crate::features::models::{broken, with_models};
+
+/// The hovers at every `stride`-th letter.
+fn all(session: &mut Session, text: &str, stride: usize) -> Vec<Option<Hover>> {
+    let checked = session.check("folder/model.least", text, &SITE);
+    let derived = session.derive(&checked);
+    let places = (0..text.len() + 2).step_by(stride);
+    let hovers: Vec<Option<Hover>> = places.map(|offset| session.hover(&checked, &derived, offset)).collect();
+    for hover in hovers.iter().flatten() {
+        assert!(text.get(hover.range.clone()).is_some(), "{hover:?} in\n{text}");
+        assert!(!hover.blocks.is_empty());
+    }
+    hovers
+}
+
+#[test]
+fn every_place_of_every_example_may_be_asked_for() {
+    let mut told = 0;
+    with_models(|text| told += all(&mut Session::new(), text, 1).iter().flatten().count());
+    assert!(told > 7_000, "{told}");
+}
+
+#[test]
+fn texts_that_are_cut_off_may_be_asked_for() {
+    with_models(|text| {
+        let mut session = Session::new();
+        for text in broken(text) {
+            all(&mut session, &text, 5);
+        }
+    });
+}
+
+/// The next number of a fixed sequence, below `n`.
+fn draw(state: &mut u64, n: usize) -> usize {
+    *state = state.wrapping_mul(6364136223846793005).wrapping_add(1442695040888963407);
+    (*state >> 33) as usize % n.max(1)
+}
+
+/// One thing that a hand does: a line lost, doubled or moved, a letter changed, everything undone.
+fn edited(text: &str, original: &str, state: &mut u64) -> String {
+    let mut lines: Vec<&str> = text.lines().collect();
+    let at = draw(state, lines.len());
+    match draw(state, 7) {
+        0 if lines.len() > 1 => drop(lines.remove(at)),
+        1 if !lines.is_empty() => lines.insert(at, lines[draw(state, lines.len())]),
+        2 if !lines.is_empty() => {
+            let line = lines.remove(at);
+            lines.insert(draw(state, lines.len() + 1), line);
+        }
+        3 => return original.to_string(),
+        _ => {
+            let new = ["2", "θ", "-", "'", " ", "m", "x", ")", "k", "θ̇", "𝑥"][draw(state, 11)];
+            let places: Vec<usize> = text.char_indices().map(|c| c.0).collect();
+            let Some(&place) = places.get(draw(state, places.len())) else { return original.to_string() };
+            let end = text[place..].chars().next().map_or(place, |c| place + c.len_utf8());
+            return format!("{}{new}{}", &text[..place], &text[end..]);
+        }
+    }
+    lines.join("\n") + "\n"
+}
+
+#[test]
+fn a_session_that_has_lived_says_what_a_new_one_says() {
+    let mut state = 11;
+    let mut session = Session::new();
+    with_models(|original| {
+        let mut text = original.to_string();
+        for step in 0..12 {
+            let lived = all(&mut session, &text, 17);
+            let fresh = all(&mut Session::new(), &text, 17);
+            for (lived, fresh) in lived.iter().zip(&fresh) {
+                assert_eq!(lived, fresh, "after step {step} of\n{text}");
+            }
+            text = edited(&text, original, &mut state);
+        }
+    });
+}
