@@ -7,7 +7,7 @@ use crate::verdicts::turned_once;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped, Verdict};
 use leastwise_mechanics::claims::Claim;
 use leastwise_mechanics::context::Parts;
-use leastwise_mechanics::lagrange::{self, multiplier, signed_parts};
+use leastwise_mechanics::lagrange::{self, FormParts, multiplier, signed_parts};
 use leastwise_mechanics::symmetry::{Generator, NoGenerator, Status};
 use leastwise_mechanics::verdicts::{Answers, Culprit, SymmetryAnswer};
 use std::ops::Range;
@@ -126,10 +126,7 @@ fn mass_of(desk: &mut Desk<'_, '_, '_>, i: usize) -> Option<Expr> {
     if q.members.is_some() {
         return None;
     }
-    let all: Parts = signed_parts(model).concat();
-    let parts = lagrange::momentum(&mut desk.cx(), &all, q).ok()?;
-    let parts: Parts = parts.iter().flat_map(|(f, c)| f.iter().map(|f| (f.expr, c.clone()))).collect();
-    let p = total(desk.maker.arena, &parts);
+    let p = momentum(desk, i).ok()?;
     let velocity = q.jet(desk.maker.arena, 1);
     let mass = desk.maker.arena.partial(p, velocity, desk.maker.budget).ok()?;
     let arena = &mut *desk.maker.arena;
@@ -139,6 +136,19 @@ fn mass_of(desk: &mut Desk<'_, '_, '_>, i: usize) -> Option<Expr> {
     });
     let rest = [(p, Rational::ONE), (arena.mul(mass, velocity), Rational::MINUS_ONE)];
     (constant && desk.cx().vanishes(&rest).is_proved()).then_some(mass)
+}
+
+/// ∂L/∂q̇ of a coordinate that is no family.
+fn momentum(desk: &mut Desk<'_, '_, '_>, i: usize) -> Result<Expr, Stopped> {
+    let model = desk.checked.model();
+    let all: Parts = signed_parts(model).concat();
+    let parts = lagrange::momentum(&mut desk.cx(), &all, &model.coordinates[i])?;
+    Ok(sum(desk, &parts))
+}
+
+fn sum(desk: &mut Desk<'_, '_, '_>, parts: &FormParts) -> Expr {
+    let parts: Parts = parts.iter().flat_map(|(f, c)| f.iter().map(|f| (f.expr, c.clone()))).collect();
+    total(desk.maker.arena, &parts)
 }
 
 /// Whether a gauge term changes when an angle makes a full turn.
@@ -271,6 +281,19 @@ fn known_rate(desk: &mut Desk<'_, '_, '_>, derived: &Derived, claim: Expr) -> Op
     if claim == answers.energy.function {
         return Some(total(desk.maker.arena, &answers.energy.rate));
     }
-    let known = derived.symmetries.iter().flatten().find(|a| a.charge == claim)?;
-    Some(total(desk.maker.arena, &known.rate))
+    if let Some(known) = derived.symmetries.iter().flatten().find(|a| a.charge == claim) {
+        return Some(total(desk.maker.arena, &known.rate));
+    }
+    let model = desk.checked.model();
+    let single = |i: &usize| model.coordinates[*i].members.is_none();
+    let i = (0..model.coordinates.len()).filter(single).find(|&i| momentum(desk, i) == Ok(claim))?;
+    // dp/dt = ∂L/∂q + 𝒬 + R.
+    let q = &model.coordinates[i];
+    let all: Parts = signed_parts(model).concat();
+    let mut parts = lagrange::force(&mut desk.cx(), &all, q).ok()?;
+    for f in &model.forces {
+        parts.extend(lagrange::generalised(&mut desk.cx(), f, q).ok()?);
+    }
+    parts.extend(lagrange::reaction(&mut desk.cx(), model, q).ok()?);
+    Some(sum(desk, &parts))
 }

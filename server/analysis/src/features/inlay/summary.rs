@@ -62,16 +62,14 @@ fn freedom(desk: &mut Desk<'_, '_, '_>, answers: &Answers) -> String {
 fn energy(desk: &mut Desk<'_, '_, '_>, answers: &Answers) -> (String, Option<Range<usize>>) {
     let model = desk.checked.model();
     let whole = desk.is_energy(answers.energy.function);
-    let what = if whole.is_proved() { "energy" } else { "energy function" };
+    let what = if whole.is_proved() { "energy".to_string() } else { desk.letter("h", "energy function") };
     match &answers.energy_conserved {
         Ok(Verdict::Proved) => {
             // Terms declared `lagrangian` may belong to either: then h is not compared.
             let declared = model.terms.iter().all(|t| t.kind != TermKind::Lagrangian);
-            let h = desk.letter(" h", "");
             let label = match (whole.is_proved(), whole.is_refuted() && declared) {
-                (true, _) => "energy conserved".to_string(),
-                (_, true) => format!("energy function{h} conserved, not the total energy"),
-                _ => format!("energy function{h} conserved"),
+                (false, true) => format!("{what} conserved, not the total energy"),
+                _ => format!("{what} conserved"),
             };
             (label, None)
         }
@@ -82,8 +80,8 @@ fn energy(desk: &mut Desk<'_, '_, '_>, answers: &Answers) -> (String, Option<Ran
             Ok((names, _, target)) if !names.is_empty() => (format!("{what} not conserved: {}", list(&names)), target),
             _ => (format!("{what} not conserved"), None),
         },
-        Ok(Verdict::Undecided(reason)) => (format!("undecided whether the {what} is conserved: {reason}"), None),
-        Err(reason) => (format!("undecided whether the {what} is conserved: {reason}"), None),
+        Ok(Verdict::Undecided(reason)) => (format!("undecided whether {what} is conserved: {reason}"), None),
+        Err(reason) => (format!("undecided whether {what} is conserved: {reason}"), None),
     }
 }
 

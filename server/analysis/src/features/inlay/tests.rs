@@ -170,8 +170,13 @@ fn claims_have_their_verdicts() {
     );
     swing("symmetry s: x -> 2 x + ε\n", "symmetry s: x -> 2 x + ε ⟦not the identity at ε = 0 → x⟧");
     swing("conserved p = m x'\n", "conserved p = m x' ⟦conserved⟧");
-    swing("potential U = 1/2 k x^2\nconserved p = m x'\n", "conserved p = m x' ⟦not conserved: rate m ẍ⟧");
+    swing("potential U = 1/2 k x^2\nconserved p = m x'\n", "conserved p = m x' ⟦not conserved: rate -k x⟧");
     swing("dissipation D = 1/2 c x'^2\nconserved h = energy\n", "conserved h = energy ⟦not conserved: rate -c ẋ²⟧");
+    swing(
+        "constraint rod: x^2 + y^2 = 4\nconserved p = momentum(x)\n",
+        "conserved p = momentum(x) ⟦not conserved: rate 2 λ_rod x⟧",
+    );
+    swing("potential U = k x^2\nconserved v = x'\n", "conserved v = x' ⟦not conserved: rate ẍ⟧");
     swing("conserved P = (x', x)\n", "conserved P = (x', x) ⟦P[1] conserved; P[2] not conserved: rate ẋ⟧");
     check(
         "cyclic coordinate x\nparameter k\nkinetic 1/2 x'^2\npotential spring = 1/2 k x^2\n",
@@ -244,14 +249,11 @@ fn the_summary_tells_of_the_energy() {
         &format!("{last} ⟦2 coordinates, 2 constraints, energy conserved⟧"),
     );
     swing("constraint a: x^2 + y^2 = -1\n", &format!("{last} ⟦2 coordinates, 1 constraint, energy conserved⟧"));
-    check(
-        "coordinate x, y\nlagrangian y x'\n",
-        "lagrangian y x' ⟦2 coordinates, singular mass matrix, energy function h conserved⟧",
-    );
+    check("coordinate x, y\nlagrangian y x'\n", "lagrangian y x' ⟦2 coordinates, singular mass matrix, h conserved⟧");
     // A bead on a turning wire: h is not the energy [GPS §2.7].
     check(
         "coordinate r\nparameter m, Ω\nkinetic T = 1/2 m (r'^2 + r^2 Ω^2)\n",
-        "kinetic T = 1/2 m (r'^2 + r^2 Ω^2) ⟦1 degree of freedom, energy function h conserved, not the total energy⟧",
+        "kinetic T = 1/2 m (r'^2 + r^2 Ω^2) ⟦1 degree of freedom, h conserved, not the total energy⟧",
     );
 }
 
