@@ -328,18 +328,34 @@ fn no_text_makes_hints_fail() {
     });
 }
 
+/// A family that is not written out, with ends, damping and a constraint.
+const LONG_ROW: &str = "\
+index i: 1..100
+coordinate x[i], y: length
+parameter m, k, c
+kinetic masses = sum(i: 1/2 m x[i]'^2) + 1/2 m y'^2
+potential springs = sum(i in 1..99: 1/2 k (x[i+1] - x[i])^2)
+dissipation drag = 1/2 c (x[7]'^2 + y'^2)
+constraint rod: x[1] = x[2]
+symmetry shift: x[i] -> x[i] + ε
+symmetry up: y -> y + ε
+conserved h = energy
+";
+
 #[test]
 fn a_session_that_has_lived_shows_what_a_new_one_shows() {
     let mut session = Session::new();
     let mut state = 11;
-    crate::features::models::with_models(|original| {
+    let mut live = |original: &str| {
         let mut text = original.to_string();
         for step in 0..40 {
             let lived = hints(&mut session, &text);
             assert_eq!(lived, hints(&mut Session::new(), &text), "after step {step} of\n{text}");
             text = crate::features::models::edited(&text, original, &mut state);
         }
-    });
+    };
+    crate::features::models::with_models(&mut live);
+    live(LONG_ROW);
 }
 
 /// Hints of the first text, carried to the second: as they stand in it.
