@@ -2,7 +2,9 @@
 
 import { type ChildProcess, spawn } from 'node:child_process';
 import { once } from 'node:events';
+import * as fs from 'node:fs';
 import * as os from 'node:os';
+import * as path from 'node:path';
 import * as vscode from 'vscode';
 import { CloseAction, ErrorAction, LanguageClient, RevealOutputChannelOn, type LanguageClientOptions, type ServerOptions } from 'vscode-languageclient/node';
 import { findProgram } from './program';
@@ -151,7 +153,7 @@ export class Server implements vscode.Disposable {
         error: () => ({ action: ErrorAction.Continue, handled: true }),
         closed: () => {
           this.ended(client);
-          return { action: CloseAction.DoNotRestart, handled: true };
+          return { action: CloseAction.DoNotRestart, message: 'the connection to the server is closed', handled: true };
         },
       },
     };
@@ -212,7 +214,7 @@ export class Server implements vscode.Disposable {
     if (chosen === setting) {
       await vscode.commands.executeCommand('workbench.action.openSettings', 'leastwise.server.path');
     } else if (chosen === how) {
-      await vscode.commands.executeCommand('markdown.showPreview', vscode.Uri.joinPath(this.extension, 'README.md'));
+      await vscode.commands.executeCommand('markdown.showPreview', vscode.Uri.joinPath(this.extension, readme(this.extension.fsPath)));
     }
   }
 
@@ -226,6 +228,11 @@ export class Server implements vscode.Disposable {
       this.showLog();
     }
   }
+}
+
+/** Packaging writes the name in small letters. */
+function readme(folder: string): string {
+  return fs.existsSync(path.join(folder, 'readme.md')) ? 'readme.md' : 'README.md';
 }
 
 /** What the server is told when it starts; later it asks. Where the program lies is none of its business. */

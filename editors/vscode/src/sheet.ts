@@ -34,7 +34,8 @@ export class Sheets implements vscode.TextDocumentContentProvider, vscode.Dispos
       void vscode.window.showInformationMessage('Leastwise: open a model to see its sheet.');
       return;
     }
-    const sheet = await vscode.workspace.openTextDocument(sheetOf(document.uri));
+    const opened = await vscode.workspace.openTextDocument(sheetOf(document.uri));
+    const sheet = await vscode.languages.setTextDocumentLanguage(opened, 'leastwise-sheet');
     // It may have been open before, from another day.
     this.refresh(document.uri, 0);
     await vscode.window.showTextDocument(sheet, { viewColumn: vscode.ViewColumn.Beside, preserveFocus: true, preview: false });

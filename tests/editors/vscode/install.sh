@@ -11,8 +11,8 @@ here=$(cd "$(dirname "$0")" && pwd)
 root=$(cd "$here/../../.." && pwd)
 folder=${1:-${CARGO_TARGET_DIR:-$root/target}/editors/vscode}
 
-# Chromium shows the editor, ripgrep is its search, the others compile its native modules; the font has the letters.
-packages=(chromium ripgrep libkrb5-dev g++ make python3 fonts-dejavu-core)
+# Chromium shows the editor, ripgrep is its search, the others compile its native modules; the fonts have the letters.
+packages=(chromium ripgrep libkrb5-dev g++ make python3 fonts-dejavu-core fonts-jetbrains-mono)
 
 mkdir -p "$folder"
 folder=$(cd "$folder" && pwd)
@@ -60,7 +60,8 @@ install_all() {
   npm ci --ignore-scripts
   npm rebuild argon2 --foreground-scripts
   cd node_modules/code-server/lib/vscode
-  npm ci --omit=dev --ignore-scripts
+  # Its own lock misses one optional package, so this is no `npm ci`.
+  npm install --omit=dev --ignore-scripts
   npm rebuild kerberos native-watchdog @vscode/spdlog @vscode/deviceid @parcel/watcher --foreground-scripts
   # Its last script asks for a tool that is not there; the module is built by then.
   npm rebuild node-pty --foreground-scripts || test -f node_modules/node-pty/build/Release/pty.node
@@ -71,12 +72,14 @@ install_all() {
   ln -sf code-linux.sh bin/remote-cli/code-server
   ln -sf browser-linux.sh bin/helpers/browser.sh
 }
+# Where a command is tested, bash forgets `set -e` inside it; so nothing here stands before `||`.
+trap 'echo "not installed (see $log)" >&2' ERR
+set -E
 echo "installing code-server into $folder"
-(set -e; install_all) >>"$log" 2>&1 || fail "code-server and the driver"
-
-# The client's own tools, exactly as locked.
+install_all >>"$log" 2>&1
 echo "installing the client's tools"
-(cd "$root/editors/vscode" && npm ci) >>"$log" 2>&1 || fail "the tools of editors/vscode"
+cd "$root/editors/vscode"
+npm ci >>"$log" 2>&1
 
 printf '%s' "$wanted" >"$stamp"
 echo "installed: $folder"
