@@ -44,7 +44,7 @@ impl<'a> Lines<'a> {
     /// The position of a byte offset. An offset inside a character counts as the character's start, one past the end of
     /// the text as the end.
     pub fn position(&self, offset: usize) -> Position {
-        let offset = floor(self.text, offset);
+        let offset = self.text.floor_char_boundary(offset);
         let line = self.line_of(offset);
         let before = &self.text[self.starts[line]..offset];
         Position { line, column: before.chars().map(char::len_utf16).sum() }
@@ -52,7 +52,7 @@ impl<'a> Lines<'a> {
 
     /// The column of an offset in characters, zero-based: what a person counts.
     pub fn character(&self, offset: usize) -> usize {
-        let offset = floor(self.text, offset);
+        let offset = self.text.floor_char_boundary(offset);
         self.text[self.starts[self.line_of(offset)]..offset].chars().count()
     }
 }
@@ -68,15 +68,6 @@ pub fn starts(text: &str) -> Vec<usize> {
         }
     }
     starts
-}
-
-/// The nearest offset at or before this one at which a character begins.
-pub fn floor(text: &str, offset: usize) -> usize {
-    let mut offset = offset.min(text.len());
-    while !text.is_char_boundary(offset) {
-        offset -= 1;
-    }
-    offset
 }
 
 #[cfg(test)]

@@ -1,6 +1,5 @@
 //! Byte offsets and the protocol's positions, in the encoding that was agreed on.
 
-use crate::lines::floor;
 use std::ops::Range;
 use std::sync::Arc;
 use tower_lsp::ls_types as lsp;
@@ -50,7 +49,7 @@ impl Encoding {
     /// it is inside.
     pub fn byte(self, text: &str, column: usize) -> usize {
         match self {
-            Encoding::Utf8 => floor(text, column),
+            Encoding::Utf8 => text.floor_char_boundary(column),
             Encoding::Utf16 => {
                 let mut left = column;
                 for (at, c) in text.char_indices() {
@@ -107,7 +106,7 @@ impl Positions {
 
     /// The position of a byte.
     pub fn position(&self, offset: usize) -> lsp::Position {
-        let offset = floor(&self.text, offset);
+        let offset = self.text.floor_char_boundary(offset);
         let line = self.starts.partition_point(|s| *s <= offset) - 1;
         // Inside of a line break is the line's end.
         let end = offset.min(self.line(line).end);

@@ -1,6 +1,6 @@
 //! Findings for people: the message, the lines of the file that it is about, what to do.
 
-use crate::lines::{Lines, floor};
+use crate::lines::Lines;
 use crate::output::Page;
 use crate::print::{Outcome, counts};
 use annotate_snippets::{Annotation, AnnotationKind, Element, Group, Level, Origin, Renderer, Snippet};
@@ -127,8 +127,8 @@ fn apart<'a>(mark: &Mark<'a>, path: &'a str, lines: &Lines<'a>) -> Vec<Element<'
     }
     let text = lines.text();
     let row = lines.range_of(top);
-    let from = floor(text, mark.range.start.saturating_sub(AROUND).max(row.start));
-    let to = floor(text, mark.range.end.min(mark.range.start + AROUND) + AROUND).min(row.end);
+    let from = text.floor_char_boundary(mark.range.start.saturating_sub(AROUND).max(row.start));
+    let to = text.floor_char_boundary(mark.range.end.min(mark.range.start + AROUND) + AROUND).min(row.end);
     let origin = Origin::path(path).line(top + 1).char_column(lines.character(mark.range.start) + 1);
     let snippet = Snippet::source(&text[from..to]).line_start(top + 1);
     vec![origin.into(), snippet.annotation(mark.within(&(from..to))).into()]
@@ -137,8 +137,8 @@ fn apart<'a>(mark: &Mark<'a>, path: &'a str, lines: &Lines<'a>) -> Vec<Element<'
 /// The part of a range that is marked: at least its first line, without the line break.
 fn marked(range: &Range<usize>, lines: &Lines<'_>) -> Range<usize> {
     let text = lines.text();
-    let start = floor(text, range.start);
-    let end = floor(text, range.end.max(range.start));
+    let start = text.floor_char_boundary(range.start);
+    let end = text.floor_char_boundary(range.end.max(range.start));
     let first = lines.line_of(start);
     if lines.line_of(end) - first < TALL {
         return start..end;

@@ -133,7 +133,7 @@ pub fn place_at(checked: &Contents, offset: usize) -> Option<Place<'_>> {
 
 /// The word that holds the offset or ends at it.
 pub fn word_at(text: &str, offset: usize) -> Option<(Range<usize>, &str)> {
-    let offset = floor(text, offset);
+    let offset = text.floor_char_boundary(offset);
     let end = offset + text[offset..].find(|c| !continues_name(c)).unwrap_or(text.len() - offset);
     let start = text[..offset]
         .rfind(|c| !continues_name(c))
@@ -145,7 +145,7 @@ pub fn word_at(text: &str, offset: usize) -> Option<(Range<usize>, &str)> {
 
 /// A sign that stands for a function or is part of a unit: `√`, `°`.
 fn sign_at(text: &str, offset: usize) -> Option<(Range<usize>, &str)> {
-    let offset = floor(text, offset);
+    let offset = text.floor_char_boundary(offset);
     let c = text[offset..].chars().next().filter(|c| matches!(c, '√' | '°' | '"' | '′' | '″'));
     let quoted = || {
         // Anywhere between quotes is the file's name.
@@ -158,14 +158,6 @@ fn sign_at(text: &str, offset: usize) -> Option<(Range<usize>, &str)> {
         Some('"') | None => quoted(),
         Some(c) => Some((offset..offset + c.len_utf8(), &text[offset..offset + c.len_utf8()])),
     }
-}
-
-fn floor(text: &str, offset: usize) -> usize {
-    let mut offset = offset.min(text.len());
-    while !text.is_char_boundary(offset) {
-        offset -= 1;
-    }
-    offset
 }
 
 fn row_text<'c>(checked: &'c Contents, row: &ItemRow) -> &'c str {

@@ -164,9 +164,7 @@ pub(super) fn context(before: &str, first_column: bool) -> Context {
             }
         }
         "force" => {
-            if has("=") {
-                formula(Wanted::Anything)
-            } else if has("on") {
+            if has("=") || has("on") {
                 formula(Wanted::Anything)
             } else if rest.is_empty() {
                 Context::Nothing

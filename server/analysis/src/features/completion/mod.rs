@@ -71,7 +71,7 @@ const MOST: usize = 400;
 /// What can be typed at an offset. `included` are the names that the last check took from other files. Reads the heads of
 /// all items and the signs before the cursor; derives nothing.
 pub fn complete(text: &str, offset: usize, included: &[SymbolRow]) -> Completions {
-    let offset = floor(text, offset);
+    let offset = text.floor_char_boundary(offset);
     let before = &text[..offset];
     let line = before.rfind(['\n', '\r']).map_or(0, |at| at + 1);
     let backslash = letters::begun(&before[line..]).map(|at| line + at);
@@ -139,14 +139,6 @@ fn in_comment(line: &str) -> bool {
         quoted ^= c == '"';
         c == '#' && !quoted
     })
-}
-
-fn floor(text: &str, offset: usize) -> usize {
-    let mut offset = offset.min(text.len());
-    while !text.is_char_boundary(offset) {
-        offset -= 1;
-    }
-    offset
 }
 
 fn plain(label: &str, kind: CompletionKind, detail: &str, documentation: Option<String>) -> Completion {
