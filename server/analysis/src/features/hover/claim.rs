@@ -1,12 +1,11 @@
 //! Hovers of claims: the verdict with its grade, the generator, the charge, the balance law term by term.
 
-use super::writer::{SHOWN, Writer, labelled, plural, quoted, short, witness};
+use super::charge::{Charge, charge, energy_name};
+use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, witness};
 use crate::report::Answer;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
 use leastwise_mechanics::context::Parts;
-use leastwise_mechanics::energy::is_total_energy;
 use leastwise_mechanics::lagrange::{self, multiplier};
-use leastwise_mechanics::model::TermKind;
 use leastwise_mechanics::symmetry::{self, NoGenerator, Status};
 use leastwise_mechanics::verdicts::SymmetryAnswer;
 
@@ -33,77 +32,11 @@ fn breakers(w: &Writer<'_, '_>, a: &SymmetryAnswer) -> Vec<String> {
     a.culprits.iter().map(|c| w.checked.model.terms[c.term].name.clone()).collect()
 }
 
-/// The charge as it is presented.
-struct Charge {
-    /// `p_φ`, `h`, `Q`.
-    symbol: String,
-    /// `canonical momentum`, `energy`, …
-    name: &'static str,
-    value: Expr,
-    /// The charge is this times what is presented: −1 for an energy function.
-    sign: i64,
-}
-
-/// What a symmetry's charge is called in the trade, and only where it is that.
-fn charge(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) -> Charge {
-    let model = &w.checked.model;
-    let g = &a.symmetry.generator;
-    let moved: Vec<usize> = (0..g.eta.len()).filter(|&i| g.eta[i] != Arena::ZERO).collect();
-    if a.gauge.is_none() && g.tau == Arena::ONE && moved.is_empty() {
-        let value = w.maker.arena.neg(a.charge);
-        return Charge { symbol: "h".into(), name: energy_name(w, value), value, sign: -1 };
-    }
-    let symbol = "Q".to_owned();
-    let plain = Charge { symbol, name: "charge", value: a.charge, sign: 1 };
-    if a.gauge.is_some() || a.gauge_unknown || g.tau != Arena::ZERO {
-        return plain;
-    }
-    let is_length = |i: usize| w.checked.coordinates[i].quantity.as_deref() == Some("length");
-    match moved[..] {
-        [i] if g.eta[i] == Arena::ONE && model.coordinates[i].members.is_none() => {
-            let symbol = format!("p_{}", model.coordinates[i].label(w.maker.arena));
-            Charge { symbol, name: "canonical momentum", ..plain }
-        }
-        _ if moved.len() > 1 && moved.iter().all(|&i| g.eta[i] == Arena::ONE) => {
-            Charge { name: "total canonical momentum", ..plain }
-        }
-        _ if moved.iter().all(|&i| is_length(i)) && is_rotation(w, g, &moved) => {
-            // A term linear in the velocities adds to the charge what is no angular momentum of the masses.
-            let other = model.terms.iter().any(|t| t.kind == TermKind::Lagrangian);
-            Charge { name: if other { "canonical angular momentum" } else { "angular momentum" }, ..plain }
-        }
-        _ => plain,
-    }
-}
-
 /// The symbol of a claim's charge, and a share in its rate with the sign that goes with it.
 pub(super) fn share(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, e: Expr) -> (String, Expr) {
     let charge = charge(w, a);
     let e = if charge.sign < 0 { w.maker.arena.neg(e) } else { e };
     (charge.symbol, e)
-}
-
-/// `energy` where h is kinetic + potential, else `energy function`.
-pub(super) fn energy_name(w: &mut Writer<'_, '_>, h: Expr) -> &'static str {
-    let model = &w.checked.model;
-    if is_total_energy(&mut w.cx(), model, h).is_proved() { "energy" } else { "energy function" }
-}
-
-/// Whether the moved coordinates are turned pair by pair, (x, y) by (−y, x).
-fn is_rotation(w: &mut Writer<'_, '_>, g: &symmetry::Generator, moved: &[usize]) -> bool {
-    let model = &w.checked.model;
-    if moved.iter().any(|&i| model.coordinates[i].members.is_some()) {
-        return false;
-    }
-    let mut turned = |i: usize| {
-        let q = model.coordinates[i].jet(w.maker.arena, 0);
-        let minus = w.maker.arena.neg(q);
-        let partner = moved.iter().copied().find(|&j| g.eta[j] == q || g.eta[j] == minus)?;
-        let p = model.coordinates[partner].jet(w.maker.arena, 0);
-        let back = if g.eta[partner] == q { w.maker.arena.neg(p) } else { p };
-        (g.eta[i] == back && partner != i).then_some(())
-    };
-    !moved.is_empty() && moved.iter().all(|&i| turned(i).is_some())
 }
 
 /// Says what is known of a claimed symmetry.
@@ -136,25 +69,37 @@ pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
     w.prose(first);
     w.missing();
     w.description(claim.description.as_deref());
-    generator(w, a);
-    let mut lines = labelled(&format!("{} = ", charge.symbol), &value, "");
+    let mut lines = generator(w, a);
+    lines.extend(labelled(&format!("{} = ", charge.symbol), &value, ""));
     if let Some(f) = a.gauge {
         let f = w.text(f);
         let of = if a.symmetry.status == Status::Broken { ", for the terms not to blame" } else { "" };
         lines.extend(labelled("F = ", &f, &format!("   (δL = dF/dt{of})")));
     }
-    if charge.name != "charge" {
-        w.prose(format!("{}:", capital(charge.name)));
-    } else {
-        w.prose(if a.gauge.is_some() { "Charge Q and gauge term F:" } else { "Charge:" });
-    }
+    let law = balance(w, a, &charge, rate, &answer);
+    let gauge = if a.gauge.is_some() { ", gauge term" } else { "" };
+    let what = match (law.is_empty(), checked.complete) {
+        (true, _) => "",
+        (false, true) => ", balance law",
+        (false, false) => ", balance law of what is left of the model",
+    };
+    lines.extend(law);
+    w.prose(format!("Generator, {}{gauge}{what}:", charge.name));
     w.formulas(lines);
+    if checked.complete
+        && !a.gauge_unknown
+        && let Answer::No(Some(at)) = &answer
+    {
+        w.prose(format!("Refuted: d{}/dt is {}.", charge.symbol, witness(at)));
+    }
+    if let Some(q) = a.gauge.and_then(|f| super::charge::turning(w, f)) {
+        w.prose(format!("F changes when `{q}` turns by 2π: the charge is not single-valued."));
+    }
     if a.gauge_unknown {
         w.prose(
             "L changes by a total time derivative dF/dt, of which no closed form was found: F is not in the charge.",
         );
     }
-    balance(w, a, &charge, rate, &answer);
     if !a.smallest {
         w.prose("The set of terms to blame is minimal, perhaps not a smallest one.");
     }
@@ -212,6 +157,9 @@ fn first_line(w: &mut Writer<'_, '_>, k: usize, charge: &Charge, named: &str, ra
             return format!("Whether `{name}` is a symmetry is undecided: {why}");
         }
     };
+    if a.gauge_unknown {
+        return format!("`{name}` is {what} (proved), of which no closed form was found: its constant is not known");
+    }
     let takers = takers(w, a);
     let unexpected = if claim.expected_broken { ", though it is declared broken" } else { "" };
     match answer {
@@ -236,73 +184,48 @@ fn takers(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) -> Vec<String> {
     acting.into_iter().filter(|(_, e)| !w.vanishes(*e)).map(|f| f.0).collect()
 }
 
-fn capital(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map_or(String::new(), |c| c.to_uppercase().chain(letters).collect())
-}
-
 /// τ and the ηⁱ that are not zero.
-fn generator(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) {
+fn generator(w: &mut Writer<'_, '_>, a: &SymmetryAnswer) -> Vec<String> {
     let g = &a.symmetry.generator;
-    let mut lines = Vec::new();
-    if g.tau != Arena::ZERO {
+    let mut list = List::new();
+    if g.tau != Arena::ZERO && list.wants() {
         let text = w.text(g.tau);
-        lines.extend(labelled("τ = ", &text, ""));
+        list.add(labelled("τ = ", &text, ""));
     }
-    let mut more = 0;
     for (q, &eta) in w.checked.model.coordinates.iter().zip(&g.eta) {
-        if eta == Arena::ZERO {
-            continue;
+        if eta != Arena::ZERO && list.wants() {
+            let (name, text) = (q.label(w.maker.arena), w.text(eta));
+            list.add(labelled(&format!("η_{name} = "), &text, ""));
         }
-        if lines.len() >= SHOWN {
-            more += 1;
-            continue;
-        }
-        let (name, text) = (q.label(w.maker.arena), w.text(eta));
-        lines.extend(labelled(&format!("η_{name} = "), &text, ""));
     }
-    if more > 0 {
-        lines.push(format!("and {more} more"));
-    }
-    if lines.is_empty() {
-        return w.prose("Generator: nothing is moved.");
-    }
-    w.prose("Generator:");
-    w.formulas(lines);
+    let lines = list.done();
+    if lines.is_empty() { vec!["τ = 0, η = 0".into()] } else { lines }
 }
 
-/// d/dt of the charge on motions, with who contributes what.
-fn balance(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge, rate: Expr, answer: &Answer) {
+/// d/dt of the charge on motions, with who contributes what. Of an incomplete model no conservation is told.
+fn balance(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge, rate: Expr, answer: &Answer) -> Vec<String> {
     let symbol = &charge.symbol;
-    let complete = w.checked.complete;
     if *answer == Answer::Yes {
-        if complete {
-            w.prose("Balance law:");
-            w.formulas(vec![format!("d{symbol}/dt = 0")]);
-        }
-        return;
+        return if w.checked.complete { vec![format!("d{symbol}/dt = 0")] } else { Vec::new() };
     }
     let shares = shares(w, a, charge);
-    w.prose(if complete { "Balance law:" } else { "Balance law of what is left of the model:" });
     let text = w.text(rate);
     let mut lines = labelled(&format!("d{symbol}/dt = "), &text, "");
-    if shares.len() > 1 {
-        for (name, e) in shares.iter().take(SHOWN) {
-            let text = w.text(*e);
-            lines.extend(labelled(&format!("  {name}: "), &text, ""));
-        }
-        if shares.len() > SHOWN {
-            lines.push(format!("  and {} more", shares.len() - SHOWN));
-        }
-    } else if let [(name, _)] = &shares[..]
+    if let [(name, _)] = &shares[..]
         && let Some(line) = lines.last_mut()
     {
         line.push_str(&format!("   ({name})"));
+        return lines;
     }
-    w.formulas(lines);
-    if complete && let Answer::No(Some(at)) = answer {
-        w.prose(format!("Refuted: d{symbol}/dt is {}.", witness(at)));
+    let mut list = List::new();
+    for (name, e) in shares {
+        if list.wants() {
+            let text = w.text(e);
+            list.add(labelled(&format!("    {name}: "), &text, ""));
+        }
     }
+    lines.extend(list.done());
+    lines
 }
 
 /// Who changes the charge: terms, forces, dissipations, reactions.
@@ -386,17 +309,23 @@ fn constant(w: &mut Writer<'_, '_>, k: usize) {
     let checked = w.checked;
     let claim = &checked.conserved[k];
     let name = &claim.name;
+    let known = if checked.complete { equals(w, claim.expr) } else { Vec::new() };
     let (answer, rate) = match &w.derived.conserved[k] {
-        Ok(c) => match &c.verdict {
-            Ok(v) => {
-                let of = state(w, c.rate);
-                (w.maker.answer(of, v), Some(c.rate))
-            }
-            Err(why) => (Answer::Undecided(why.to_string()), Some(c.rate)),
-        },
+        Ok(c) => {
+            // The rate of a known charge is free of accelerations.
+            let rate = known.iter().find_map(|k| k.1).unwrap_or(c.rate);
+            let answer = match &c.verdict {
+                Ok(v) => {
+                    let of = state(w, rate);
+                    w.maker.answer(of, v)
+                }
+                Err(why) => Answer::Undecided(why.to_string()),
+            };
+            (answer, Some(rate))
+        }
         Err(why) => (Answer::Undecided(why.to_string()), None),
     };
-    let equal = if checked.complete { equals(w, claim.expr) } else { Vec::new() };
+    let equal: Vec<String> = known.into_iter().map(|k| k.0).collect();
     let equal = equal.join(", which is ");
     let it_is = if equal.is_empty() { String::new() } else { format!(": it is {equal}") };
     let which = if equal.is_empty() { String::new() } else { format!(", which is {equal},") };
@@ -448,38 +377,42 @@ fn state(w: &mut Writer<'_, '_>, rate: Expr) -> Expr {
     w.maker.arena.sum(&atoms)
 }
 
-/// The known charges that a claimed constant is, with their sign.
-fn equals(w: &mut Writer<'_, '_>, claim: Expr) -> Vec<String> {
+/// The known charges that a claimed constant is, with their sign, and the constant's rate where it is known from them.
+fn equals(w: &mut Writer<'_, '_>, claim: Expr) -> Vec<(String, Option<Expr>)> {
     let model = &w.checked.model;
-    let mut known: Vec<(String, Expr)> = Vec::new();
+    let mut known: Vec<(String, Expr, Option<Expr>)> = Vec::new();
     if let Ok(answers) = &w.derived.answers {
         let h = answers.energy.function;
-        let name = energy_name(w, h);
-        known.push((format!("the {name}"), h));
+        let (name, rate) = (energy_name(w, h), w.total(&answers.energy.rate));
+        known.push((format!("the {name}"), h, Some(rate)));
         for (i, q) in model.coordinates.iter().enumerate() {
             if q.members.is_none()
                 && answers.cyclic[i].cyclic.is_proved()
                 && let Ok(p) = symmetry::charge(&mut w.cx(), model, &symmetry::shift(model, i))
             {
-                known.push((format!("the canonical momentum `p_{}`", q.label(w.maker.arena)), p));
+                known.push((format!("the canonical momentum `p_{}`", q.label(w.maker.arena)), p, None));
             }
         }
     }
     for (symmetry, answer) in w.checked.symmetries.iter().zip(&w.derived.symmetries) {
         let Ok(a) = answer else { continue };
-        let delay =
-            a.symmetry.generator.tau == Arena::ONE && a.symmetry.generator.eta.iter().all(|&e| e == Arena::ZERO);
-        if !delay {
-            known.push((format!("the charge of `{}`", symmetry.name), a.charge));
+        let g = &a.symmetry.generator;
+        if g.tau != Arena::ONE || g.eta.iter().any(|&e| e != Arena::ZERO) {
+            let rate = w.total(&a.rate);
+            known.push((format!("the charge of `{}`", symmetry.name), a.charge, Some(rate)));
         }
     }
     let mut out = Vec::new();
-    for (name, e) in known.into_iter().take(COMPARED) {
-        for (sign, word) in [(Rational::MINUS_ONE, ""), (Rational::ONE, "minus ")] {
-            if claim != Arena::ZERO && w.cx().vanishes(&[(claim, Rational::ONE), (e, sign)]).is_proved() {
-                out.push(format!("{word}{name}"));
-                break;
-            }
+    for (name, e, rate) in known.into_iter().take(COMPARED) {
+        let (gap, sum) = (w.maker.arena.sub(claim, e), w.maker.arena.add(claim, e));
+        if claim == Arena::ZERO {
+            continue;
+        }
+        if w.vanishes(gap) {
+            out.push((name, rate));
+        } else if w.vanishes(sum) {
+            let rate = rate.map(|r| w.maker.arena.neg(r));
+            out.push((format!("minus {name}"), rate));
         }
     }
     out

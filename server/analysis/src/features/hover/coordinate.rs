@@ -1,6 +1,6 @@
 //! Hovers of coordinates: equation of motion, momentum, force, what is conserved, which claims move it.
 
-use super::writer::{FormRow, SHOWN, Writer, counted, forms, labelled, quoted, short};
+use super::writer::{FormRow, List, SHOWN, Writer, counted, forms, labelled, quoted, short};
 use crate::checked::SymbolRow;
 use crate::features::place::{Place, formulas_at};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
@@ -215,13 +215,17 @@ fn single(w: &mut Writer<'_, '_>, row: &SymbolRow, i: usize, member: Option<i64>
         }
     };
     heading(w, row);
-    let mut lines = Vec::new();
+    let mut lines = if leads { equations } else { Vec::new() };
     for r in rows.iter().take(SHOWN) {
-        let (p, f) = (w.text(r.momentum), r.force);
+        let p = w.text(r.momentum);
         lines.extend(labelled(&format!("p_{} = ", r.name), &p, &r.suffix));
-        let f = if r.cyclic.is_proved() { Arena::ZERO } else { f };
+        let f = if r.cyclic.is_proved() { Arena::ZERO } else { r.force };
         let f = w.text(f);
         lines.extend(labelled(&format!("∂L/∂{} = ", r.name), &f, &r.suffix));
+        for (name, e) in r.forces.iter().take(SHOWN) {
+            let text = w.text(*e);
+            lines.extend(labelled(&format!("Q_{} = ", r.name), &text, &format!("   ({name}){}", r.suffix)));
+        }
         if r.reaction != Arena::ZERO {
             let reaction = w.text(r.reaction);
             lines.extend(labelled(&format!("R_{} = ", r.name), &reaction, &r.suffix));
@@ -231,23 +235,6 @@ fn single(w: &mut Writer<'_, '_>, row: &SymbolRow, i: usize, member: Option<i64>
         lines.push(format!("and {} more forms", rows.len() - SHOWN));
     }
     w.formulas(lines);
-    if leads {
-        w.prose("Equation of motion:");
-        w.formulas(equations);
-    }
-    let mut acting = Vec::new();
-    for r in &rows {
-        for (name, e) in &r.forces {
-            if acting.len() < SHOWN {
-                let text = w.text(*e);
-                acting.extend(labelled(&format!("{name}: Q_{} = ", r.name), &text, &r.suffix));
-            }
-        }
-    }
-    if !acting.is_empty() {
-        w.prose("Forces on it:");
-        w.formulas(acting);
-    }
     if complete && !leads {
         for r in &rows {
             if let Some(text) = conserved(w, r) {
@@ -297,32 +284,33 @@ fn conserved(w: &mut Writer<'_, '_>, r: &Row) -> Option<String> {
 
 /// A family that is written out: member by member.
 fn family(w: &mut Writer<'_, '_>, row: &SymbolRow, of: &[usize]) {
-    let (mut momenta, mut equations) = (Vec::new(), Vec::new());
+    let (mut momenta, mut equations) = (List::new(), List::new());
     let (mut cyclic, mut kept) = (0, 0);
-    for (n, &i) in of.iter().enumerate() {
+    for &i in of {
         if let Ok(a) = &w.derived.answers {
             cyclic += a.cyclic[i].cyclic.is_proved() as usize;
             kept += a.cyclic[i].momentum.is_proved() as usize;
         }
-        if n >= SHOWN {
+        let (first, second) = (equations.wants(), momenta.wants());
+        if !first && !second {
             continue;
         }
-        match rows(w, i) {
-            Ok(rows) => {
-                for r in rows {
-                    let (p, e) = (w.text(r.momentum), w.text(r.equation));
-                    momenta.extend(labelled(&format!("p_{} = ", r.name), &p, ""));
-                    equations.extend(labelled(&format!("{}: ", r.name), &e, &r.right_side()));
-                }
-            }
+        let rows = match rows(w, i) {
+            Ok(rows) => rows,
             Err(why) => return w.stopped("Equations of motion", why),
+        };
+        for r in rows {
+            if first {
+                let text = w.text(r.equation);
+                equations.add(labelled(&format!("{}: ", r.name), &text, &r.right_side()));
+            }
+            if second {
+                let text = w.text(r.momentum);
+                momenta.add(labelled(&format!("p_{} = ", r.name), &text, ""));
+            }
         }
     }
-    if of.len() > SHOWN {
-        let more = format!("and {} more", of.len() - SHOWN);
-        momenta.push(more.clone());
-        equations.push(more);
-    }
+    let (equations, momenta) = (equations.done(), momenta.done());
     heading(w, row);
     w.prose("Equations of motion:");
     w.formulas(equations);
@@ -344,14 +332,14 @@ fn family(w: &mut Writer<'_, '_>, row: &SymbolRow, of: &[usize]) {
 /// `coordinate θ: angle`, and its description.
 fn heading(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let quantity = row.quantity.as_ref().map_or(String::new(), |q| format!(": {q}"));
-    w.prose(match (&row.index, row.members) {
+    let title = match (&row.index, row.members) {
         (Some(i), Some((a, b))) => {
             let count = counted(b - a + 1, "coordinate", "coordinates");
-            format!("Family `{}[{i}]{quantity}`, {i} = {a} … {b}: {count}", row.name)
+            format!("Family `{}[{i}]{quantity}`, {i} = {a} … {b}, {count}", row.name)
         }
         _ => format!("Coordinate `{}{quantity}`", row.name),
-    });
-    w.description(row.description.as_deref());
+    };
+    w.titled(title, row.description.as_deref());
 }
 
 /// The claims whose transformations move the coordinate.

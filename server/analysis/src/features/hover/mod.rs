@@ -3,6 +3,7 @@
 //! The first line says what matters most: some editors show no more. A hover prints only what it shows; whatever it lists
 //! is bounded, however large the model.
 
+mod charge;
 mod claim;
 mod coordinate;
 mod name;

@@ -16,7 +16,6 @@ pub(super) fn name(w: &mut Writer<'_, '_>, row: &SymbolRow) {
         SymbolKind::Index => index(w, row),
         _ => constant(w, row),
     }
-    w.description(row.description.as_deref());
     if let Some((path, _)) = &row.origin {
         let file = path.rsplit(['/', '\\']).next().unwrap_or(path);
         w.prose(format!("From `{file}`."));
@@ -37,14 +36,14 @@ fn constant(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let what = match row.kind {
         SymbolKind::Input => "input",
         SymbolKind::Undeclared => {
-            return w.prose(format!("`{}` is not declared; it is taken for a parameter", row.name));
+            return w.prose(format!("`{}` is not declared: it is taken for a parameter", row.name));
         }
         _ => "parameter",
     };
     let quantity = row.quantity.as_ref().map_or(String::new(), |q| format!(": {q}"));
     let value = row.value.as_ref().map_or(String::new(), |v| format!(" = {}", value(w, row, v)));
     let none = if row.value.is_none() && row.kind == SymbolKind::Parameter { ", no value given" } else { "" };
-    w.prose(format!("{what} `{}{quantity}{value}`{none}", spelled(row)));
+    w.titled(format!("{what} `{}{quantity}{value}`{none}", spelled(row)), row.description.as_deref());
     if row.kind == SymbolKind::Input {
         w.prose("A signal from outside: a given function of time, the same whatever the motion.");
     }
@@ -97,10 +96,11 @@ fn index(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let range = row
         .members
         .map_or(String::new(), |(a, b)| format!(": {a}..{b}`, {}", counted((b - a + 1).max(0), "value", "values")));
-    w.prose(match range.is_empty() {
+    let title = match range.is_empty() {
         true => format!("index `{}`", row.name),
         false => format!("index `{}{range}", row.name),
-    });
+    };
+    w.titled(title, row.description.as_deref());
     let families = w.checked.symbols.iter().filter(|s| s.index.as_deref() == Some(&*row.name));
     let names: Vec<String> = families.map(|s| s.name.to_string()).collect();
     if !names.is_empty() {
@@ -110,7 +110,7 @@ fn index(w: &mut Writer<'_, '_>, row: &SymbolRow) {
 
 fn function(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let quantity = row.quantity.as_ref().map_or(String::new(), |q| format!(": {q}"));
-    w.prose(format!("function `{}{quantity}`, unspecified and smooth", spelled(row)));
+    w.titled(format!("function `{}{quantity}`, unspecified and smooth", spelled(row)), row.description.as_deref());
     let (name, formals) = (&row.name, row.formals.join(", "));
     let derivatives = match row.formals.len() {
         0 | 1 => format!("`{name}'({formals})` and `{name}''({formals})`"),
@@ -134,11 +134,11 @@ fn definition(w: &mut Writer<'_, '_>, row: &SymbolRow) {
             Some(text) => w.formulas(vec![format!("{spelled} = {text}")]),
             None => w.prose(format!("Definition `{spelled}`")),
         }
-        if row.formals.is_empty() {
-            w.prose("Definition, as it is written");
-        } else {
-            w.prose(format!("Function of {}, as it is written", quoted(&strings(&row.formals))));
-        }
+        let title = match row.formals.is_empty() {
+            true => "Definition, as it is written".to_owned(),
+            false => format!("Function of {}, as it is written", quoted(&strings(&row.formals))),
+        };
+        w.titled(title, row.description.as_deref());
         return members(w, row);
     };
     let lines = components(w, &row.name, "", &value);
@@ -147,7 +147,7 @@ fn definition(w: &mut Writer<'_, '_>, row: &SymbolRow) {
         Some(crate::values::Shape::Number) | None => String::new(),
         Some(shape) => format!(", {shape}"),
     };
-    w.prose(format!("Definition{shape}"));
+    w.titled(format!("Definition{shape}"), row.description.as_deref());
     let rate = {
         let maker = &mut *w.maker;
         let (arena, budget) = (&mut *maker.arena, &mut *maker.budget);
@@ -203,13 +203,9 @@ fn components(w: &mut Writer<'_, '_>, name: &str, prime: &str, value: &Value) ->
 pub(super) fn enters(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let checked = w.checked;
     let uses = |name: &str| -> Vec<usize> {
-        let all = 0..checked.items.len();
-        all.filter(|&k| {
-            let parsed = &checked.items[k].parsed;
-            let declares = checked.symbols.iter().any(|s| s.item == Some(k) && &*s.name == name);
-            !declares && parsed.uses.names.iter().any(|u| u.name == name)
-        })
-        .collect()
+        let own = checked.symbol(name).and_then(|s| s.item);
+        let names = |k: usize| checked.items[k].parsed.uses.names.iter().any(|u| u.name == name);
+        (0..checked.items.len()).filter(|&k| Some(k) != own && names(k)).collect()
     };
     let direct = uses(&row.name);
     let mut reached = direct.clone();
@@ -323,9 +319,8 @@ pub(super) fn run(w: &mut Writer<'_, '_>, k: usize) {
     let run = &w.checked.runs[k];
     let over = run.over.as_ref().map(|m| measure(w, m));
     let over = over.map_or(String::new(), |m| format!(" over {m}"));
-    w.prose(format!("Initial-value run `{}`{over}", run.name));
     let item = w.checked.items.iter().find(|i| i.range.start == run.range.start);
-    w.description(item.and_then(|i| i.description.as_deref()));
+    w.titled(format!("Initial-value run `{}`{over}", run.name), item.and_then(|i| i.description.as_deref()));
     let mut lines = Vec::new();
     for (what, value) in run.from.iter().take(SHOWN) {
         let (what, value) = (w.text(*what), measure(w, value));

@@ -1,6 +1,6 @@
 //! Hovers of the system's name: degrees of freedom, L, energy function, what is conserved.
 
-use super::claim::energy_name;
+use super::charge::energy_name;
 use super::writer::{SHOWN, Writer, counted, labelled, plural, quoted};
 use leastwise_algebra::{Arena, Expr, Verdict};
 use leastwise_mechanics::energy::is_total_energy;

@@ -1,6 +1,6 @@
 //! Hovers of terms, forces, dissipations and constraints: what each adds to the equations of motion.
 
-use super::writer::{SHOWN, Writer, counted, forms, labelled, plural, quoted};
+use super::writer::{List, SHOWN, Writer, counted, forms, labelled, plural, quoted, short};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 use leastwise_mechanics::context::Parts;
 use leastwise_mechanics::lagrange::{self, FormParts};
@@ -20,8 +20,7 @@ pub(super) fn term(w: &mut Writer<'_, '_>, k: usize) {
         TermKind::Lagrangian => ("lagrangian", "Term of the Lagrangian, counted with +"),
     };
     w.formulas(labelled(&format!("{} = ", term_label(kind, &term.name)), &text, ""));
-    w.prose(sign);
-    w.description(place.description.as_deref());
+    w.titled(sign, place.description.as_deref());
     let signed: Parts = term.parts.iter().map(|&p| (p, Rational::integer(term.sign()))).collect();
     match shares(w, |cx, q| lagrange::residual(cx, &signed, q)) {
         Ok(shares) if shares.is_empty() => w.prose("It changes no equation of motion."),
@@ -49,30 +48,21 @@ fn shares(
     w: &mut Writer<'_, '_>,
     mut of: impl FnMut(&mut leastwise_mechanics::context::Context<'_>, &Coordinate) -> Result<FormParts, Stopped>,
 ) -> Result<Vec<String>, Stopped> {
-    let (mut lines, mut shown, mut more) = (Vec::new(), 0, 0);
+    let mut list = List::new();
     for q in &w.checked.model.coordinates {
         let parts = of(&mut w.cx(), q)?;
         if parts.is_empty() {
             continue;
         }
         for row in forms(w, q, std::slice::from_ref(&parts))? {
-            let e = row.values[0];
-            if w.vanishes(e) {
+            if w.vanishes(row.values[0]) || !list.wants() {
                 continue;
             }
-            if shown >= SHOWN {
-                more += 1;
-                continue;
-            }
-            shown += 1;
-            let text = w.text(e);
-            lines.extend(labelled(&format!("{}: ", row.name), &text, &row.suffix));
+            let text = w.text(row.values[0]);
+            list.add(labelled(&format!("{}: ", row.name), &text, &row.suffix));
         }
     }
-    if more > 0 {
-        lines.push(format!("and {more} more"));
-    }
-    Ok(lines)
+    Ok(list.done())
 }
 
 /// Which claims a term respects and which it breaks.
@@ -158,7 +148,7 @@ pub(super) fn force(w: &mut Writer<'_, '_>, k: usize) {
             let whole = w.total(&parts);
             let text = w.text(whole);
             w.formulas(labelled(&format!("{} = ", term_label("dissipation", &force.name)), &text, ""));
-            w.prose("Rayleigh dissipation function ℱ: the generalised force along q is −∂ℱ/∂q̇");
+            w.titled("Rayleigh dissipation function ℱ", place.description.as_deref());
         }
         Action::Applied(pairs) => {
             let mut lines = Vec::new();
@@ -167,15 +157,17 @@ pub(super) fn force(w: &mut Writer<'_, '_>, k: usize) {
                 lines.extend(labelled(&format!("{} on {on} = ", term_label("force", &force.name)), &value, ""));
             }
             w.formulas(lines);
-            w.prose("Applied force");
+            w.titled("Applied force", place.description.as_deref());
         }
     }
-    w.description(place.description.as_deref());
     let model = &checked.model;
     match shares(w, |cx, q| lagrange::generalised(cx, force, q)) {
         Ok(shares) if shares.is_empty() => w.prose("It changes no equation of motion."),
         Ok(shares) => {
-            w.prose("Generalised forces, on the right sides of the equations of motion:");
+            w.prose(match force.action {
+                Action::Dissipation(_) => "Generalised forces −∂ℱ/∂q̇, on the right sides of the equations of motion:",
+                Action::Applied(_) => "Generalised forces, on the right sides of the equations of motion:",
+            });
             w.formulas(shares);
         }
         Err(why) => w.stopped("What it adds to the equations of motion", why),
@@ -186,8 +178,13 @@ pub(super) fn force(w: &mut Writer<'_, '_>, k: usize) {
     {
         let power = w.maker.arena.neg(e);
         let text = w.text(power);
-        w.prose("Its power:");
-        w.formulas(labelled("", &text, ""));
+        match short(&text) {
+            Some(text) => w.prose(format!("Power: `{text}`")),
+            None => {
+                w.prose("Power:");
+                w.formulas(labelled("", &text, ""));
+            }
+        }
     }
     let (mut idle, mut names, mut lines) = (Vec::new(), Vec::new(), Vec::new());
     for (claim, answer) in checked.symmetries.iter().zip(&w.derived.symmetries) {
@@ -232,18 +229,17 @@ pub(super) fn constraint(w: &mut Writer<'_, '_>, first: usize) {
     w.formulas(lines);
     let velocities = own.iter().any(|&k| lagrange::depends_on_velocities(w.maker.arena, model.constraints[k].f));
     let kind = if velocities {
-        "linear in the velocities; whether it can be integrated is not asked here"
+        "constraint linear in the velocities; whether it can be integrated is not asked here"
     } else {
-        "holonomic: on the coordinates and the time"
+        "holonomic constraint"
     };
     let many = if own.len() > 1 {
         format!("{}, ", counted(own.len() as i64, "constraint", "constraints"))
     } else {
         String::new()
     };
-    w.prose(capital(&format!("{many}{kind}")));
     let item = crate::features::place::item_at(checked, start);
-    w.description(item.and_then(|k| checked.items[k].description.as_deref()));
+    w.titled(capital(&format!("{many}{kind}")), item.and_then(|k| checked.items[k].description.as_deref()));
     let part = leastwise_mechanics::model::Model {
         constraints: own.iter().take(SHOWN).map(|&k| model.constraints[k].clone()).collect(),
         coordinates: model.coordinates.clone(),

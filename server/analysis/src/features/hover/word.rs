@@ -11,7 +11,7 @@ pub(super) fn keyword(w: &mut Writer<'_, '_>, word: &'static Keyword, item: usiz
         && let Ok(answers) = &w.derived.answers
     {
         let h = answers.energy.function;
-        let (text, name) = (w.text(h), super::claim::energy_name(w, h));
+        let (text, name) = (w.text(h), super::charge::energy_name(w, h));
         w.formulas(labelled("h = ", &text, ""));
         return w.prose(if name == "energy" {
             "The energy function h = Σ p q̇ − L; here it is kinetic + potential energy"

@@ -67,12 +67,25 @@ impl<'a, 'm> Writer<'a, 'm> {
         }
     }
 
-    /// Says what is missing from the model, as the second thing of the hover.
-    pub fn missing(&mut self) {
-        if let Some(text) = missing(self.checked) {
-            let at = self.blocks.len().min(1);
-            self.blocks.insert(at, Block::Prose(text));
+    /// A sentence, with the comment that describes the thing behind it.
+    pub fn titled(&mut self, text: impl Into<String>, description: Option<&str>) {
+        let mut text = text.into();
+        if let Some(more) = description.map(flowing).filter(|d| !d.is_empty()) {
+            text.push_str(": ");
+            text.push_str(&more);
         }
+        self.prose(text);
+    }
+
+    /// Says what is missing from the model, as the second line of the hover.
+    pub fn missing(&mut self) {
+        let Some(text) = missing(self.checked) else { return };
+        let rest = match self.blocks.first_mut() {
+            Some(Block::Formulas(lines)) if lines.len() > 1 => Some(lines.split_off(1)),
+            _ => None,
+        };
+        let at = self.blocks.len().min(1);
+        self.blocks.splice(at..at, std::iter::once(Block::Prose(text)).chain(rest.map(Block::Formulas)));
     }
 
     /// Says that something was not derived.
@@ -83,6 +96,49 @@ impl<'a, 'm> Writer<'a, 'm> {
     /// Whether an expression vanishes, proved.
     pub fn vanishes(&mut self, e: Expr) -> bool {
         e == Arena::ZERO || self.cx().vanishes(&[(e, Rational::ONE)]).is_proved()
+    }
+}
+
+/// A list that ends in time: after so many entries, or when some entries have filled a screen.
+pub(super) struct List {
+    pub lines: Vec<String>,
+    shown: usize,
+    letters: usize,
+    more: usize,
+}
+
+impl List {
+    /// So many letters fill a screen.
+    const SCREEN: usize = 3000;
+    /// So many entries are shown in any case.
+    const LEAST: usize = 3;
+
+    pub fn new() -> List {
+        List { lines: Vec::new(), shown: 0, letters: 0, more: 0 }
+    }
+
+    /// Whether one more entry is to be shown; else it is counted.
+    pub fn wants(&mut self) -> bool {
+        let full = self.shown >= SHOWN || self.shown >= List::LEAST && self.letters > List::SCREEN;
+        if full {
+            self.more += 1;
+        } else {
+            self.shown += 1;
+        }
+        !full
+    }
+
+    pub fn add(&mut self, lines: Vec<String>) {
+        self.letters += lines.iter().map(|l| l.chars().count()).sum::<usize>();
+        self.lines.extend(lines);
+    }
+
+    /// The lines, with the count of what is left out.
+    pub fn done(mut self) -> Vec<String> {
+        if self.more > 0 {
+            self.lines.push(format!("and {} more", self.more));
+        }
+        self.lines
     }
 }
 
@@ -131,7 +187,7 @@ pub(super) fn short(text: &str) -> Option<&str> {
 
 /// The first paragraph of a comment, on one line. Its first letter is left alone: it may be a name of the model.
 fn flowing(text: &str) -> String {
-    let lines = text.lines().map(str::trim).take_while(|l| !l.is_empty());
+    let lines = text.trim().lines().map(str::trim).take_while(|l| !l.is_empty());
     lines.collect::<Vec<_>>().join(" ")
 }
 

@@ -80,3 +80,50 @@ fn a_session_that_has_lived_says_what_a_new_one_says() {
         }
     });
 }
+
+/// The nodes that all hovers of a model make in one session.
+fn nodes(text: &str) -> usize {
+    let mut session = Session::new();
+    let checked = session.check("folder/model.least", text, &SITE);
+    let derived = session.derive(&checked);
+    let before = session.arena.len();
+    text.char_indices().for_each(|c| drop(session.hover(&checked, &derived, c.0)));
+    session.arena.len() - before
+}
+
+#[test]
+fn hovers_of_a_chain_print_what_they_show() {
+    let made = nodes(
+        "\
+index i: 1..10
+coordinate θ[i]: angle
+parameter m[i], l[i], g
+let P[i] = (sum(j in 1..i: l[j] sin θ[j]), -sum(j in 1..i: l[j] cos θ[j]))
+kinetic   bobs   = sum(i: 1/2 m[i] |P[i]'|^2)
+potential weight = sum(i: m[i] g P[i][2])
+broken symmetry turn: θ[i] -> θ[i] + ε
+conserved h = energy
+",
+    );
+    assert!(made < 6_000, "{made}");
+}
+
+#[test]
+fn hovers_of_a_long_row_cost_as_much_as_those_of_a_short_one() {
+    let row = |n: usize| {
+        format!(
+            "\
+index i: 1..{n}
+coordinate x[i]
+parameter m, k
+kinetic   masses  = sum(i: 1/2 m x[i]'^2)
+potential springs = sum(i in 1..{}: 1/2 k (x[i+1] - x[i])^2)
+symmetry shift: x[i] -> x[i] + ε
+conserved h = energy
+",
+            n - 1
+        )
+    };
+    let (short, long) = (nodes(&row(100)), nodes(&row(10_000)));
+    assert!(long <= short + short / 10 && long < 1_000, "{short} and {long}");
+}

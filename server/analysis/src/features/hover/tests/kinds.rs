@@ -76,32 +76,28 @@ fn coordinates_with_constraints() {
     `x`
     `x` is cyclic, but reactions act along it: `p_x = m ẋ` changes at the rate `R_x`
     Coordinate `x: length`
+        m ẍ = R_x
         p_x = m ẋ
         ∂L/∂x = 0
         R_x = 2 λ_rod x
-    Equation of motion:
-        m ẍ = R_x
     Moved by `turn` (broken by `U`), `side` (exact symmetry).
     "#);
     insta::assert_snapshot!(within(ROD, "momentum($0z)"), @r#"
     `z`
     `z` is cyclic: `p_z = m ż` is conserved (proved)
-    Coordinate `z: length`
-    along the axis
+    Coordinate `z: length`: along the axis
+        m z̈ = 0
         p_z = m ż
         ∂L/∂z = 0
-    Equation of motion:
-        m z̈ = 0
     "#);
     insta::assert_snapshot!(within(DISC, "coordinate $0ψ"), @r#"
     `ψ`
     `ψ` is cyclic, but reactions act along it: `p_ψ = J ψ̇` changes at the rate `R_ψ`
     Coordinate `ψ: twist`
+        J ψ̈ = R_ψ
         p_ψ = J ψ̇
         ∂L/∂ψ = 0
         R_ψ = -R λ_roll
-    Equation of motion:
-        J ψ̈ = R_ψ
     Moved by `both` (symmetry up to a gauge term).
     "#);
 }
@@ -115,10 +111,10 @@ fn families_by_forms_and_by_members() {
         m[7] x[7]'' + k (3 x[7] - x[6] - x[8]) = 0
         m[i] x[i]'' + k (2 x[i] - x[i - 1] - x[i + 1]) = 0   (i = 8 … 9999)
         m[10000] x[10000]'' + k (x[10000] - x[9999]) = 0
-    Family `x[i]`, i = 1 … 10000: 10000 coordinates
-    along the row
+    Family `x[i]`, i = 1 … 10000, 10000 coordinates: along the row
         p_x[1] = m[1] x[1]'
         ∂L/∂x[1] = k (x[2] - x[1])
+        Q_x[1] = -c x[1]'   (drag)
         p_x[i] = m[i] x[i]'   (i = 2 … 6)
         ∂L/∂x[i] = k (x[i - 1] - 2 x[i] + x[i + 1])   (i = 2 … 6)
         p_x[7] = m[7] x[7]'
@@ -127,22 +123,19 @@ fn families_by_forms_and_by_members() {
         ∂L/∂x[i] = k (x[i - 1] - 2 x[i] + x[i + 1])   (i = 8 … 9999)
         p_x[10000] = m[10000] x[10000]'
         ∂L/∂x[10000] = k (x[9999] - x[10000])
-    Forces on it:
-        drag: Q_x[1] = -c x[1]'
     Moved by `shift` (broken by `pin`).
     "#);
     insta::assert_snapshot!(within(ROW, "f($0x[7])"), @r#"
     `x`
         m[7] x[7]'' + k (3 x[7] - x[6] - x[8]) = 0
-    Family `x[i]`, i = 1 … 10000: 10000 coordinates
-    along the row
+    Family `x[i]`, i = 1 … 10000, 10000 coordinates: along the row
         p_x[7] = m[7] x[7]'
         ∂L/∂x[7] = k (x[6] - 3 x[7] + x[8])
     Moved by `shift` (broken by `pin`).
     "#);
     insta::assert_snapshot!(within(MANY, "coordinate $0x[i]"), @r#"
     `x`
-    Family `x[i]`, i = 1 … 40: 40 coordinates
+    Family `x[i]`, i = 1 … 40, 40 coordinates
     Equations of motion:
         x[1]: m x[1]'' + k x[1] = 0
         x[2]: m x[2]'' + k x[2] = 0
@@ -248,8 +241,7 @@ fn constraints_and_their_reactions() {
     insta::assert_snapshot!(within(ROD, "constraint $0rod"), @r#"
     `rod`
         constraint rod: x² + y² - l² = 0
-    Holonomic: on the coordinates and the time
-    stiff
+    Holonomic constraint: stiff
     Reactions, on the right sides of the equations of motion:
         x: 2 λ_rod x
         y: 2 λ_rod y
@@ -259,7 +251,7 @@ fn constraints_and_their_reactions() {
     insta::assert_snapshot!(within(DISC, "$0constraint roll"), @r#"
     `constraint`
         constraint roll: ẋ - R ψ̇ = 0
-    Linear in the velocities; whether it can be integrated is not asked here
+    Constraint linear in the velocities; whether it can be integrated is not asked here
     Reactions, on the right sides of the equations of motion:
         x: λ_roll
         ψ: -R λ_roll
@@ -272,36 +264,30 @@ fn claims_with_constraints() {
     insta::assert_snapshot!(within(ROD, "symmetry $0turn"), @r#"
     `turn`
     `turn` is broken by `U` (refuted): `dQ/dt = -m g x`
-    Generator:
+    Generator, angular momentum, balance law:
         η_x = -y
         η_y = x
-    Angular momentum:
         Q = m (x ẏ - y ẋ)
-    Balance law:
         dQ/dt = -m g x   (term U)
     The flow preserves the constraints.
     "#);
     insta::assert_snapshot!(within(ROD, "symmetry $0side"), @r#"
     `side`
     `side` is an exact symmetry of L (proved), but reactions change the canonical momentum `p_x = m ẋ`
-    Generator:
+    Generator, canonical momentum, balance law:
         η_x = 1
-    Canonical momentum:
         p_x = m ẋ
-    Balance law:
         dp_x/dt = 2 λ_rod x   (reaction of rod)
     The flow leaves the surface of the constraints.
     "#);
     insta::assert_snapshot!(within(DISC, "symmetry $0both"), @r#"
     `both`
     `both` is a symmetry up to a gauge term (proved): `Q = J ψ̇ + m R (ẋ - a t)` is conserved
-    Generator:
+    Generator, charge, gauge term, balance law:
         η_x = R
         η_ψ = 1
-    Charge Q and gauge term F:
         Q = J ψ̇ + m R (ẋ - a t)
         F = m a R t   (δL = dF/dt)
-    Balance law:
         dQ/dt = 0
     The flow preserves the constraints.
     "#);
@@ -335,11 +321,9 @@ fn claims_that_fail() {
     insta::assert_snapshot!(check("coordinate x\nkinetic T = 1/2 x'^2\nbroken symmetry $0s: x -> x + ε"), @r#"
     `s`
     `s` is an exact symmetry (proved), though it is declared broken: the canonical momentum `p_x = ẋ` is conserved
-    Generator:
+    Generator, canonical momentum, balance law:
         η_x = 1
-    Canonical momentum:
         p_x = ẋ
-    Balance law:
         dp_x/dt = 0
     "#);
 }
@@ -358,11 +342,9 @@ fn claims_that_are_not_decided() {
     insta::assert_snapshot!(within(TRACK, "symmetry $0slide"), @r#"
     `slide`
     `slide` is an exact symmetry of L (proved); whether the canonical momentum `p_x = ẋ` is conserved is undecided: the constraints are not solved for coordinates, so that states on their surface are not known
-    Generator:
+    Generator, canonical momentum, balance law:
         η_x = 1
-    Canonical momentum:
         p_x = ẋ
-    Balance law:
         dp_x/dt = λ_track (cos x + 3 x² exp(y))   (reaction of track)
     Whether the flow preserves the constraints is undecided.
     "#);
@@ -370,15 +352,49 @@ fn claims_that_are_not_decided() {
     `drift`
     Whether `drift`, which is the canonical momentum `p_x`, which is the charge of `slide`, is conserved is undecided: the constraints are not solved for coordinates, so that states on their surface are not known
         drift = ẋ
-        d/dt drift = ẍ
+        d/dt drift = λ_track (cos x + 3 x² exp(y))
     "#);
     insta::assert_snapshot!(within(TRACK, "constraint $0track"), @r#"
     `track`
         constraint track: y⁵ - 1 + sin x + sin y + x³ exp(y) = 0
-    Holonomic: on the coordinates and the time
+    Holonomic constraint
     Reactions, on the right sides of the equations of motion:
         x: λ_track (cos x + 3 x² exp(y))
         y: λ_track (5 y⁴ + cos y + x³ exp(y))
+    "#);
+}
+
+#[test]
+fn charges_by_their_names() {
+    // A field makes it canonical, two masses too; a gauge term may count the turns of an angle.
+    insta::assert_snapshot!(check("coordinate x, y: length\nparameter m, B\nkinetic T = 1/2 m (x'^2 + y'^2)\nlagrangian A = 1/2 B (x y' - y x')\nsymmetry $0turn: (x, y) -> (x cos ε - y sin ε, x sin ε + y cos ε)"), @r#"
+    `turn`
+    `turn` is an exact symmetry (proved): the canonical angular momentum `Q = m (x ẏ - y ẋ) + 1/2 B (x² + y²)` is conserved
+    Generator, canonical angular momentum, balance law:
+        η_x = -y
+        η_y = x
+        Q = m (x ẏ - y ẋ) + 1/2 B (x² + y²)
+        dQ/dt = 0
+    "#);
+    insta::assert_snapshot!(check("index i: 1..3\ncoordinate x[i]: length\nparameter m\nkinetic T = sum(i: 1/2 m x[i]'^2)\nsymmetry $0shift: x[i] -> x[i] + ε"), @r#"
+    `shift`
+    `shift` is an exact symmetry (proved): the total momentum `Q = m (x[1]' + x[2]' + x[3]')` is conserved
+    Generator, total momentum, balance law:
+        η_x[1] = 1
+        η_x[2] = 1
+        η_x[3] = 1
+        Q = m (x[1]' + x[2]' + x[3]')
+        dQ/dt = 0
+    "#);
+    insta::assert_snapshot!(check("coordinate φ: angle\nparameter J, M\nkinetic T = 1/2 J φ'^2\nlagrangian A = M t φ'\nsymmetry $0delay: t -> t + ε"), @r#"
+    `delay`
+    `delay` is a symmetry up to a gauge term (proved): `Q = -1/2 J φ̇² - M φ` is conserved
+    Generator, charge, gauge term, balance law:
+        τ = 1
+        Q = -1/2 J φ̇² - M φ
+        F = M φ   (δL = dF/dt)
+        dQ/dt = 0
+    F changes when `φ` turns by 2π: the charge is not single-valued.
     "#);
 }
 
@@ -456,7 +472,7 @@ fn parameters_and_names_nobody_declares() {
     "#);
     insta::assert_snapshot!(check("coordinate x\nkinetic T = 1/2 $0m x'^2"), @r#"
     `m`
-    `m` is not declared; it is taken for a parameter
+    `m` is not declared: it is taken for a parameter
     Enters kinetic `T`.
     "#);
 }
@@ -562,20 +578,17 @@ fn what_is_left_of_a_broken_model() {
     `turn`
     `turn` is not judged: the model is incomplete
     without `kinetic bob`, which has an error
-    Generator:
+    Generator, canonical momentum:
         η_φ = 1
-    Canonical momentum:
         p_φ = 2 m φ̇
     "#);
     insta::assert_snapshot!(within(BROKEN, "symmetry $0out"), @r#"
     `out`
     `out` is broken by `spring` (refuted): `dp_r/dt = -k r`
     without `kinetic bob`, which has an error
-    Generator:
+    Generator, canonical momentum, balance law of what is left of the model:
         η_r = 1
-    Canonical momentum:
         p_r = m ṙ
-    Balance law of what is left of the model:
         dp_r/dt = -k r   (term spring)
     "#);
     insta::assert_snapshot!(within(BROKEN, "conserved $0h"), @r#"
