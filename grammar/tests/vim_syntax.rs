@@ -16,7 +16,8 @@ fn syntax() -> String {
     let items = list(|r| r == KeywordRole::Item);
     let heads = items.replace(' ', r"\|");
     let modifiers = list(|r| r == KeywordRole::Modifier).replace(' ', r"\|");
-    let mut out = String::from("\" Made from the table of keywords of the language; see grammar/tests/vim_syntax.rs.\n");
+    let mut out =
+        String::from("\" Made from the table of keywords of the language; see grammar/tests/vim_syntax.rs.\n");
     out.push_str("if exists('b:current_syntax')\n  finish\nendif\n\n");
     out.push_str("\" Keywords begin an item in the first column only.\n");
     let _ = writeln!(out, r"syntax match leastwiseItem /^\%(\%({modifiers}\)\s\+\)\?\%({heads}\)\>/");

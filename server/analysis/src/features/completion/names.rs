@@ -125,7 +125,8 @@ pub(super) fn in_formula(items: &[RawItem], included: &[SymbolRow], place: &Plac
         };
         list.push(plain(name, kind, detail, None));
     }
-    let shown = |k: &Known| Completion { detail: k.detail.clone(), ..plain(&k.name, kind_of(k), "", k.description.clone()) };
+    let shown =
+        |k: &Known| Completion { detail: k.detail.clone(), ..plain(&k.name, kind_of(k), "", k.description.clone()) };
     let of = |kind: SymbolKind| all.iter().filter(move |k| k.kind == kind);
     let bound = |k: &&Known| !place.bound.contains(&k.name);
     match place.wanted {
