@@ -62,6 +62,9 @@ pub(super) fn coordinate(w: &mut Writer<'_, '_>, row: &SymbolRow, place: &Place<
     } else {
         family(w, row, &of);
     }
+    let named = |k: &usize| checked.items[*k].parsed.uses.names.iter().any(|u| u.name == *row.name);
+    let items: Vec<usize> = (0..checked.items.len()).filter(named).collect();
+    super::name::assumptions(w, &row.name, &items);
     moved_by(w, &of);
     w.missing();
 }

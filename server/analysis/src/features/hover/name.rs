@@ -207,7 +207,9 @@ pub(super) fn enters(w: &mut Writer<'_, '_>, row: &SymbolRow) {
         let names = |k: usize| checked.items[k].parsed.uses.names.iter().any(|u| u.name == name);
         (0..checked.items.len()).filter(|&k| Some(k) != own && names(k)).collect()
     };
-    let direct = uses(&row.name);
+    let (assumed, direct): (Vec<usize>, Vec<usize>) =
+        uses(&row.name).into_iter().partition(|&k| matches!(checked.items[k].parsed.item.kind, ItemKind::Assume(_)));
+    assumptions(w, &row.name, &assumed);
     let mut reached = direct.clone();
     // The definitions that need it lead further.
     let mut through: Vec<(String, Vec<usize>)> = Vec::new();
@@ -215,7 +217,8 @@ pub(super) fn enters(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     while let Some(&k) = reached.get(at) {
         at += 1;
         let Some(name) = defined(w, k) else { continue };
-        let fresh: Vec<usize> = uses(&name).into_iter().filter(|u| !reached.contains(u)).collect();
+        let fresh = uses(&name).into_iter().filter(|u| !reached.contains(u) && !is_assumption(w, *u));
+        let fresh: Vec<usize> = fresh.collect();
         reached.extend(&fresh);
         if !fresh.is_empty() {
             through.push((name, fresh));
@@ -232,6 +235,28 @@ pub(super) fn enters(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     }
 }
 
+fn is_assumption(w: &Writer<'_, '_>, item: usize) -> bool {
+    matches!(w.checked.items[item].parsed.item.kind, ItemKind::Assume(_))
+}
+
+/// What is assumed of a name, as it is written.
+pub(super) fn assumptions(w: &mut Writer<'_, '_>, name: &str, items: &[usize]) {
+    let mut found = Vec::new();
+    for &k in items {
+        let ItemKind::Assume(list) = &w.checked.items[k].parsed.item.kind else { continue };
+        for c in list {
+            let formulas = || std::iter::once(&c.first).chain(c.rest.iter().map(|r| &r.1));
+            if formulas().any(|f| crate::uses::mentions(f, name)) {
+                let span = formulas().fold(c.first.span, |whole, f| whole.to(f.span));
+                found.push(written(w.checked, k, span));
+            }
+        }
+    }
+    if !found.is_empty() {
+        w.prose(format!("Assumed: {}.", quoted(&found)));
+    }
+}
+
 /// The name that a `let` defines.
 fn defined(w: &Writer<'_, '_>, item: usize) -> Option<String> {
     match &w.checked.items[item].parsed.item.kind {
@@ -244,10 +269,9 @@ fn defined(w: &Writer<'_, '_>, item: usize) -> Option<String> {
 fn listed(w: &Writer<'_, '_>, items: &[usize]) -> String {
     let entry = |&k: &usize| {
         let row = &w.checked.items[k];
-        match (&row.parsed.item.kind, item_name(w.checked, k)) {
-            (ItemKind::Assume(_), _) => "an assumption".to_owned(),
-            (_, Some(name)) => format!("{} `{name}`", keyword_text(w.checked, row)),
-            (_, None) => title(w.checked, k),
+        match item_name(w.checked, k) {
+            Some(name) => format!("{} `{name}`", keyword_text(w.checked, row)),
+            None => title(w.checked, k),
         }
     };
     let mut shown: Vec<String> = items.iter().map(entry).collect();
@@ -374,13 +398,14 @@ fn measure(w: &mut Writer<'_, '_>, m: &Measure) -> String {
 pub(super) fn include(w: &mut Writer<'_, '_>, item: usize) {
     let checked = w.checked;
     let start = checked.items[item].range.start;
+    let ItemKind::Include { file, .. } = &checked.items[item].parsed.item.kind else { return };
     let path = checked.included.iter().find(|(at, _)| *at == start).map(|(_, path)| path.clone());
     let Some(path) = path else {
         return w.prose("The file is not taken in: see the error at its name");
     };
     let brought: Vec<&SymbolRow> =
         checked.symbols.iter().filter(|s| s.origin.as_ref().is_some_and(|o| o.0 == path)).collect();
-    w.prose(format!("Takes in `{path}`: {}", counted(brought.len() as i64, "name", "names")));
+    w.prose(format!("Takes in `{file}`: {}", counted(brought.len() as i64, "name", "names")));
     let mut lines = Vec::new();
     for row in brought.iter().take(SHOWN) {
         let quantity = row.quantity.as_ref().map_or(String::new(), |q| format!(": {q}"));

@@ -1,21 +1,25 @@
 //! No text makes a hover panic, and a session that has lived says what a new one says.
 
 use super::SITE;
+use super::kinds::{DISC, ROD, ROW};
 use crate::database::Session;
 use crate::features::hover::Hover;
 use crate::features::models::{broken, with_models};
+use std::sync::atomic::Ordering;
 
 /// The hovers at every `stride`-th letter.
 fn all(session: &mut Session, text: &str, stride: usize) -> Vec<Option<Hover>> {
     let checked = session.check("folder/model.least", text, &SITE);
     let derived = session.derive(&checked);
-    let places = (0..text.len() + 2).step_by(stride);
-    let hovers: Vec<Option<Hover>> = places.map(|offset| session.hover(&checked, &derived, offset)).collect();
-    for hover in hovers.iter().flatten() {
+    let hovered = |offset: usize| {
+        let hover = session.hover(&checked, &derived, offset)?;
         assert!(text.get(hover.range.clone()).is_some(), "{hover:?} in\n{text}");
+        let offset = text.floor_char_boundary(offset);
+        assert!(hover.range.start <= offset && offset <= hover.range.end, "{hover:?} at {offset} of\n{text}");
         assert!(!hover.blocks.is_empty());
-    }
-    hovers
+        Some(hover)
+    };
+    (0..text.len() + 2).step_by(stride).map(hovered).collect()
 }
 
 #[test]
@@ -27,12 +31,18 @@ fn every_place_of_every_example_may_be_asked_for() {
 
 #[test]
 fn texts_that_are_cut_off_may_be_asked_for() {
-    with_models(|text| {
+    with_all(|text| {
         let mut session = Session::new();
         for text in broken(text) {
             all(&mut session, &text, 5);
         }
     });
+}
+
+/// The example models, one with a large family and two with constraints.
+fn with_all(mut f: impl FnMut(&str)) {
+    [ROD, DISC, ROW].into_iter().for_each(&mut f);
+    with_models(f);
 }
 
 /// The next number of a fixed sequence, below `n`.
@@ -68,7 +78,7 @@ fn edited(text: &str, original: &str, state: &mut u64) -> String {
 fn a_session_that_has_lived_says_what_a_new_one_says() {
     let mut state = 11;
     let mut session = Session::new();
-    with_models(|original| {
+    with_all(|original| {
         let mut text = original.to_string();
         for step in 0..12 {
             let lived = all(&mut session, &text, 17);
@@ -78,6 +88,26 @@ fn a_session_that_has_lived_says_what_a_new_one_says() {
             }
             text = edited(&text, original, &mut state);
         }
+    });
+}
+
+/// What was cut short says little, and leaves nothing wrong behind.
+#[test]
+fn a_hover_cut_short_is_made_good() {
+    with_all(|text| {
+        let fresh = all(&mut Session::new(), text, 7);
+        let mut session = Session::new();
+        let checked = session.check("folder/model.least", text, &SITE);
+        for nodes in [0, 10, 300, 5_000] {
+            let derived = session.derive_within(&checked, nodes);
+            for offset in (0..text.len()).step_by(7) {
+                session.hover(&checked, &derived, offset);
+            }
+        }
+        session.interrupt.store(true, Ordering::Relaxed);
+        all(&mut session, text, 7);
+        session.interrupt.store(false, Ordering::Relaxed);
+        assert!(all(&mut session, text, 7) == fresh, "{text}");
     });
 }
 

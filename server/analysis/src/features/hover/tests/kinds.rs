@@ -3,7 +3,7 @@
 use super::{check, within};
 
 /// A bob on a stiff rod in the plane, which may slide along the axis.
-const ROD: &str = "\
+pub(super) const ROD: &str = "\
 system rod_pendulum      # a bob on a stiff rod
 coordinate x, y: length
 coordinate z: length     # along the axis
@@ -19,7 +19,7 @@ conserved p = momentum(z)
 ";
 
 /// A disc that rolls down a slope.
-const DISC: &str = "\
+pub(super) const DISC: &str = "\
 system disc
 coordinate x: length
 coordinate ψ: twist
@@ -32,7 +32,7 @@ conserved c = x - R ψ
 ";
 
 /// A long row of masses.
-const ROW: &str = "\
+pub(super) const ROW: &str = "\
 system row, dimensionless
 index i: 1..10000
 coordinate x[i]          # along the row
