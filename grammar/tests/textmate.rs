@@ -97,15 +97,12 @@ fn parts(pattern: impl Into<String>, scopes: &[&str]) -> Json {
     map(vec![("match", text(pattern)), ("captures", captures(scopes))])
 }
 
-/// Its last sign has the scope of its first.
+/// Where its end has a group, that has the scope of the first group of its beginning.
 fn region(begin: impl Into<String>, scopes: &[&str], end: impl Into<String>, inside: Vec<Json>) -> Json {
-    map(vec![
-        ("begin", text(begin)),
-        ("beginCaptures", captures(scopes)),
-        ("end", text(end)),
-        ("endCaptures", captures(scopes)),
-        ("patterns", Json::List(inside)),
-    ])
+    let end = end.into();
+    let closes = end.contains(r"(\))").then(|| ("endCaptures", captures(&scopes[..1])));
+    let entries = [("begin", text(begin)), ("beginCaptures", captures(scopes)), ("end", text(end))];
+    map(entries.into_iter().chain(closes).chain([("patterns", Json::List(inside))]).collect())
 }
 
 fn include(rule: &str) -> Json {

@@ -71,7 +71,7 @@ export class Editor {
     await editor.model.locator('.view-line').first().waitFor({ timeout: 30_000 });
     await page.keyboard.press('Control+B');
     // Code within sentences is in a font of its own.
-    await page.addStyleTag({ content: `body { --monaco-monospace-font: 'JetBrains Mono', monospace !important; }` });
+    await page.addStyleTag({ content: `* { --monaco-monospace-font: 'JetBrains Mono', monospace !important; }` });
     return editor;
   }
 

@@ -19,7 +19,11 @@ folder=$(cd "$folder" && pwd)
 log=${LEASTWISE_EDITORS_LOG:-$folder/install.log}
 stamp=$folder/installed
 wanted=$(cat "$here/install.sh" "$here/package.json" "$here/package-lock.json" | sha256sum)
-if [ "$(cat "$stamp" 2>/dev/null)" = "$wanted" ]; then
+client=$root/editors/vscode
+tools_are_there() {
+  [ -x "$client/node_modules/.bin/esbuild" ] && [ ! "$client/package-lock.json" -nt "$client/node_modules/.package-lock.json" ]
+}
+if [ "$(cat "$stamp" 2>/dev/null)" = "$wanted" ] && tools_are_there; then
   echo "installed already: $folder"
   exit 0
 fi
@@ -77,9 +81,11 @@ trap 'echo "not installed (see $log)" >&2' ERR
 set -E
 echo "installing code-server into $folder"
 install_all >>"$log" 2>&1
-echo "installing the client's tools"
-cd "$root/editors/vscode"
-npm ci >>"$log" 2>&1
+if ! tools_are_there; then
+  echo "installing the client's tools"
+  cd "$client"
+  npm ci >>"$log" 2>&1
+fi
 
 printf '%s' "$wanted" >"$stamp"
 echo "installed: $folder"

@@ -140,6 +140,7 @@ async function session() {
 
   await check('a coordinate has its momentum behind it', async () => {
     await editor.linesWith('the hint of φ is there', hinted);
+    await editor.linesWith('a long hint is whole', (all) => all.includes('3 degrees of freedom, energy not conserved: bearing, brake'));
     expect((await squiggles('error').count()) === 0, 'there is an error');
   });
 
