@@ -104,10 +104,15 @@ impl Positions {
         a.min(b)..a.max(b)
     }
 
+    /// The line that holds a byte.
+    pub fn line_of(&self, offset: usize) -> usize {
+        self.starts.partition_point(|s| *s <= offset) - 1
+    }
+
     /// The position of a byte.
     pub fn position(&self, offset: usize) -> lsp::Position {
         let offset = self.text.floor_char_boundary(offset);
-        let line = self.starts.partition_point(|s| *s <= offset) - 1;
+        let line = self.line_of(offset);
         // Inside of a line break is the line's end.
         let end = offset.min(self.line(line).end);
         let column = self.encoding.width(&self.text[self.starts[line]..end]);

@@ -62,20 +62,27 @@ pub fn legend() -> lsp::SemanticTokensLegend {
 /// The numbers of tokens, each relative to the one before.
 fn encoded(list: &[Token], positions: &Positions) -> Vec<lsp::SemanticToken> {
     let mut last = lsp::Position::default();
+    // Where the last token begins: the next one of its line is counted from there, so that long lines cost no more.
+    let mut offset = 0;
     let mut out = Vec::with_capacity(list.len());
     for token in list {
-        let at = positions.position(token.range.start);
-        let delta_line = at.line - last.line;
+        let line = positions.line_of(token.range.start) as u32;
+        let delta_line = line - last.line;
+        let character = if delta_line == 0 {
+            last.character + positions.width(offset..token.range.start)
+        } else {
+            positions.position(token.range.start).character
+        };
         let m = token.modifiers;
         let bits = [m.declaration, m.readonly, m.derivative, m.built_in];
         out.push(lsp::SemanticToken {
             delta_line,
-            delta_start: if delta_line == 0 { at.character - last.character } else { at.character },
+            delta_start: if delta_line == 0 { character - last.character } else { character },
             length: positions.width(token.range.clone()),
             token_type: number(token.kind),
             token_modifiers_bitset: bits.iter().enumerate().map(|(k, on)| u32::from(*on) << k).sum(),
         });
-        last = at;
+        (last, offset) = (lsp::Position { line, character }, token.range.start);
     }
     out
 }
