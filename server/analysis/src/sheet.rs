@@ -7,7 +7,7 @@ use crate::report::{
     Answer, BreakerRow, ConservedRow, CoordinateRow, EnergyRow, Formula, MassEntry, Members, Sheet, Status,
     SymmetryRow, TermRow,
 };
-use leastwise_algebra::{Arena, Budget, Expr, Rational, Stopped, Verdict, Witness, ZeroTest};
+use leastwise_algebra::{Arena, Budget, Expr, Node, Rational, Stopped, Verdict, Witness, ZeroTest};
 use leastwise_mechanics::context::{Context, Memory, Parts};
 use leastwise_mechanics::energy::is_total_energy;
 use leastwise_mechanics::forms::{aligned, at_member};
@@ -49,6 +49,26 @@ impl Maker<'_> {
             Verdict::Refuted(w) => Answer::No(w.as_ref().map(|w| self.witness(of, w))),
             Verdict::Undecided(r) => Answer::Undecided(r.to_string()),
         }
+    }
+
+    /// An expression with the atoms on which a rate depends along motions: for accelerations stands what the equations of
+    /// motion make of them. A witness has no values of its own for accelerations.
+    pub fn along_motions(&mut self, model: &Model, rate: Expr) -> Expr {
+        let mut atoms = self.arena.atoms(rate);
+        let (mut at, mut solved) = (0, Vec::new());
+        while let Some(&atom) = atoms.get(at) {
+            at += 1;
+            let Node::Jet(symbol, order) = *self.arena.node(atom) else { continue };
+            let Some(q) = model.coordinates.iter().find(|q| q.symbol == symbol && order > 1) else { continue };
+            solved.push(atom);
+            let Ok(equation) = lagrange::equation(&mut self.cx(), model, q) else { continue };
+            for e in equation.iter().flat_map(|(forms, _)| forms.iter().map(|f| f.expr)) {
+                let fresh: Vec<Expr> = self.arena.atoms(e).into_iter().filter(|a| !atoms.contains(a)).collect();
+                atoms.extend(fresh);
+            }
+        }
+        atoms.retain(|a| !solved.contains(a));
+        self.arena.sum(&atoms)
     }
 
     fn witness(&mut self, of: Expr, w: &Witness) -> String {
@@ -114,7 +134,14 @@ impl Maker<'_> {
             let (holds, rate) = match answer {
                 Ok(c) => {
                     let holds = match &c.verdict {
-                        Ok(v) => self.answer(c.rate, v),
+                        // A verdict taken from a known charge has that one's witness.
+                        Ok(Verdict::Refuted(_)) if !model.constraints.is_empty() || answers.rows.is_none() => {
+                            Answer::No(None)
+                        }
+                        Ok(v) => {
+                            let of = self.along_motions(model, c.rate);
+                            self.answer(of, v)
+                        }
                         Err(reason) => Answer::Undecided(reason.to_string()),
                     };
                     let rate = if holds == Answer::Yes { Arena::ZERO } else { c.rate };

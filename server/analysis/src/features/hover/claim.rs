@@ -5,7 +5,7 @@ use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, witnes
 use crate::report::Answer;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
 use leastwise_mechanics::context::Parts;
-use leastwise_mechanics::lagrange::{self, multiplier};
+use leastwise_mechanics::lagrange::multiplier;
 use leastwise_mechanics::symmetry::{self, NoGenerator, Status};
 use leastwise_mechanics::verdicts::SymmetryAnswer;
 
@@ -316,7 +316,7 @@ fn constant(w: &mut Writer<'_, '_>, k: usize) {
             let rate = known.iter().find_map(|k| k.1).unwrap_or(c.rate);
             let answer = match &c.verdict {
                 Ok(v) => {
-                    let of = state(w, rate);
+                    let of = w.maker.along_motions(&checked.model, rate);
                     w.maker.answer(of, v)
                 }
                 Err(why) => Answer::Undecided(why.to_string()),
@@ -354,27 +354,6 @@ fn constant(w: &mut Writer<'_, '_>, k: usize) {
     {
         w.prose(format!("For instance d/dt {name} is {}.", witness(at)));
     }
-}
-
-/// An expression with the atoms on which a rate depends along motions: accelerations are replaced by what the equations
-/// of motion say of them.
-fn state(w: &mut Writer<'_, '_>, rate: Expr) -> Expr {
-    let model = &w.checked.model;
-    let mut atoms = w.maker.arena.atoms(rate);
-    let (mut at, mut solved) = (0, Vec::new());
-    while let Some(&atom) = atoms.get(at) {
-        at += 1;
-        let Node::Jet(symbol, order) = *w.maker.arena.node(atom) else { continue };
-        let Some(i) = model.coordinates.iter().position(|q| q.symbol == symbol && order > 1) else { continue };
-        solved.push(atom);
-        let Ok(equation) = lagrange::equation(&mut w.cx(), model, &model.coordinates[i]) else { continue };
-        for e in equation.iter().flat_map(|(forms, _)| forms.iter().map(|f| f.expr)) {
-            let fresh: Vec<Expr> = w.maker.arena.atoms(e).into_iter().filter(|a| !atoms.contains(a)).collect();
-            atoms.extend(fresh);
-        }
-    }
-    atoms.retain(|a| !solved.contains(a));
-    w.maker.arena.sum(&atoms)
 }
 
 /// The known charges that a claimed constant is, with their sign, and the constant's rate where it is known from them.
