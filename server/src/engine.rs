@@ -54,6 +54,11 @@ pub const NOT_UTF8: &str = "not-utf8";
 /// The code of a defect of the program itself, told by the language server.
 pub const INTERNAL: &str = "internal-error";
 
+/// What is told of a code beside its explanation; nothing of the program's own codes.
+pub fn page(code: &str) -> Option<leastwise_analysis::pages::Page> {
+    leastwise_analysis::pages::page(code)
+}
+
 /// All codes of findings with their explanations, in alphabetical order.
 pub fn all_codes() -> Vec<(&'static str, &'static str)> {
     let own = [

@@ -78,8 +78,8 @@ Exit status: 0 done (with --check: nothing would change), 1 with --check: someth
 pub const EXPLAIN: &str = "\
 leastwise explain [CODE]
 
-Explains the code of a finding, such as the one in brackets in `warning[not-cyclic]`. Without a
-code, lists all of them.
+Explains the code of a finding, such as the one in brackets in `warning[not-cyclic]`, with an
+example and what to do about it. Without a code, lists all of them.
 
 Exit status: 0 explained, 2 there is no such code.
 ";

@@ -13,8 +13,14 @@ fn check_usage(arguments: &[&str], message: &str) {
 #[test]
 fn help_pages() {
     let folder = Folder::new();
-    for arguments in [&["help"][..], &["help", "check"], &["help", "sheet"], &["help", "format"], &["help", "explain"]]
-    {
+    for arguments in [
+        &["help"][..],
+        &["help", "check"],
+        &["help", "sheet"],
+        &["help", "format"],
+        &["help", "explain"],
+        &["help", "lsp"],
+    ] {
         let ran = folder.run(arguments);
         assert_eq!(ran.code, 0);
         assert!(ran.out.starts_with("leastwise"), "{}", ran.out);
@@ -51,7 +57,14 @@ fn codes_are_explained() {
     for code in codes {
         let ran = folder.run(&["explain", code]);
         assert!(ran.code == 0 && ran.out.lines().count() >= 3, "{code}: {}", ran.out);
+        let own = ["not-utf8", "internal-error"].contains(&code);
+        assert!(
+            own || ran.out.contains("\nA mend that editors offer: ") || ran.out.contains("\nWhat to do: "),
+            "{code}"
+        );
     }
+    // The example is a real one: the finding is as `check` tells it.
+    insta::assert_snapshot!(folder.run(&["explain", "symmetry-broken"]).out);
     let slip = folder.run(&["explain", "not-utf9"]);
     assert_eq!((slip.code, slip.err.as_str()), (2, "leastwise: no code `not-utf9`; did you mean `not-utf8`?\n"));
 }

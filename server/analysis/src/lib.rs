@@ -13,6 +13,7 @@ pub mod include;
 mod lower;
 mod mends;
 mod names;
+pub mod pages;
 pub mod quantities;
 pub mod report;
 pub mod scope;

@@ -1,10 +1,16 @@
 //! `leastwise explain`: what a finding's code stands for.
 
-use crate::engine;
+use crate::engine::{self, Engine};
+use crate::lines::Lines;
 use crate::output::Streams;
 use crate::print::break_lines::prose;
+use crate::print::excerpt;
+use leastwise_analysis::pages::Page;
 use leastwise_grammar::nearest;
 use std::io;
+
+/// How the example is called.
+const EXAMPLE: &str = "example.least";
 
 /// Explains a code, or lists all of them.
 pub fn run(code: Option<&str>, streams: &mut Streams<'_>) -> io::Result<u8> {
@@ -29,6 +35,9 @@ pub fn run(code: Option<&str>, streams: &mut Streams<'_>) -> io::Result<u8> {
                 writeln!(streams.out, "{line}")?;
             }
         }
+        if let Some(page) = engine::page(name) {
+            example(name, page, streams)?;
+        }
         return Ok(0);
     }
     let shown: String = wanted.chars().take(60).collect();
@@ -37,4 +46,33 @@ pub fn run(code: Option<&str>, streams: &mut Streams<'_>) -> io::Result<u8> {
         None => writeln!(streams.err, "leastwise: no code `{shown}`; `leastwise explain` lists all of them")?,
     }
     Ok(2)
+}
+
+/// A model with such a finding, as `check` shows it, and what to do.
+fn example(code: &str, page: Page, streams: &mut Streams<'_>) -> io::Result<()> {
+    let indented = |text: &str| text.lines().map(|l| format!("    {l}").trim_end().to_string()).collect::<Vec<_>>();
+    if !page.example.is_empty() {
+        let findings = Engine::new().findings(EXAMPLE, page.example);
+        let lines = Lines::new(page.example);
+        let plain =
+            crate::output::Page { width: streams.page.width.saturating_sub(4).max(40), ..crate::output::Page::PLAIN };
+        writeln!(streams.out, "\nAn example:\n")?;
+        indented(page.example).iter().try_for_each(|l| writeln!(streams.out, "{l}"))?;
+        if let Some(finding) = findings.iter().find(|f| f.code == code) {
+            writeln!(streams.out, "\n`leastwise check` says:\n")?;
+            let shown = excerpt::finding(finding, EXAMPLE, &lines, plain);
+            indented(shown.trim_end()).iter().try_for_each(|l| writeln!(streams.out, "{l}"))?;
+        }
+    }
+    if let Some((title, after)) = page.mended {
+        writeln!(streams.out, "\nA mend that editors offer: {title}\n")?;
+        indented(after).iter().try_for_each(|l| writeln!(streams.out, "{l}"))?;
+    }
+    if !page.advice.is_empty() {
+        writeln!(streams.out)?;
+        for line in prose(&format!("What to do: {}.", page.advice), streams.page.width) {
+            writeln!(streams.out, "{line}")?;
+        }
+    }
+    Ok(())
 }
