@@ -1,11 +1,12 @@
 //! Hovers of claims: the verdict with its grade, the generator, the charge, the balance law term by term.
 
 use super::charge::{Charge, charge, energy_name};
-use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, witness};
+use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, with_kind, witness};
 use crate::report::Answer;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
 use leastwise_mechanics::context::Parts;
 use leastwise_mechanics::lagrange::multiplier;
+use leastwise_mechanics::model::{Action, TermKind};
 use leastwise_mechanics::symmetry::{self, NoGenerator, Status};
 use leastwise_mechanics::verdicts::SymmetryAnswer;
 
@@ -241,14 +242,20 @@ fn shares(w: &mut Writer<'_, '_>, a: &SymmetryAnswer, charge: &Charge) -> Vec<(S
         }
         let parts: Parts = parts.iter().filter(|p| p.0 != Arena::ZERO).cloned().collect();
         let e = w.total(&parts);
-        out.push((format!("term {}", model.terms[t].name), e));
+        let term = &model.terms[t];
+        let kind = match term.kind {
+            TermKind::Kinetic => "kinetic",
+            TermKind::Potential => "potential",
+            TermKind::Lagrangian => "lagrangian",
+        };
+        out.push((with_kind(kind, &term.name), e));
     }
     for (f, &e) in model.forces.iter().zip(&a.taken) {
         let kind = match f.action {
-            leastwise_mechanics::model::Action::Applied(_) => "force",
-            leastwise_mechanics::model::Action::Dissipation(_) => "dissipation",
+            Action::Applied(_) => "force",
+            Action::Dissipation(_) => "dissipation",
         };
-        out.push((format!("{kind} {}", f.name), e));
+        out.push((with_kind(kind, &f.name), e));
     }
     for c in &model.constraints {
         let lambda = multiplier(w.maker.arena, &c.name);

@@ -111,7 +111,8 @@ fn index(w: &mut Writer<'_, '_>, row: &SymbolRow) {
 fn function(w: &mut Writer<'_, '_>, row: &SymbolRow) {
     let quantity = row.quantity.as_ref().map_or(String::new(), |q| format!(": {q}"));
     w.titled(format!("function `{}{quantity}`, unspecified and smooth", spelled(row)), row.description.as_deref());
-    let (name, formals) = (&row.name, row.formals.join(", "));
+    let index = row.index.as_ref().map_or(String::new(), |i| format!("[{i}]"));
+    let (name, formals) = (format!("{}{index}", row.name), row.formals.join(", "));
     let derivatives = match row.formals.len() {
         0 | 1 => format!("`{name}'({formals})` and `{name}''({formals})`"),
         _ => {

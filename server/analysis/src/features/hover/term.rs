@@ -1,6 +1,6 @@
 //! Hovers of terms, forces, dissipations and constraints: what each adds to the equations of motion.
 
-use super::writer::{List, SHOWN, Writer, counted, forms, labelled, plural, quoted, short};
+use super::writer::{List, SHOWN, Writer, forms, labelled, plural, quoted, short, with_kind};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 use leastwise_mechanics::context::Parts;
 use leastwise_mechanics::lagrange::{self, FormParts};
@@ -19,7 +19,7 @@ pub(super) fn term(w: &mut Writer<'_, '_>, k: usize) {
         TermKind::Potential => ("potential", "Potential energy, counted with − in L"),
         TermKind::Lagrangian => ("lagrangian", "Term of the Lagrangian, counted with +"),
     };
-    w.formulas(labelled(&format!("{} = ", term_label(kind, &term.name)), &text, ""));
+    w.formulas(labelled(&format!("{} = ", with_kind(kind, &term.name)), &text, ""));
     w.titled(sign, place.description.as_deref());
     let signed: Parts = term.parts.iter().map(|&p| (p, Rational::integer(term.sign()))).collect();
     match shares(w, |cx, q| lagrange::residual(cx, &signed, q)) {
@@ -32,10 +32,6 @@ pub(super) fn term(w: &mut Writer<'_, '_>, k: usize) {
     }
     claims(w, k);
     w.missing();
-}
-
-fn term_label(kind: &str, name: &str) -> String {
-    if name.starts_with(kind) { name.to_owned() } else { format!("{kind} {name}") }
 }
 
 fn capital(word: &str) -> String {
@@ -147,14 +143,14 @@ pub(super) fn force(w: &mut Writer<'_, '_>, k: usize) {
             let parts: Parts = parts.iter().map(|&p| (p, Rational::ONE)).collect();
             let whole = w.total(&parts);
             let text = w.text(whole);
-            w.formulas(labelled(&format!("{} = ", term_label("dissipation", &force.name)), &text, ""));
+            w.formulas(labelled(&format!("{} = ", with_kind("dissipation", &force.name)), &text, ""));
             w.titled("Rayleigh dissipation function ℱ", place.description.as_deref());
         }
         Action::Applied(pairs) => {
             let mut lines = Vec::new();
             for (on, value) in pairs.iter().take(SHOWN) {
                 let (on, value) = (w.text(*on), w.text(*value));
-                lines.extend(labelled(&format!("{} on {on} = ", term_label("force", &force.name)), &value, ""));
+                lines.extend(labelled(&format!("{} on {on} = ", with_kind("force", &force.name)), &value, ""));
             }
             w.formulas(lines);
             w.titled("Applied force", place.description.as_deref());
@@ -221,25 +217,23 @@ pub(super) fn constraint(w: &mut Writer<'_, '_>, first: usize) {
     let mut lines = Vec::new();
     for &k in own.iter().take(SHOWN) {
         let text = w.text(model.constraints[k].f);
-        lines.extend(labelled(&format!("{}: ", term_label("constraint", &model.constraints[k].name)), &text, " = 0"));
+        lines.extend(labelled(&format!("{}: ", with_kind("constraint", &model.constraints[k].name)), &text, " = 0"));
     }
     if own.len() > SHOWN {
         lines.push(format!("and {} more", own.len() - SHOWN));
     }
     w.formulas(lines);
     let velocities = own.iter().any(|&k| lagrange::depends_on_velocities(w.maker.arena, model.constraints[k].f));
-    let kind = if velocities {
-        "constraint linear in the velocities; whether it can be integrated is not asked here"
-    } else {
-        "holonomic constraint"
+    let (kind, more) = match velocities {
+        true => ("", " linear in the velocities; whether it can be integrated is not asked here"),
+        false => ("holonomic ", ""),
     };
-    let many = if own.len() > 1 {
-        format!("{}, ", counted(own.len() as i64, "constraint", "constraints"))
-    } else {
-        String::new()
+    let title = match own.len() {
+        1 => capital(&format!("{kind}constraint{more}")),
+        n => format!("{n} {kind}constraints{more}"),
     };
     let item = crate::features::place::item_at(checked, start);
-    w.titled(capital(&format!("{many}{kind}")), item.and_then(|k| checked.items[k].description.as_deref()));
+    w.titled(title, item.and_then(|k| checked.items[k].description.as_deref()));
     let part = leastwise_mechanics::model::Model {
         constraints: own.iter().take(SHOWN).map(|&k| model.constraints[k].clone()).collect(),
         coordinates: model.coordinates.clone(),

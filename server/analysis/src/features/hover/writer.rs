@@ -244,6 +244,12 @@ pub(super) fn missing(checked: &Contents) -> Option<String> {
     Some(format!("without {list}, which {verb}"))
 }
 
+/// `kinetic bob`; of a term without a name its number, `kinetic 1`.
+pub(super) fn with_kind(kind: &str, name: &str) -> String {
+    let numbered = name.strip_prefix(kind).is_some_and(|n| n.trim_start().parse::<usize>().is_ok());
+    if numbered { name.to_owned() } else { format!("{kind} {name}") }
+}
+
 /// An item in a few words: `kinetic bob` in backquotes.
 pub(super) fn title(checked: &Contents, item: usize) -> String {
     let row = &checked.items[item];

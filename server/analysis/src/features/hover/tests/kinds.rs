@@ -268,7 +268,7 @@ fn claims_with_constraints() {
         η_x = -y
         η_y = x
         Q = m (x ẏ - y ẋ)
-        dQ/dt = -m g x   (term U)
+        dQ/dt = -m g x   (potential U)
     The flow preserves the constraints.
     "#);
     insta::assert_snapshot!(within(ROD, "symmetry $0side"), @r#"
@@ -589,7 +589,7 @@ fn what_is_left_of_a_broken_model() {
     Generator, canonical momentum, balance law of what is left of the model:
         η_r = 1
         p_r = m ṙ
-        dp_r/dt = -k r   (term spring)
+        dp_r/dt = -k r   (potential spring)
     "#);
     insta::assert_snapshot!(within(BROKEN, "conserved $0h"), @r#"
     `h`
