@@ -3,6 +3,7 @@
 mod examples;
 mod history;
 mod kinds;
+mod names;
 mod places;
 
 use super::{Block, Hover};
