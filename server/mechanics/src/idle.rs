@@ -95,10 +95,13 @@ mod tests {
     use crate::model::TermKind;
     use leastwise_algebra::Function;
 
-    fn check(f: &mut Fixture, want: &[(&[(usize, usize)], Option<Expr>)]) {
+    /// Term and part of each in a group, and F.
+    type Group<'a> = (&'a [(usize, usize)], Option<Expr>);
+
+    fn check(f: &mut Fixture, want: &[Group<'_>]) {
         let model = f.model.clone();
         let got = idle(&mut f.cx(), &model).unwrap();
-        let got: Vec<(&[(usize, usize)], Option<Expr>)> = got.iter().map(|i| (i.parts.as_slice(), i.gauge)).collect();
+        let got: Vec<Group<'_>> = got.iter().map(|i| (i.parts.as_slice(), i.gauge)).collect();
         assert_eq!(got, want);
     }
 

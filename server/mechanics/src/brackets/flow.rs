@@ -189,8 +189,8 @@ fn invert(cx: &mut Context<'_>, m: Vec<Vec<Expr>>) -> Result<Option<Vec<Vec<Expr
         .collect();
     for c in 0..n {
         let mut pivot = None;
-        for i in c..n {
-            if rows[i][c] != Arena::ZERO && cx.vanishes(&[(rows[i][c], Rational::ONE)]).is_refuted() {
+        for (i, row) in rows.iter().enumerate().skip(c) {
+            if row[c] != Arena::ZERO && cx.vanishes(&[(row[c], Rational::ONE)]).is_refuted() {
                 pivot = Some(i);
                 break;
             }

@@ -158,22 +158,27 @@ pub fn charge_algebra(
         MassVerdict::Undecided(why) => return Ok(Err(Refusal::Undecided(why))),
         MassVerdict::NotAsked => return Ok(Err(Refusal::LargeFamily)),
     }
-    let Some(phase) = Phase::new(cx, model, &rows)? else {
-        return Ok(Err(Refusal::Undecided("its inverse is too large".into())));
-    };
     let values: Vec<Expr> = charges.iter().map(|c| c.value).collect();
     let mut table = Table { values, basis: Vec::new(), flows: Vec::new(), central: Vec::new() };
     let mut dependent = Vec::new();
     for k in 0..charges.len() {
         match table.close(cx, table.values[k], false, &mut |cx, gap| cx.vanishes(&[(gap, Rational::ONE)]))? {
             Outcome::Closed(combination) => dependent.push(Dependent { charge: k, combination }),
-            _ => {
-                table.basis.push(k);
-                table.flows.push(phase.flow(cx, table.values[k])?);
-            }
+            _ => table.basis.push(k),
         }
     }
-    let brackets = table.fill(cx, &phase)?;
+    let brackets = if table.basis.len() < 2 {
+        table.central = table.basis.clone();
+        Vec::new()
+    } else {
+        let Some(phase) = Phase::new(cx, model, &rows)? else {
+            return Ok(Err(Refusal::Undecided("its inverse was not found".into())));
+        };
+        for &k in &table.basis {
+            table.flows.push(phase.flow(cx, table.values[k])?);
+        }
+        table.fill(cx, &phase)?
+    };
     let mut central_constants = Vec::new();
     for b in &brackets {
         let Outcome::Closed(list) = &b.outcome else { continue };
@@ -201,15 +206,12 @@ struct Table {
 impl Table {
     fn fill(&mut self, cx: &mut Context<'_>, phase: &Phase) -> Result<Vec<Bracket>, Stopped> {
         let n = self.basis.len();
-        let mut zero = vec![vec![false; n]; n];
-        let mut pairs = Vec::new();
-        for i in 0..n {
-            zero[i][i] = true;
-            for j in i + 1..n {
-                let vanishes = phase.equals(cx, &self.flows[i], &self.flows[j], Arena::ZERO).is_proved();
-                (zero[i][j], zero[j][i]) = (vanishes, vanishes);
-                pairs.push((i, j));
-            }
+        let pairs: Vec<(usize, usize)> = (0..n).flat_map(|i| (i + 1..n).map(move |j| (i, j))).collect();
+        let mut zero = vec![vec![true; n]; n];
+        for &(i, j) in &pairs {
+            let vanishes = phase.equals(cx, &self.flows[i], &self.flows[j], Arena::ZERO).is_proved();
+            zero[i][j] = vanishes;
+            zero[j][i] = vanishes;
         }
         self.central = (0..n).filter(|&i| zero[i].iter().all(|&z| z)).map(|i| self.basis[i]).collect();
         let mut out = Vec::new();

@@ -32,7 +32,7 @@ pub enum Condition {
     Parameter(Expr, Sign),
 }
 
-/// What the charges form.
+/// What the charges form, wherever the coefficients of their brackets are not zero.
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub struct Named {
     /// All must hold; none for a name without condition.

@@ -1,7 +1,8 @@
 //! Textbook algebras, with signs worked by hand.
 
 use super::*;
-use crate::fixture::{Fixture, kepler, rod};
+use crate::fixture::{Fixture, double_pendulum, kepler, rod};
+use crate::lagrange::lagrangian;
 use crate::model::TermKind;
 
 fn charges(list: &[(&str, Expr)]) -> Vec<Charge> {
@@ -326,4 +327,66 @@ fn what_has_no_brackets_is_refused() {
     let model = f.model.clone();
     let got = charge_algebra(&mut f.cx(), &model, &charges(&[("x", x), ("y", y)])).unwrap();
     assert_eq!(got, Err(Refusal::Singular));
+}
+
+/// Coordinates and momenta are canonical pairs, and {p, h} = ∂L/∂q [GPS §9.5], whatever couples the velocities.
+fn check_canonical(mut f: Fixture) {
+    let model = f.model.clone();
+    let mut cx = f.cx();
+    let rows = mass_rows(&mut cx, &model).unwrap();
+    let phase = Phase::new(&mut cx, &model, &rows).unwrap().expect("a regular matrix");
+    let l = lagrangian(&mut cx, &model).unwrap();
+    let (mut q, mut p, mut h, mut forces) = (Vec::new(), Vec::new(), vec![(l, Rational::MINUS_ONE)], Vec::new());
+    for c in &model.coordinates {
+        let (x, v) = (c.jet(cx.arena, 0), c.jet(cx.arena, 1));
+        let momentum = cx.arena.partial(l, v, cx.budget).unwrap();
+        h.push((cx.arena.mul(momentum, v), Rational::ONE));
+        q.push(phase.flow(&mut cx, x).unwrap());
+        p.push(phase.flow(&mut cx, momentum).unwrap());
+        forces.push(cx.arena.partial(l, x, cx.budget).unwrap());
+    }
+    let h = cx.arena.linear(&h);
+    let h = phase.flow(&mut cx, h).unwrap();
+    for i in 0..q.len() {
+        for j in 0..q.len() {
+            let delta = if i == j { Arena::ONE } else { Arena::ZERO };
+            assert!(phase.equals(&mut cx, &q[i], &p[j], delta).is_proved());
+            assert!(phase.equals(&mut cx, &p[i], &p[j], Arena::ZERO).is_proved());
+            assert!(phase.equals(&mut cx, &q[i], &q[j], Arena::ZERO).is_proved());
+            // The inverse on the graph says the same.
+            let built = phase.bracket(&mut cx, &q[i], &p[j]).unwrap();
+            assert!(cx.vanishes(&[(built, Rational::ONE), (delta, Rational::MINUS_ONE)]).is_proved());
+        }
+        assert!(phase.equals(&mut cx, &p[i], &h, forces[i]).is_proved());
+        let minus = cx.arena.neg(forces[i]);
+        assert!(phase.equals(&mut cx, &p[i], &h, minus).is_refuted());
+    }
+}
+
+#[test]
+fn momenta_of_coupled_coordinates_are_canonical() {
+    check_canonical(double_pendulum());
+    // Three coordinates, all coupled, with a gyroscopic term and a mass that moves.
+    let mut f = Fixture::new();
+    let q: Vec<(Expr, Expr)> = ["x", "y", "z"].iter().map(|a| f.coordinate(a)).collect();
+    let m = f.parameter("m");
+    for i in 0..3 {
+        let sum = f.arena.add(q[i].1, q[(i + 1) % 3].1);
+        let x2 = f.arena.pow(q[i].0, 2);
+        let heavy = f.arena.add(m, x2);
+        let part = f.half_square(heavy, sum);
+        let turning = f.arena.product(&[m, q[i].0, q[(i + 2) % 3].1]);
+        f.term(TermKind::Lagrangian, "pair", &[part, turning]);
+        let u = f.arena.product(&[m, q[i].0, q[(i + 1) % 3].0]);
+        f.term(TermKind::Potential, "spring", &[u]);
+    }
+    check_canonical(f);
+}
+
+#[test]
+fn a_spent_budget_stops() {
+    let (mut f, list, _) = orbit();
+    f.budget = leastwise_algebra::Budget::new(500);
+    let model = f.model.clone();
+    assert_eq!(charge_algebra(&mut f.cx(), &model, &charges(&list)), Err(Stopped::TooLarge));
 }
