@@ -210,6 +210,7 @@ mod tests {
     use super::*;
     use crate::fixture::{Fixture, double_pendulum, kepler};
     use crate::model::{Action, Force, TermKind};
+    use leastwise_algebra::Arena;
 
     fn check(f: &mut Fixture, angles: &[usize], want: &[(Discrete, Holds)]) -> Vec<DiscreteAnswer> {
         let model = f.model.clone();
@@ -301,6 +302,33 @@ mod tests {
         let got = check(&mut f, &[], &[(Discrete::TimeReversal, Holds::Exactly)]);
         assert!(got[0].rest.is_refuted(), "time");
         assert!(got[1].rest.is_proved() && got[2].rest.is_proved(), "reflections");
+    }
+
+    #[test]
+    fn a_long_chain_is_mirrored_as_a_whole() {
+        // Σ ½ m ẋᵢ² − Σ ½ k (xᵢ₊₁ − xᵢ)² over 10 000 masses; a weight on all of them breaks it.
+        let mut f = Fixture::new();
+        let (x, k) = (f.arena.symbol("x", None, Role::Coordinate), f.arena.symbol("k", None, Role::Index));
+        f.model.coordinates.push(Coordinate::family(x, k, 1, 10_000));
+        let i = f.arena.symbol("i", None, Role::Index);
+        let ie = f.arena.sym(i);
+        let next = f.arena.add(ie, Arena::ONE);
+        let (v, here, there) = (f.arena.member(x, ie, 1), f.arena.member(x, ie, 0), f.arena.member(x, next, 0));
+        let (m, c) = (f.parameter("m"), f.parameter("c"));
+        let gap = f.arena.sub(there, here);
+        let (one, last) = (Arena::ONE, f.arena.integer(10_000));
+        let before = f.arena.integer(9_999);
+        let (t, u) = (f.half_square(m, v), f.half_square(c, gap));
+        let t = f.arena.bound(i, one, last, t, &mut f.budget).unwrap();
+        let u = f.arena.bound(i, one, before, u, &mut f.budget).unwrap();
+        f.term(TermKind::Kinetic, "masses", &[t]);
+        f.term(TermKind::Potential, "springs", &[u]);
+        let kinds = [Discrete::TimeReversal, Discrete::Reflection(0)];
+        check(&mut f, &[], &kinds.map(|k| (k, Holds::Exactly)));
+        let w = f.arena.mul(m, here);
+        let w = f.arena.bound(i, one, last, w, &mut f.budget).unwrap();
+        f.term(TermKind::Potential, "weights", &[w]);
+        check(&mut f, &[], &[(kinds[0], Holds::Exactly), (kinds[1], Holds::Broken)]);
     }
 
     #[test]

@@ -74,6 +74,18 @@ fn a_charge_in_a_uniform_field() {
     check(&mut f, &list, &a, (0, 1), minus);
     // Guiding centre and velocity do not see each other.
     check(&mut f, &list, &a, (1, 2), Arena::ZERO);
+    // All charges of the plane: with L_z = m (x ẏ − y ẋ) + ½ q B r² as {L_z, tx} = ty, and the energy aside.
+    let l = angular(&mut f, m, q[0], q[1]);
+    let (x2, y2) = (f.half_square(qb, q[0].0), f.half_square(qb, q[1].0));
+    let lz = f.arena.sum(&[l, x2, y2]);
+    let (hx, hy) = (f.half_square(m, q[0].1), f.half_square(m, q[1].1));
+    let h = f.arena.add(hx, hy);
+    let list = [("tx", tx), ("ty", ty), ("Lz", lz), ("energy", h)];
+    let a = examine(&mut f, &list);
+    let minus = f.arena.neg(ty);
+    check(&mut f, &list, &a, (0, 2), minus);
+    assert_eq!(a.central, [3]);
+    assert_eq!(names(&a), [Some("oscillator algebra ⊕ ℝ")]);
 }
 
 #[test]
@@ -143,6 +155,31 @@ fn the_mass_is_the_central_charge_of_boosts() {
         assert_eq!(a.central_constants, [m]);
         assert_eq!(names(&a), [Some(name)]);
     }
+}
+
+#[test]
+fn dilation_and_expansion_of_the_plane() {
+    // With D = 2 t E − x·p and K = t² E − t x·p + ½ m x² beside Galilei's: sl(2,ℝ) on what is solvable [Niederer 1972].
+    let (mut f, list, m) = galilei(&["x", "y"]);
+    let mut list: Vec<(&str, Expr)> = list.iter().map(|(n, e)| (n.as_str(), *e)).collect();
+    let t = f.time();
+    let (x, y) =
+        (f.model.coordinates[0].clone().jet(&mut f.arena, 0), f.model.coordinates[1].clone().jet(&mut f.arena, 0));
+    let (a, b) = (f.arena.mul(x, list[0].1), f.arena.mul(y, list[1].1));
+    let xp = f.arena.add(a, b);
+    let te = f.arena.mul(t, list[4].1);
+    let d = f.arena.linear(&[(te, Rational::integer(2)), (xp, Rational::MINUS_ONE)]);
+    let (tte, txp) = (f.arena.mul(t, te), f.arena.mul(t, xp));
+    let (hx, hy) = (f.half_square(m, x), f.half_square(m, y));
+    let k =
+        f.arena.linear(&[(tte, Rational::ONE), (txp, Rational::MINUS_ONE), (hx, Rational::ONE), (hy, Rational::ONE)]);
+    list.extend([("dilation", d), ("expansion", k)]);
+    let got = examine(&mut f, &list);
+    // {E, K} = D: {p²/2m, m x²/2} = −x·p at t = 0.
+    check(&mut f, &list, &got, (4, 7), d);
+    assert!(got.closed());
+    assert_eq!(got.named[0].name, None);
+    assert_eq!(got.named[0].kind, "semidirect sum of so(2,1) and a solvable radical of dimension 6");
 }
 
 #[test]
