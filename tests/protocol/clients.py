@@ -49,3 +49,92 @@ PLAIN = {
         "codeAction": {"codeActionLiteralSupport": {"codeActionKind": {"valueSet": ["quickfix"]}}},
     },
 }
+
+KINDS = list(range(1, 26))
+
+# After what Visual Studio Code announces: it pulls, knows every kind, and can be asked and registered with.
+VSCODE = {
+    **FULL,
+    "window": {"workDoneProgress": True, "showMessage": {"messageActionItem": {"additionalPropertiesSupport": True}}},
+    "textDocument": {
+        **FULL["textDocument"],
+        "completion": {
+            "completionItem": {
+                "documentationFormat": ["markdown", "plaintext"],
+                "snippetSupport": True,
+                "insertReplaceSupport": True,
+                "labelDetailsSupport": True,
+                "commitCharactersSupport": True,
+                "preselectSupport": True,
+            },
+            "completionItemKind": {"valueSet": KINDS},
+        },
+        "documentSymbol": {"hierarchicalDocumentSymbolSupport": True, "symbolKind": {"valueSet": [*KINDS, 26]}},
+    },
+}
+
+# After what Neovim 0.11 announces: it pulls, counts bytes first, and takes no versions of edits.
+NEOVIM = {
+    "general": {"positionEncodings": ["utf-8", "utf-16", "utf-32"]},
+    "window": {"workDoneProgress": True, "showDocument": {"support": True}},
+    "workspace": {
+        "applyEdit": True,
+        "configuration": True,
+        "didChangeConfiguration": {"dynamicRegistration": False},
+        "didChangeWatchedFiles": {"dynamicRegistration": False},
+        "workspaceEdit": {"resourceOperations": ["rename", "create", "delete"]},
+        "inlayHint": {"refreshSupport": True},
+        "semanticTokens": {"refreshSupport": True},
+    },
+    "textDocument": {
+        "publishDiagnostics": {"relatedInformation": True, "tagSupport": {"valueSet": [1, 2]}, "dataSupport": True},
+        "diagnostic": {"dynamicRegistration": False},
+        "hover": {"contentFormat": ["markdown", "plaintext"]},
+        "completion": {
+            "completionItem": {"documentationFormat": ["markdown", "plaintext"], "snippetSupport": True},
+            "completionItemKind": {"valueSet": KINDS},
+        },
+        "definition": {"linkSupport": True},
+        "documentSymbol": {"hierarchicalDocumentSymbolSupport": True, "symbolKind": {"valueSet": [*KINDS, 26]}},
+        "rename": {"prepareSupport": True},
+        "codeAction": {
+            "codeActionLiteralSupport": {"codeActionKind": {"valueSet": ["", "quickfix"]}},
+            "isPreferredSupport": True,
+            "dataSupport": True,
+        },
+        "inlayHint": {"resolveSupport": {"properties": ["textEdits", "tooltip", "location", "command"]}},
+        "semanticTokens": {
+            "requests": {"full": {"delta": True}, "range": False},
+            "tokenTypes": [],
+            "tokenModifiers": [],
+            "formats": ["relative"],
+        },
+    },
+}
+
+# After what Emacs' eglot announces: it counts characters first, takes no Markdown without a mode for it, cannot prepare.
+EGLOT = {
+    "general": {"positionEncodings": ["utf-32", "utf-8", "utf-16"]},
+    "window": {"workDoneProgress": True},
+    "workspace": {
+        "applyEdit": True,
+        "configuration": True,
+        "didChangeWatchedFiles": {"dynamicRegistration": True},
+        "workspaceEdit": {"documentChanges": True},
+    },
+    "textDocument": {
+        "publishDiagnostics": {"relatedInformation": False, "codeDescriptionSupport": False, "tagSupport": {"valueSet": [1, 2]}},
+        "hover": {"contentFormat": ["plaintext"]},
+        "completion": {"completionItem": {"snippetSupport": False, "deprecatedSupport": True, "tagSupport": {"valueSet": [1]}}},
+        "definition": {"linkSupport": True},
+        "documentSymbol": {"hierarchicalDocumentSymbolSupport": True, "symbolKind": {"valueSet": [*KINDS, 26]}},
+        "rename": {"dynamicRegistration": False},
+        "codeAction": {
+            "codeActionLiteralSupport": {"codeActionKind": {"valueSet": ["quickfix"]}},
+            "isPreferredSupport": True,
+        },
+        "inlayHint": {"dynamicRegistration": False},
+    },
+}
+
+ALL = {"bare": BARE, "plain": PLAIN, "full": FULL, "pushed": PUSHED, "vscode": VSCODE, "neovim": NEOVIM, "eglot": EGLOT}

@@ -116,3 +116,33 @@ def test_included_files_as_the_editor_has_them():
             (path / "site.least").unlink()
             s.tell("workspace/didChangeWatchedFiles", {"changes": [{"uri": site.uri, "type": 3}]})
             s.until(lambda: "include-file" in codes(s.published[document.uri][-1][1]))
+
+
+def test_new_settings_are_pulled():
+    with Session(settings={"hints": {"momentum": True}}) as s:
+        document = s.open(GOOD)
+        document.diagnostics()
+        before = document.hints()
+        s.settings = {"hints": {"momentum": False}}
+        asked = len(s.asked)
+        s.tell("workspace/didChangeConfiguration", {"settings": None})
+        s.until(lambda: any(m == "workspace/inlayHint/refresh" for m, _ in s.asked[asked:]))
+        after = document.hints()
+        assert len(after) == len(before) - 1, (before, after)
+
+
+def test_new_settings_are_told_to_a_client_that_is_not_asked():
+    with Session(clients.PLAIN) as s:
+        document = s.open(GOOD)
+        before = document.hints()
+        s.tell("workspace/didChangeConfiguration", {"settings": {"leastwise": {"hints": {"momentum": False}}}})
+        after = document.hints()
+        assert len(after) == len(before) - 1, (before, after)
+
+
+def test_watchers_are_registered():
+    with Session() as s:
+        s.open(GOOD).diagnostics()
+        s.until(lambda: any(m == "client/registerCapability" for m, _ in s.asked))
+        ways = {r["method"] for m, p in s.asked if m == "client/registerCapability" for r in p["registrations"]}
+        assert ways == {"workspace/didChangeWatchedFiles", "workspace/didChangeConfiguration"}, ways

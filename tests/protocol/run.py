@@ -10,6 +10,7 @@ sys.path.insert(0, str(pathlib.Path(__file__).resolve().parent))
 
 import burst
 import diagnostics
+import editors
 import features
 import lifecycle
 import session
@@ -20,7 +21,7 @@ def main():
     session.PROGRAM, *rest = sys.argv[1:]
     only = rest[1] if rest[:1] == ["--only"] else ""
     passed = failed = 0
-    for module in (lifecycle, texts, diagnostics, features, burst):
+    for module in (lifecycle, texts, diagnostics, features, editors, burst):
         for name, test in list(vars(module).items()):
             if not name.startswith("test_") or only not in f"{module.__name__}.{name}":
                 continue

@@ -6,6 +6,7 @@ import queue
 import subprocess
 import threading
 
+from allowed import Allowed
 from clients import PUSHED
 from model import model
 
@@ -46,6 +47,8 @@ class Session:
         self.told = []
         self.asked = []
         self.texts = {}
+        self.sent = {}
+        self.allowed = Allowed(client)
         if begin:
             params = {"processId": os.getpid(), "rootUri": None, "capabilities": client}
             if options is not None:
@@ -117,6 +120,7 @@ class Session:
         if extra or ("result" in message) == ("error" in message):
             raise Wrong(f"a strange answer: {message}")
         if number is None:
+            self._check_error(message["error"])
             self.told.append(("error", message["error"]))
             return
         method = self.open_requests.pop(number, None)
@@ -126,7 +130,14 @@ class Session:
             errors = model().errors(method, "result", message["result"])
             if errors:
                 raise Wrong(errors[0])
+            self._complain(self.allowed.result(method, message["result"]))
+        if "error" in message:
+            self._check_error(message["error"])
         self.answers[number] = message
+
+    def _check_error(self, error):
+        if set(error) - {"code", "message", "data"} or type(error["code"]) is not int or not error["message"]:
+            raise Wrong(f"a strange error: {error}")
 
     def _news(self, message):
         method, params = message["method"], message.get("params")
@@ -135,49 +146,32 @@ class Session:
             raise Wrong(f"an unknown method: {method}")
         if errors := model().errors(method, "params", params):
             raise Wrong(errors[0])
-        self._allowed(method, params)
+        self._complain(self.allowed.news(method, params))
         if "id" in message:
             self.asked.append((method, params))
             result = None
             if method == "workspace/configuration":
                 result = [self.settings for _ in params["items"]]
-            self.send({"id": message["id"], "result": result})
+            if self.process.poll() is None:
+                self.send({"id": message["id"], "result": result})
         elif method == "textDocument/publishDiagnostics":
             uri, version = params["uri"], params.get("version")
+            if version is not None and uri in self.sent:
+                self._in_order(uri, version)
             self.published.setdefault(uri, []).append((version, params["diagnostics"]))
         else:
             self.told.append((method, params))
 
-    def _allowed(self, method, params):
-        """Nothing that the client did not say it can take."""
+    def _complain(self, complaints):
+        for complaint in complaints:
+            raise Wrong(complaint)
 
-        def can(*path):
-            place = self.client
-            for key in path:
-                place = place.get(key) if isinstance(place, dict) else None
-            return place
-
-        work, text = ("workspace",), ("textDocument",)
-        needs = {
-            "workspace/configuration": can(*work, "configuration"),
-            "client/registerCapability": can(*work, "didChangeConfiguration", "dynamicRegistration"),
-            "workspace/inlayHint/refresh": can(*work, "inlayHint", "refreshSupport"),
-            "workspace/semanticTokens/refresh": can(*work, "semanticTokens", "refreshSupport"),
-            "workspace/diagnostic/refresh": can(*work, "diagnostics", "refreshSupport"),
-        }
-        if method in needs and not needs[method]:
-            raise Wrong(f"{method}, which the client cannot")
-        if method == "textDocument/publishDiagnostics":
-            push = can(*text, "publishDiagnostics") or {}
-            if can(*text, "diagnostic") is not None:
-                raise Wrong("diagnostics pushed to a client that pulls")
-            if "version" in params and not push.get("versionSupport"):
-                raise Wrong("a version for a client that knows none")
-            for d in params["diagnostics"]:
-                if "relatedInformation" in d and not push.get("relatedInformation"):
-                    raise Wrong("related places for a client that knows none")
-                if "tags" in d and not push.get("tagSupport"):
-                    raise Wrong("tags for a client that knows none")
+    def _in_order(self, uri, version):
+        """Only versions that were sent, and none after a newer one."""
+        sent, last = self.sent[uri]
+        if version not in sent[last:]:
+            raise Wrong(f"diagnostics of version {version}, which is not or no longer due: {sent[last:][:3]}")
+        self.sent[uri][1] = sent.index(version, last)
 
     def answer(self, number, wait=WAIT):
         """The result of a request. Raises `Refused` for an error."""
@@ -203,6 +197,8 @@ class Session:
         document = {"uri": uri, "languageId": "leastwise", "version": version, "text": text}
         self.texts[uri] = [version, text]
         self.published.pop(uri, None)
+        before = self.sent.get(uri)
+        self.sent[uri] = [before[0] + [version] if before else [version], before[1] if before else 0]
         self.tell("textDocument/didOpen", {"textDocument": document})
         return Document(self, uri)
 
@@ -210,6 +206,14 @@ class Session:
         self.ask("shutdown", None)
         self.tell("exit", None)
         return self.process.wait(timeout=WAIT)
+
+    def _to_the_end(self):
+        """What came last is checked too."""
+        try:
+            while True:
+                self.next(10)
+        except EOFError:
+            return
 
     def __enter__(self):
         return self
@@ -220,6 +224,7 @@ class Session:
                 self.drain()
                 status = self.end()
                 assert status == 0, f"exit status {status}"
+                self._to_the_end()
                 if self.open_requests:
                     raise Wrong(f"never answered: {self.open_requests}")
         finally:
@@ -241,6 +246,7 @@ class Document:
     def change(self, *changes, version=None):
         version = self.version + 1 if version is None else version
         self.session.texts[self.uri][0] = version
+        self.session.sent[self.uri][0].append(version)
         self.session.tell(
             "textDocument/didChange",
             {"textDocument": {"uri": self.uri, "version": version}, "contentChanges": list(changes)},
@@ -257,6 +263,11 @@ class Document:
         seen = lambda: [d for v, d in self.session.published.get(self.uri, []) if v == self.version]
         self.session.until(seen)
         return seen()[-1]
+
+    def unversioned(self):
+        """The first that are pushed, for a client that is told no versions."""
+        self.session.until(lambda: self.session.published.get(self.uri))
+        return self.session.published[self.uri][-1][1]
 
     def pull(self, previous=None):
         params = dict(self.id)

@@ -122,3 +122,28 @@ def test_random_edits_in_utf_8():
 
 def test_random_edits_in_utf_32():
     random_edits("utf-32", 3)
+
+
+def test_every_end_of_a_line():
+    lines = ["coordinate x: length", "parameter m = 2 kg", "kinetic T = 1/2 m x'^2", "potential V = m q"]
+    found = []
+    for ends in (("\n",) * 4, ("\r\n",) * 4, ("\r",) * 4, ("\r", "\r\n", "\n", "")):
+        with Session() as s:
+            document = s.open("".join(a + b for a, b in zip(lines, ends)))
+            found.append(([d["range"] for d in document.diagnostics()], document.hover(2, 18), document.tokens()["data"]))
+    assert found[0][0] and all(f == found[0] for f in found), found
+
+
+def test_an_edit_between_the_two_signs_of_a_line_end():
+    with Session() as s:
+        document = s.open("coordinate x\r\nkinetic x'^2\r\n")
+        # The end of a line is before both: a place behind it does not exist.
+        document.edit(0, 13, 13, ", y")
+        assert [row["name"] for row in document.symbols()][:2] == ["x", "y"]
+
+
+def test_a_place_inside_of_a_pair_is_before_it():
+    with Session() as s:
+        document = s.open("coordinate 𝑥\nkinetic 𝑥̇^2\n")
+        document.edit(0, 12, 12, "a")
+        assert [row["name"] for row in document.symbols()][0] == "a𝑥"

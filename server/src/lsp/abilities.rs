@@ -48,7 +48,32 @@ pub struct Abilities {
     pub prepares_rename: bool,
     /// Tooltips of hints may come later.
     pub resolves_hints: bool,
+    /// The kinds of completions that it knows, where it says.
+    completion_kinds: Option<Vec<lsp::CompletionItemKind>>,
+    /// The kinds of symbols that it knows, where it says.
+    symbol_kinds: Option<Vec<lsp::SymbolKind>>,
 }
+
+/// Kinds that a client knows only if it says so: the protocol's first version had the others.
+const LATER_COMPLETIONS: [lsp::CompletionItemKind; 7] = [
+    lsp::CompletionItemKind::FOLDER,
+    lsp::CompletionItemKind::ENUM_MEMBER,
+    lsp::CompletionItemKind::CONSTANT,
+    lsp::CompletionItemKind::STRUCT,
+    lsp::CompletionItemKind::EVENT,
+    lsp::CompletionItemKind::OPERATOR,
+    lsp::CompletionItemKind::TYPE_PARAMETER,
+];
+const LATER_SYMBOLS: [lsp::SymbolKind; 8] = [
+    lsp::SymbolKind::OBJECT,
+    lsp::SymbolKind::KEY,
+    lsp::SymbolKind::NULL,
+    lsp::SymbolKind::ENUM_MEMBER,
+    lsp::SymbolKind::STRUCT,
+    lsp::SymbolKind::EVENT,
+    lsp::SymbolKind::OPERATOR,
+    lsp::SymbolKind::TYPE_PARAMETER,
+];
 
 impl Default for Abilities {
     fn default() -> Abilities {
@@ -75,6 +100,8 @@ impl Abilities {
         let item = text.completion.as_ref().and_then(|c| c.completion_item.clone()).unwrap_or_default();
         let action = text.code_action.clone().unwrap_or_default();
         let hints = text.inlay_hint.clone().unwrap_or_default();
+        let completion_kinds = text.completion.as_ref().and_then(|c| c.completion_item_kind.clone()?.value_set);
+        let symbol_kinds = text.document_symbol.as_ref().and_then(|d| d.symbol_kind.clone()?.value_set);
         Abilities {
             encoding: Encoding::agreed(general.position_encodings.as_deref()),
             pulls: text.diagnostic.is_some(),
@@ -97,6 +124,20 @@ impl Abilities {
             registers_files: yes(work.did_change_watched_files.and_then(|d| d.dynamic_registration)),
             prepares_rename: yes(text.rename.and_then(|r| r.prepare_support)),
             resolves_hints: hints.resolve_support.is_some_and(|r| r.properties.iter().any(|p| p == "tooltip")),
+            completion_kinds,
+            symbol_kinds,
         }
+    }
+
+    /// The kind, or none where the client does not know it.
+    pub fn completion_kind(&self, kind: lsp::CompletionItemKind) -> Option<lsp::CompletionItemKind> {
+        let known = self.completion_kinds.as_ref().map_or(!LATER_COMPLETIONS.contains(&kind), |k| k.contains(&kind));
+        known.then_some(kind)
+    }
+
+    /// The kind, or that of a variable where the client does not know it.
+    pub fn symbol_kind(&self, kind: lsp::SymbolKind) -> lsp::SymbolKind {
+        let known = self.symbol_kinds.as_ref().map_or(!LATER_SYMBOLS.contains(&kind), |k| k.contains(&kind));
+        if known { kind } else { lsp::SymbolKind::VARIABLE }
     }
 }

@@ -138,11 +138,12 @@ fn cut(label: &str, most: usize) -> String {
 /// The outline.
 pub fn symbols(view: &mut View<'_>) -> Result<Option<lsp::DocumentSymbolResponse>> {
     let rows = outline::outline(view.checked);
-    if view.shared.abilities().tree {
-        return Ok(Some(lsp::DocumentSymbolResponse::Nested(convert::symbols(&rows, view.positions))));
+    let abilities = view.shared.abilities();
+    if abilities.tree {
+        return Ok(Some(lsp::DocumentSymbolResponse::Nested(convert::symbols(&rows, view.positions, abilities))));
     }
     let mut flat = Vec::new();
-    convert::flat_symbols(&rows, view.positions, &view.document.uri, None, &mut flat);
+    convert::flat_symbols(&rows, view.positions, abilities, &view.document.uri, None, &mut flat);
     Ok(Some(lsp::DocumentSymbolResponse::Flat(flat)))
 }
 

@@ -32,7 +32,7 @@ fn item(k: usize, c: Completion, range: lsp::Range, abilities: &Abilities) -> ls
     });
     lsp::CompletionItem {
         filter_text: (c.filter != c.label).then_some(c.filter),
-        kind: Some(kind(c.kind)),
+        kind: abilities.completion_kind(kind(c.kind)),
         detail: (!c.detail.is_empty()).then_some(c.detail),
         documentation,
         // The order of the list is the one to be shown.

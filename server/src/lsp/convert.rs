@@ -159,18 +159,18 @@ pub fn escaped(text: &str) -> String {
 
 /// The outline as a tree.
 #[allow(deprecated)]
-pub fn symbols(rows: &[OutlineRow], positions: &Positions) -> Vec<lsp::DocumentSymbol> {
+pub fn symbols(rows: &[OutlineRow], positions: &Positions, abilities: &Abilities) -> Vec<lsp::DocumentSymbol> {
     rows.iter()
         .map(|row| lsp::DocumentSymbol {
             // An empty name is refused by some clients.
             name: if row.name.trim().is_empty() { "—".into() } else { row.name.clone() },
             detail: (!row.detail.is_empty()).then(|| row.detail.clone()),
-            kind: symbol_kind(row.kind),
+            kind: abilities.symbol_kind(symbol_kind(row.kind)),
             tags: None,
             deprecated: None,
             range: positions.range(&row.range),
             selection_range: positions.range(&row.selection),
-            children: (!row.children.is_empty()).then(|| symbols(&row.children, positions)),
+            children: (!row.children.is_empty()).then(|| symbols(&row.children, positions, abilities)),
         })
         .collect()
 }
@@ -180,6 +180,7 @@ pub fn symbols(rows: &[OutlineRow], positions: &Positions) -> Vec<lsp::DocumentS
 pub fn flat_symbols(
     rows: &[OutlineRow],
     positions: &Positions,
+    abilities: &Abilities,
     uri: &lsp::Uri,
     container: Option<&str>,
     out: &mut Vec<lsp::SymbolInformation>,
@@ -187,13 +188,13 @@ pub fn flat_symbols(
     for row in rows {
         out.push(lsp::SymbolInformation {
             name: row.name.clone(),
-            kind: symbol_kind(row.kind),
+            kind: abilities.symbol_kind(symbol_kind(row.kind)),
             tags: None,
             deprecated: None,
             location: lsp::Location { uri: uri.clone(), range: positions.range(&row.range) },
             container_name: container.map(Into::into),
         });
-        flat_symbols(&row.children, positions, uri, Some(&row.name), out);
+        flat_symbols(&row.children, positions, abilities, uri, Some(&row.name), out);
     }
 }
 
