@@ -141,12 +141,39 @@ local function drive()
   wait(function() return (sheet() or ""):find("Equations of motion", 1, true) ~= nil end)
   check("the sheet is shown", (sheet() or ""):find("Equations of motion", 1, true) ~= nil, sheet() or "none")
 
-  -- A crash.
-  local before = client().id
-  vim.system({ "pkill", "-9", "-f", vim.env.LEASTWISE_PROGRAM .. " lsp" }):wait()
-  wait(function() local now = client() return now ~= nil and now.id ~= before and now.initialized end)
-  local now = client()
-  check("the server is started anew after a crash", now ~= nil and now.id ~= before, vim.lsp.get_clients())
+  -- Settings, which the server pulls anew.
+  vim.api.nvim_buf_set_lines(0, -2, -1, false, {})
+  local function summed()
+    return vim.iter(vim.lsp.inlay_hint.get({ bufnr = 0 })):any(function(h) return h.inlay_hint.label:find("degrees of freedom", 1, true) ~= nil end)
+  end
+  wait(summed)
+  local shown = summed()
+  client().settings = { leastwise = { hints = { summary = false } } }
+  client():notify("workspace/didChangeConfiguration", { settings = client().settings })
+  wait(function() return not summed() end)
+  check("settings are pulled", shown and not summed(), vim.lsp.inlay_hint.get({ bufnr = 0 }))
+
+  -- Crashes. The server is a child of this Neovim.
+  local function kill()
+    for _, pid in ipairs(vim.api.nvim_get_proc_children(vim.fn.getpid())) do
+      local child = vim.api.nvim_get_proc(pid)
+      if child and child.name:find("leastwise", 1, true) then vim.uv.kill(pid, "sigkill") end
+    end
+  end
+  local function crash()
+    local before = client().id
+    kill()
+    return wait(function() local now = client() return now ~= nil and now.id ~= before and now.initialized end)
+  end
+  check("the server is started anew after a crash", crash(), vim.lsp.get_clients())
+  check("and again", crash() and crash())
+  local said = {}
+  vim.notify = function(text) table.insert(said, text) end
+  kill()
+  wait(function() return table.concat(said):find("LeastwiseRestart", 1, true) ~= nil end)
+  check("not without end, and it is said", #said > 0 and client() == nil, said)
+  vim.cmd("LeastwiseRestart")
+  check("a restart can be asked for", wait(function() return client() ~= nil and client().initialized end))
 end
 
 -- As a user: after the start.
