@@ -157,13 +157,17 @@ pub fn escaped(text: &str) -> String {
     out
 }
 
+/// A row's name. An empty one is refused by some clients.
+fn named(row: &OutlineRow) -> String {
+    if row.name.trim().is_empty() { "—".into() } else { row.name.clone() }
+}
+
 /// The outline as a tree.
 #[allow(deprecated)]
 pub fn symbols(rows: &[OutlineRow], positions: &Positions, abilities: &Abilities) -> Vec<lsp::DocumentSymbol> {
     rows.iter()
         .map(|row| lsp::DocumentSymbol {
-            // An empty name is refused by some clients.
-            name: if row.name.trim().is_empty() { "—".into() } else { row.name.clone() },
+            name: named(row),
             detail: (!row.detail.is_empty()).then(|| row.detail.clone()),
             kind: abilities.symbol_kind(symbol_kind(row.kind)),
             tags: None,
@@ -187,7 +191,7 @@ pub fn flat_symbols(
 ) {
     for row in rows {
         out.push(lsp::SymbolInformation {
-            name: row.name.clone(),
+            name: named(row),
             kind: abilities.symbol_kind(symbol_kind(row.kind)),
             tags: None,
             deprecated: None,

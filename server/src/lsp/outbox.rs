@@ -2,6 +2,7 @@
 
 use super::documents::{Document, lock};
 use super::shared::Shared;
+use std::sync::atomic::Ordering;
 use std::sync::{Arc, Mutex};
 use std::time::Duration;
 use tokio::sync::mpsc;
@@ -68,6 +69,10 @@ impl Outbox {
 /// Carries the letters out until there is nobody left to write any.
 pub async fn carry(mut letters: Letters, client: Client, shared: Arc<Shared>) {
     while let Some(news) = letters.0.recv().await {
+        // After `shutdown` nothing is told any more.
+        if shared.shut.load(Ordering::Relaxed) {
+            continue;
+        }
         match news {
             News::Diagnostics(document) => {
                 let Some((change, version, list)) = lock(&document.waiting.0).take() else { continue };
