@@ -419,7 +419,7 @@ pub(crate) const WITHOUT: &[(&str, &str, &str, &str)] = &[
         "coordinate x, y\nkinetic x'^2 + y'^2\nconstraint x'^2 = y'\n",
         "write constraints of positions, or such that are linear in the velocities"),
     ("empty-sum", "which range is wrong is the writer's to say",
-        "index i: 1..3\ncoordinate x[i]\nkinetic sum(i: x[i]'^2)\npotential sum(i: sum(j in i+2..3: x[i] x[j]))\n",
+        "index i: 1..100\ncoordinate x[i]\nkinetic sum(i: x[i]'^2)\npotential sum(i: sum(j in i+2..100: x[i] x[j]))\n",
         "begin the outer index later, if the empty sum is not meant to be zero"),
     ("force-target", "what the force acts on is the writer's to say",
         "coordinate x\nparameter k\nkinetic x'^2\nforce push on k = 1\n",
