@@ -1,25 +1,33 @@
-//! Where a cursor is, told from the signs before it alone: the item is nearly always broken while it is typed.
+//! Where a cursor is, told from the pieces of its item: the item is nearly always broken while it is typed.
 
-use leastwise_grammar::{WordKind, words};
-use std::ops::Range;
+use super::pieces::{Piece, before_cursor, find, indices, names, open_brackets, parts, written};
+use super::run;
+use super::units::{Fitting, Units, behind_colon, in_value};
+use super::words::item_keyword;
+use leastwise_grammar::{WordKind, fold_name, words};
 
 /// What can stand at the cursor.
 #[derive(Clone, PartialEq, Eq, Debug)]
 pub(super) enum Context {
-    /// An item begins: keywords; behind these modifiers only some.
-    Item(Option<&'static str>),
-    /// A new name: what is used and nowhere declared.
-    NewName,
-    /// A quantity or unit, behind a colon.
-    Quantity,
-    /// A unit, behind a number; the quantity that was declared.
-    Unit(Option<String>),
-    /// One of these words.
-    Words(&'static [&'static str]),
-    /// A formula.
-    Formula(Place),
     /// Nothing.
     Nothing,
+    /// One of these words.
+    Words(Vec<&'static str>),
+    /// A new name, declared by an item with this keyword: what is used and nowhere declared.
+    NewName(&'static str),
+    /// A quantity or a unit, behind a colon.
+    Quantity,
+    /// A unit.
+    Unit(Units),
+    /// A unit in an initial value.
+    InitialUnit {
+        /// The coordinate or velocity that the value is of, with its primes.
+        of: String,
+        /// The value so far.
+        value: String,
+    },
+    /// A formula.
+    Formula(Place),
 }
 
 /// What kind of formula.
@@ -29,366 +37,311 @@ pub(super) struct Place {
     pub item: &'static str,
     /// What is wanted most.
     pub wanted: Wanted,
-    /// Names that the item binds so far: formal arguments, indices, ε.
-    pub bound: Vec<String>,
+    /// The names that the item binds here, the innermost first.
+    pub bound: Vec<Bound>,
+    /// Names that stand already, and should not stand again.
+    pub taken: Vec<String>,
+    /// Names that are wanted before the others.
+    pub first: Vec<String>,
+    /// Keywords that can stand here too.
+    pub words: Vec<&'static str>,
+}
+
+/// A name that an item binds.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub(super) struct Bound {
+    /// The folded name.
+    pub name: String,
+    /// What binds it.
+    pub binder: Binder,
+}
+
+/// What binds a name.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub(super) enum Binder {
+    /// The head of a function or definition.
+    Formal,
+    /// A sum, or the head of a family.
+    Index,
+    /// A transformation: ε.
+    Transformation,
 }
 
 /// What a formula wants most at its place.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
 pub(super) enum Wanted {
-    /// Anything.
+    /// What its item is usually made of.
     Anything,
+    /// What a force acts on: coordinates.
+    ActedOn,
     /// An index, between square brackets.
     Index,
+    /// The index of a family in the head of its declaration.
+    FamilyIndex,
     /// A declared index, right behind `sum(`.
     SumIndex,
+    /// A whole number: the bound of a range.
+    Whole,
     /// A coordinate or the time, on the left of an arrow.
     Moved,
-    /// A coordinate or velocity, that begins a run.
+    /// What it goes over into, on the right.
+    Image,
+    /// A coordinate or velocity, which begins a run.
     State,
     /// An input or function.
     Signal,
+    /// The formula of an input or function.
+    SignalValue,
+    /// A coordinate: the argument of `momentum`.
+    Coordinate,
+    /// A unit vector: the axis of a turn.
+    Axis,
+    /// A constant, set to one for the whole system.
+    Constant,
 }
 
-/// A piece before the cursor.
-struct Piece<'t> {
-    kind: WordKind,
-    text: &'t str,
-    range: Range<usize>,
-}
-
-/// The keywords that begin an item.
-const ITEMS: [&str; 20] = [
-    "system",
-    "coordinate",
-    "parameter",
-    "input",
-    "index",
-    "let",
-    "function",
-    "assume",
-    "kinetic",
-    "potential",
-    "lagrangian",
-    "dissipation",
-    "force",
-    "constraint",
-    "symmetry",
-    "conserved",
-    "run",
-    "include",
-    "cyclic",
-    "broken",
-];
-
-/// Where the cursor is: `before` is the item's text up to the word that is being typed.
-pub(super) fn context(before: &str, first_column: bool) -> Context {
-    if first_column {
-        return Context::Item(None);
+impl Place {
+    pub(super) fn of(item: &'static str, wanted: Wanted) -> Place {
+        Place { item, wanted, bound: Vec::new(), taken: Vec::new(), first: Vec::new(), words: Vec::new() }
     }
-    let pieces: Vec<Piece<'_>> =
-        words(before).map(|(s, kind)| Piece { kind, text: &before[s.range()], range: s.range() }).collect();
-    let open_comment = pieces.last().is_some_and(|p| p.kind == WordKind::Comment && p.range.end == before.len());
-    let open_text =
-        pieces.last().is_some_and(|p| p.kind == WordKind::Text && !(p.text.len() > 1 && p.text.ends_with('"')));
-    // A digit right before the cursor belongs to a number.
-    let in_number = pieces.last().is_some_and(|p| {
-        p.kind == WordKind::Number && p.range.end == before.len() && before.ends_with(|c: char| c.is_ascii_digit())
-    });
-    if open_comment || open_text {
+}
+
+/// Where the cursor is: `before` is the item's text up to the word that is being typed, `typed` that word up to the
+/// cursor, `after` what follows the word.
+pub(super) fn context(before: &str, typed: &str, after: &str) -> Context {
+    let Some(pieces) = before_cursor(before) else { return Context::Nothing };
+    if pieces.last().is_some_and(|last| last.range.end == before.len() && is_closed(&pieces, last, typed)) {
         return Context::Nothing;
     }
-    let pieces: Vec<Piece<'_>> = pieces.into_iter().filter(|p| p.kind != WordKind::Comment).collect();
-    let Some((head, mut rest)) = pieces.split_first() else { return Context::Item(None) };
-    let Some(mut item) = ITEMS.iter().copied().find(|k| *k == head.text) else { return Context::Nothing };
+    let Some((head, mut rest)) = pieces.split_first() else { return Context::Nothing };
+    let Some(mut item) = item_keyword(head.text).filter(|_| head.is_word()) else { return Context::Nothing };
     if matches!(item, "cyclic" | "broken") {
         let wanted = if item == "cyclic" { "coordinate" } else { "symmetry" };
         match rest.split_first() {
-            Some((next, more)) if next.text == wanted => (item, rest) = (wanted, more),
-            _ => return Context::Item(Some(wanted)),
+            Some((next, more)) if item_keyword(next.text) == Some(wanted) => (item, rest) = (wanted, more),
+            None => return Context::Words(vec![wanted]),
+            _ => return Context::Nothing,
         }
     }
-    let bound = bound(item, rest);
-    let formula = |wanted| Context::Formula(Place { item, wanted, bound: bound.clone() });
-    let depth = depth(rest);
-    if let Some(b'[') = depth.last() {
-        // The head of a family names its index; elsewhere a member is chosen.
-        return formula(Wanted::Index);
+    let context = match item {
+        "system" => system(rest),
+        "coordinate" | "input" | "function" | "index" => declaration(item, rest),
+        "parameter" => parameter(before, rest),
+        "let" => definition(rest),
+        "assume" => Context::Formula(Place::of(item, Wanted::Anything)),
+        "kinetic" | "potential" | "lagrangian" | "dissipation" | "conserved" => titled(item, rest),
+        "force" => force(rest),
+        "constraint" => constraint(rest),
+        "symmetry" => symmetry(rest),
+        "run" => run::context(before, rest, after),
+        _ => Context::Nothing,
+    };
+    match context {
+        Context::Formula(place) => within(place, rest),
+        // A quantity stands alone; what goes on is a product of units.
+        Context::Quantity if goes_on(after) => Context::Unit(Units::default()),
+        other => other,
     }
-    let last = rest.last().map_or("", |p| p.text);
-    let before_last = rest.len().checked_sub(2).and_then(|k| rest.get(k)).map_or("", |p| p.text);
-    if last == "(" && before_last == "sum" {
-        return formula(Wanted::SumIndex);
+}
+
+/// Whether nothing can go on right behind a piece: a number, a name with its primes, a closed bracket. What is typed there is
+/// a factor, unless it belongs to the number.
+fn is_closed(pieces: &[Piece<'_>], last: &Piece<'_>, typed: &str) -> bool {
+    if last.is_number() && typed.strip_prefix(['e', 'E']).is_some_and(|rest| rest.chars().all(|c| c.is_ascii_digit())) {
+        return true;
     }
-    let sum_head = rest.len() >= 3 && rest[rest.len() - 3].text == "sum" && before_last == "(";
-    if sum_head && rest.last().is_some_and(|p| p.kind == WordKind::Word) {
-        return Context::Words(&["in"]);
-    }
-    let has = |sign: &str| rest.iter().any(|p| p.text == sign);
-    match item {
-        "system" => match (rest.len(), last) {
-            (0, _) => Context::Nothing,
-            (_, ",") => Context::Words(&["dimensionless", "with"]),
-            _ => Context::Nothing,
-        },
-        "coordinate" | "input" => {
-            if !has(":") {
-                // A name is followed by a sign, not by another name.
-                return if rest.is_empty() || last == "," { Context::NewName } else { Context::Nothing };
-            }
-            if matches!(last, ":" | "/" | "*" | "·") { Context::Quantity } else { Context::Nothing }
+    let bars = || pieces.iter().filter(|p| p.text == "|").count();
+    let closes = match last.kind {
+        WordKind::Sign => {
+            matches!(last.text, ")" | "]" | "." | "°" | "%" | "°C") || last.text == "|" && bars() % 2 == 0
         }
-        "parameter" => parameter(rest, &depth, in_number),
-        "index" => {
-            if has(":") {
-                formula(Wanted::Anything)
-            } else {
-                Context::NewName
-            }
-        }
-        "let" if !has("=") => Context::NewName,
-        "function" => {
-            if matches!(last, ":") {
-                Context::Quantity
-            } else {
-                Context::NewName
-            }
-        }
-        "let" | "assume" => formula(Wanted::Anything),
-        "kinetic" | "potential" | "lagrangian" | "dissipation" | "conserved" => {
-            // The first word may be a name; a sign behind it makes it a formula.
-            if has("=") || rest.len() > 1 || rest.first().is_some_and(|p| p.kind != WordKind::Word) {
-                formula(Wanted::Anything)
-            } else {
-                Context::Nothing
-            }
-        }
-        "force" => {
-            if has("=") || has("on") {
-                formula(Wanted::Anything)
-            } else if rest.is_empty() {
-                Context::Nothing
-            } else {
-                Context::Words(&["on"])
-            }
-        }
-        "constraint" => {
-            if has(":") {
-                formula(Wanted::Anything)
-            } else {
-                Context::Nothing
-            }
-        }
-        "symmetry" => symmetry(rest, &depth, &formula),
-        "run" => run(rest, in_number, &formula),
+        _ => true,
+    };
+    typed.is_empty() && closes
+}
+
+/// Whether a unit goes on behind the word under the cursor.
+fn goes_on(after: &str) -> bool {
+    let next = words(after).find(|(_, kind)| *kind != WordKind::Comment).map(|(span, _)| &after[span.range()]);
+    next.is_some_and(|text| !matches!(text, "," | "="))
+}
+
+fn system(rest: &[Piece<'_>]) -> Context {
+    let parts = parts(rest);
+    let Some((part, named)) = parts.split_last().filter(|(_, named)| !named.is_empty()) else {
+        return Context::Nothing;
+    };
+    let with = named.iter().any(|p| p.first().is_some_and(|p| p.text == "with"));
+    match part {
+        [] if with => Context::Formula(Place::of("system", Wanted::Constant)),
+        [] => Context::Words(vec!["dimensionless", "with"]),
+        [word] if word.text == "with" => Context::Formula(Place::of("system", Wanted::Constant)),
         _ => Context::Nothing,
     }
 }
 
-/// The brackets that are open at the end.
-fn depth(pieces: &[Piece<'_>]) -> Vec<u8> {
-    let mut open = Vec::new();
-    for p in pieces {
-        match p.text {
-            "(" | "[" => open.push(p.text.as_bytes()[0]),
-            ")" | "]" => drop(open.pop()),
-            _ => {}
-        }
+/// `coordinate x[i], y: length`, `input u: torque`, `function U(r): energy`, `index i: 1..8`.
+fn declaration(item: &'static str, rest: &[Piece<'_>]) -> Context {
+    match find(rest, &[":"]) {
+        Some(_) if item == "index" => Context::Formula(Place::of(item, Wanted::Whole)),
+        Some(colon) => behind_colon(&rest[colon + 1..]),
+        None => new_name(item, rest),
     }
-    open
 }
 
-/// What stands behind the last comma outside of brackets.
-fn last_part<'p, 't>(pieces: &'p [Piece<'t>]) -> &'p [Piece<'t>] {
-    let (mut open, mut start) = (0_usize, 0);
-    for (k, p) in pieces.iter().enumerate() {
-        match p.text {
-            "(" | "[" => open += 1,
-            ")" | "]" => open = open.saturating_sub(1),
-            "," if open == 0 => start = k + 1,
-            _ => {}
-        }
-    }
-    &pieces[start..]
-}
-
-fn parameter(rest: &[Piece<'_>], open: &[u8], in_number: bool) -> Context {
-    let part = last_part(rest);
-    let last = part.last().map_or("", |p| p.text);
-    let equals = part.iter().position(|p| p.text == "=");
-    let colon = part.iter().position(|p| p.text == ":");
-    if let Some(equals) = equals {
-        let number = part[equals..].iter().any(|p| p.kind == WordKind::Number);
-        let quantity = colon.and_then(|c| part.get(c + 1)).filter(|p| p.kind == WordKind::Word);
-        let unit_follows =
-            matches!(last, "/" | "*" | "·") || part.last().is_some_and(|p| p.kind == WordKind::Number || p.text == ")");
-        let more = part[equals..].iter().any(|p| p.kind == WordKind::Word);
-        return if number && open.is_empty() && !in_number && (unit_follows || more) {
-            Context::Unit(quantity.map(|p| p.text.to_owned()))
-        } else {
-            Context::Nothing
-        };
-    }
-    match colon {
-        Some(_) if matches!(last, ":" | "/" | "*" | "·") => Context::Quantity,
+/// The head of a declaration.
+fn new_name(item: &'static str, rest: &[Piece<'_>]) -> Context {
+    let lists = !matches!(item, "function" | "let");
+    match open_brackets(rest).last() {
+        Some(&open) if rest[open].text == "[" => Context::Formula(Place::of(item, Wanted::FamilyIndex)),
         Some(_) => Context::Nothing,
-        None if part.is_empty() => Context::NewName,
+        None if rest.is_empty() || lists && rest.last().is_some_and(|p| p.text == ",") => Context::NewName(item),
         None => Context::Nothing,
     }
 }
 
-fn symmetry(rest: &[Piece<'_>], open: &[u8], formula: &dyn Fn(Wanted) -> Context) -> Context {
-    if !rest.iter().any(|p| p.text == ":") {
-        return Context::Nothing;
-    }
-    let is_arrow = |p: &Piece<'_>| matches!(p.text, "->" | "→");
-    // Within a bracket on the left the names of a tuple are listed.
-    let part = if open.is_empty() { last_part(rest) } else { rest };
-    let arrow = part.iter().rposition(is_arrow);
-    let left = match arrow {
-        None => true,
-        Some(at) => {
-            let behind = &part[at..];
-            let opened = behind.iter().filter(|p| p.text == "(").count();
-            let closed = behind.iter().filter(|p| p.text == ")").count();
-            opened <= closed && behind.last().is_some_and(|p| p.text == ",") && open.is_empty()
+fn parameter(before: &str, rest: &[Piece<'_>]) -> Context {
+    let part = parts(rest).pop().unwrap_or_default();
+    let equals = find(part, &["="]);
+    let head = &part[..equals.unwrap_or(part.len())];
+    let quantity = find(head, &[":"]).map(|colon| &head[colon + 1..]);
+    match (equals, quantity) {
+        (Some(equals), quantity) => {
+            in_value(&part[equals + 1..], quantity.and_then(|q| Fitting::of(written(before, q))))
         }
-    };
-    formula(if left { Wanted::Moved } else { Wanted::Anything })
+        (None, Some(quantity)) => behind_colon(quantity),
+        // An index in brackets is no part of its own.
+        (None, None) if open_brackets(rest).is_empty() && part.is_empty() => Context::NewName("parameter"),
+        (None, None) if part.is_empty() => Context::Nothing,
+        (None, None) => new_name("parameter", part),
+    }
 }
 
-const CLAUSES: &[&str] = &["from", "over", "until", "with"];
+fn definition(rest: &[Piece<'_>]) -> Context {
+    match find(rest, &["="]) {
+        Some(equals) => {
+            let mut place = Place::of("let", Wanted::Anything);
+            place.bound = bound_by_head(&rest[..equals]);
+            Context::Formula(place)
+        }
+        None => new_name("let", rest),
+    }
+}
 
-fn run(rest: &[Piece<'_>], in_number: bool, formula: &dyn Fn(Wanted) -> Context) -> Context {
-    if !rest.iter().any(|p| p.text == ":") {
-        return Context::Nothing;
+/// The formal arguments and the index that a head binds.
+fn bound_by_head(head: &[Piece<'_>]) -> Vec<Bound> {
+    let formals = names(head).into_iter().skip(1).map(|name| Bound { name, binder: Binder::Formal });
+    formals.chain(indices(head).into_iter().map(|name| Bound { name, binder: Binder::Index })).collect()
+}
+
+/// A term or claim: the first word is probably its name, until a sign tells that it is the formula.
+fn titled(item: &'static str, rest: &[Piece<'_>]) -> Context {
+    let formula = match rest {
+        [] => false,
+        [only] => !only.is_word(),
+        _ => true,
+    };
+    if formula { Context::Formula(Place::of(item, Wanted::Anything)) } else { Context::Nothing }
+}
+
+fn force(rest: &[Piece<'_>]) -> Context {
+    if find(rest, &["="]).is_some() {
+        return Context::Formula(Place::of("force", Wanted::Anything));
     }
-    let last = rest.last().map_or("", |p| p.text);
-    if last == ":" {
-        return Context::Words(CLAUSES);
-    }
-    let clause = rest.iter().rev().find(|p| CLAUSES.contains(&p.text)).map_or("", |p| p.text);
-    let part = last_part(rest);
-    let equals = part.iter().any(|p| p.text == "=");
-    let number = part.last().is_some_and(|p| p.kind == WordKind::Number) && !in_number;
-    match (clause, last) {
-        ("from", "from" | ",") => formula(Wanted::State),
-        ("from", _) if equals && (number || matches!(last, "/" | "*" | "·")) => Context::Unit(None),
-        ("over", _) if number || matches!(last, "/") => Context::Unit(Some("time".into())),
-        ("over", ",") => Context::Words(CLAUSES),
-        ("with", "with" | ",") => formula(Wanted::Signal),
-        ("with", _) if equals => formula(Wanted::Anything),
-        ("until", _) => formula(Wanted::Anything),
+    let on = |at: usize| rest.get(at).is_some_and(|p| p.text == "on");
+    match rest {
+        [] => Context::Nothing,
+        _ if on(0) || on(1) => Context::Formula(Place::of("force", Wanted::ActedOn)),
+        [name] if name.is_word() => Context::Words(vec!["on"]),
         _ => Context::Nothing,
     }
 }
 
-/// The names that the item binds before the cursor.
-fn bound(item: &str, rest: &[Piece<'_>]) -> Vec<String> {
-    let mut out: Vec<String> = Vec::new();
-    let mut add = |name: &str| {
-        let name = leastwise_grammar::fold_name(name);
-        if !out.contains(&name) {
-            out.push(name);
-        }
-    };
-    let head_end = rest.iter().position(|p| matches!(p.text, "=" | ":")).unwrap_or(rest.len());
-    if matches!(item, "let" | "constraint") && head_end < rest.len() {
-        rest[..head_end].iter().skip(1).filter(|p| p.kind == WordKind::Word).for_each(|p| add(p.text));
-    }
-    if item == "symmetry" {
-        add("ε");
-    }
-    // A sum whose bracket is still open binds its index.
-    let mut open: Vec<Option<&str>> = Vec::new();
-    for (k, p) in rest.iter().enumerate() {
-        match p.text {
-            "(" | "[" => {
-                let is_sum = p.text == "(" && k > 0 && rest[k - 1].text == "sum";
-                open.push(rest.get(k + 1).filter(|n| is_sum && n.kind == WordKind::Word).map(|n| n.text));
+fn constraint(rest: &[Piece<'_>]) -> Context {
+    let mut place = Place::of("constraint", Wanted::Anything);
+    match find(rest, &[":"]) {
+        Some(colon) => place.bound = bound_by_head(&rest[..colon]),
+        // Without a name the equation begins at once; `link[` is the head of a family.
+        None => match rest {
+            [] => return Context::Nothing,
+            [name, ..] if name.is_word() && rest.iter().skip(1).all(|p| p.is_word() || matches!(p.text, "[" | "]")) => {
+                match rest.last() {
+                    Some(open) if open.text == "[" => place.wanted = Wanted::FamilyIndex,
+                    _ => return Context::Nothing,
+                }
             }
-            ")" | "]" => drop(open.pop()),
+            _ => {}
+        },
+    }
+    Context::Formula(place)
+}
+
+fn symmetry(rest: &[Piece<'_>]) -> Context {
+    let arrows = ["->", "→"];
+    let behind = match find(rest, &[":"]) {
+        Some(colon) => &rest[colon + 1..],
+        None if find(rest, &arrows).is_some() || rest.first().is_some_and(|p| p.text == "(") => rest,
+        None => return Context::Nothing,
+    };
+    let all = parts(behind);
+    let part = *all.last().unwrap_or(&behind);
+    let arrow = find(part, &arrows);
+    let mut place = Place::of("symmetry", if arrow.is_some() { Wanted::Image } else { Wanted::Moved });
+    let sources: Vec<&[Piece<'_>]> = all.iter().map(|p| &p[..find(p, &arrows).unwrap_or(p.len())]).collect();
+    place.taken = sources.iter().flat_map(|s| names(s)).collect();
+    match arrow {
+        Some(arrow) => {
+            place.first = names(&part[..arrow]);
+            let index = indices(&part[..arrow]).into_iter().map(|name| Bound { name, binder: Binder::Index });
+            place.bound =
+                std::iter::once(Bound { name: "ε".into(), binder: Binder::Transformation }).chain(index).collect();
+            Context::Formula(place)
+        }
+        None => {
+            let begins = part.last().is_none_or(|p| matches!(p.text, "," | "(" | "["));
+            let inside = open_brackets(part).last().is_some_and(|&open| part[open].text == "[");
+            if begins || inside { Context::Formula(place) } else { Context::Nothing }
+        }
+    }
+}
+
+/// A place in a formula, with what its brackets say: indices, sums, arguments.
+fn within(mut place: Place, rest: &[Piece<'_>]) -> Context {
+    let open = open_brackets(rest);
+    let function = |at: usize| at.checked_sub(1).and_then(|k| rest.get(k)).map_or("", |p| p.text);
+    let mut bound: Vec<Bound> = Vec::new();
+    for &at in open.iter().rev().filter(|&&at| rest[at].text == "(" && function(at) == "sum") {
+        let inside = &rest[at + 1..];
+        match inside {
+            [] => place.wanted = Wanted::SumIndex,
+            [index] if index.is_word() => return Context::Words(vec!["in"]),
+            [index, ..] if index.is_word() && find(inside, &[":"]).is_some() => {
+                bound.push(Bound { name: fold_name(index.text), binder: Binder::Index });
+            }
+            // Inside its range the index is not bound yet.
+            [_, word, ..] if word.text == "in" => place.wanted = Wanted::Whole,
             _ => {}
         }
     }
-    open.into_iter().flatten().for_each(add);
-    out
-}
-
-#[cfg(test)]
-mod tests {
-    use super::*;
-
-    #[track_caller]
-    fn check(before: &str, expected: Context) {
-        assert_eq!(context(before, false), expected, "{before}");
-    }
-
-    #[track_caller]
-    fn formula(before: &str, wanted: Wanted, bound: &[&str]) {
-        match context(before, false) {
-            Context::Formula(place) => assert_eq!(
-                (place.wanted, place.bound.as_slice()),
-                (wanted, bound.iter().map(|b| b.to_string()).collect::<Vec<_>>().as_slice()),
-                "{before}"
-            ),
-            other => panic!("{before}: {other:?}"),
+    for b in place.bound {
+        if bound.iter().all(|other| other.name != b.name) {
+            bound.push(b);
         }
     }
-
-    #[test]
-    fn items_begin_in_the_first_column() {
-        assert_eq!(context("", true), Context::Item(None));
-        check("cyclic ", Context::Item(Some("coordinate")));
-        check("broken ", Context::Item(Some("symmetry")));
+    place.bound = bound;
+    if place.wanted == Wanted::FamilyIndex {
+        return Context::Formula(place);
     }
-
-    #[test]
-    fn declarations() {
-        check("coordinate ", Context::NewName);
-        check("coordinate x, ", Context::NewName);
-        check("coordinate x ", Context::Nothing);
-        check("cyclic coordinate φ: ", Context::Quantity);
-        check("parameter m: ", Context::Quantity);
-        check("parameter k: N/", Context::Quantity);
-        check("parameter m: mass = ", Context::Nothing);
-        check("parameter m: mass = 2", Context::Nothing);
-        check("parameter m: mass = 2 ", Context::Unit(Some("mass".into())));
-        check("parameter m: mass = 2 kg m/", Context::Unit(Some("mass".into())));
-        check("parameter m: mass = 2 kg, ", Context::NewName);
-        check("function U(r): ", Context::Quantity);
+    if let Some(&at) = open.last() {
+        let first_argument = rest[at..].iter().all(|p| p.text != ",");
+        match function(at) {
+            "momentum" if place.item == "conserved" => place.wanted = Wanted::Coordinate,
+            "turn" if first_argument => place.wanted = Wanted::Axis,
+            _ => {}
+        }
     }
-
-    #[test]
-    fn formulas() {
-        formula("kinetic T = ", Wanted::Anything, &[]);
-        formula("kinetic 1/2 ", Wanted::Anything, &[]);
-        check("kinetic ", Context::Nothing);
-        formula("let f(x, y) = x + ", Wanted::Anything, &["x", "y"]);
-        formula("let X[i] = sum(j in 1..i: ", Wanted::Anything, &["i", "j"]);
-        formula("kinetic T = sum(j in 1..3: m[j]) + ", Wanted::Anything, &[]);
-        formula("kinetic T = m[", Wanted::Index, &[]);
-        formula("kinetic T = sum(", Wanted::SumIndex, &[]);
-        check("kinetic T = sum(j ", Context::Words(&["in"]));
-        check("force brake ", Context::Words(&["on"]));
-        formula("force brake on ", Wanted::Anything, &[]);
-        check("kinetic T = x # ", Context::Nothing);
-        check("include \"", Context::Nothing);
+    if open.iter().any(|&at| rest[at].text == "[") {
+        place.wanted = Wanted::Index;
     }
-
-    #[test]
-    fn claims_and_runs() {
-        formula("symmetry s: ", Wanted::Moved, &["ε"]);
-        formula("symmetry s: x -> ", Wanted::Anything, &["ε"]);
-        formula("symmetry s: x -> x + ε, ", Wanted::Moved, &["ε"]);
-        formula("symmetry s: (x, ", Wanted::Moved, &["ε"]);
-        formula("symmetry s: (x, y) -> (x cos ε, ", Wanted::Anything, &["ε"]);
-        check("symmetry s", Context::Nothing);
-        check("run a: ", Context::Words(CLAUSES));
-        formula("run a: from ", Wanted::State, &[]);
-        check("run a: from x = 1 ", Context::Unit(None));
-        check("run a: from x = 1 m, over 20 ", Context::Unit(Some("time".into())));
-        formula("run a: over 20 s, with ", Wanted::Signal, &[]);
-        check("system s, ", Context::Words(&["dimensionless", "with"]));
-    }
+    Context::Formula(place)
 }

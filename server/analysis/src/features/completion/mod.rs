@@ -1,13 +1,21 @@
 //! What can be typed at a cursor. Reads the text alone, so that it never waits for the algebra.
 
 mod context;
+mod heads;
 mod letters;
 mod names;
+mod order;
+mod pieces;
+mod run;
+mod undeclared;
 mod units;
+mod words;
 
 use crate::checked::SymbolRow;
-use context::{Context, Wanted, context};
-use leastwise_grammar::{KeywordRole, begins_name, continues_name, keywords, split};
+use context::{Context, context};
+use heads::{Known, known};
+use leastwise_grammar::{begins_name, continues_name, split};
+use names::Model;
 use std::ops::Range;
 
 /// Something that can be typed.
@@ -59,86 +67,121 @@ pub enum CompletionKind {
 /// What can be typed at a place, best first.
 #[derive(Clone, PartialEq, Eq, Default, Debug)]
 pub struct Completions {
-    /// The part of the text that is replaced: bytes in the file.
+    /// The part of the text that is replaced: bytes in the file. The word that is being typed, or a backslash and the letters
+    /// behind it.
     pub range: Range<usize>,
     /// In the order in which they are to be shown.
     pub list: Vec<Completion>,
+    /// Whether another list is due when another letter is typed: this one was cut, or begins too early to know in which
+    /// spelling names are typed.
+    pub incomplete: bool,
 }
 
-/// No longer list is shown.
-const MOST: usize = 400;
-
-/// What can be typed at an offset. `included` are the names that the last check took from other files. Reads the heads of
-/// all items and the signs before the cursor; derives nothing.
+/// What can be typed at an offset. `included` are the names that the last check took from other files.
+///
+/// Reads the words of the item at the cursor and the heads of all items, and with the grammar only items that use names which
+/// nobody declares, where a new name begins. Linear in the text; derives nothing.
 pub fn complete(text: &str, offset: usize, included: &[SymbolRow]) -> Completions {
-    let offset = text.floor_char_boundary(offset);
-    let before = &text[..offset];
-    let line = before.rfind(['\n', '\r']).map_or(0, |at| at + 1);
-    let backslash = letters::begun(&before[line..]).map(|at| line + at);
-    let word = word_around(text, offset);
-    let start = backslash.unwrap_or(word.start);
-    let range = start..if backslash.is_some() { offset } else { word.end };
+    let offset = text.floor_char_boundary(offset.min(text.len()));
+    let line = line_start(text, offset);
+    if let Some(at) = letters::backslash(&text[line..offset]) {
+        return letters_at(text, line, line + at, offset);
+    }
+    let range = word_around(text, offset);
+    let typed = &text[range.start..offset];
     let items = split(text);
-    // The item that the cursor is in or behind: an indented line goes on with the one above.
-    let first_column = start == line;
-    let item = items.iter().rposition(|i| i.range.start <= start);
-    let item = item.filter(|&k| items[k].range.start != start && !first_column);
-    let head = match item {
-        Some(k) => &text[items[k].range.start..start],
-        None => &text[line..start],
+    let follows = text[range.end..].chars().next();
+    let mut early = false;
+    let groups = if range.start == line {
+        let above = items.partition_point(|i| i.range.start < range.start);
+        let below = items.partition_point(|i| i.range.start <= range.start);
+        let line_end = text[range.end..].find(['\n', '\r']).map_or(text.len(), |at| range.end + at);
+        vec![words::items(&items[..above], &items[below..], &text[range.end..line_end])]
+    } else {
+        // An indented line goes on with the item above it.
+        let item = items.iter().rposition(|i| i.range.start < range.start);
+        let Some(item) = item else { return Completions { range, ..Completions::default() } };
+        let Range { start, end } = items[item].range;
+        let place = context(&text[start..range.start], typed, &text[range.end..end.max(range.end)]);
+        let known = match &place {
+            Context::Formula(_) | Context::NewName(_) | Context::InitialUnit { .. } => {
+                known(&items, included, range.start)
+            }
+            _ => Vec::new(),
+        };
+        early = typed.chars().nth(1).is_none() && matches!(place, Context::Formula(_) | Context::NewName(_));
+        let model = Model { items: &items, known: &known, item: Some(item), follows };
+        at_place(&place, &model, typed)
     };
-    let first = first_column || (item.is_none() && head.trim().is_empty());
-    let mut list = Vec::new();
-    let place = context(head, first);
-    if backslash.is_some() {
-        let allowed = !matches!(place, Context::Nothing) || !in_comment(&before[line..]);
-        if allowed {
-            list.extend(letters::all().map(|(name, sign)| letter(name, sign)));
-        }
-        return Completions { range, list };
-    }
-    // Behind a number without a space stands nothing that the number would swallow.
-    let typed = &text[start..offset];
+    let (list, cut) = order::ordered(groups, typed);
+    Completions { range, list, incomplete: cut || early }
+}
+
+/// What can stand at a place, in groups.
+fn at_place(place: &Context, model: &Model<'_>, typed: &str) -> Vec<Vec<Completion>> {
+    let letters = || letters::begun(typed, model.known);
     match place {
-        Context::Nothing => {}
-        Context::Item(None) => list.extend(item_keywords(&items)),
-        Context::Item(Some(only)) => list.extend(keyword(only)),
-        Context::Words(words) => list.extend(words.iter().filter_map(|w| keyword(w))),
-        Context::NewName => list.extend(names::undeclared(&items, included)),
-        Context::Quantity => list.extend(units::quantities()),
-        Context::Unit(quantity) => list.extend(units::fitting(quantity.as_deref())),
+        Context::Nothing => Vec::new(),
+        Context::Words(list) => vec![keywords(list)],
+        Context::NewName(keyword) => {
+            vec![undeclared::names(model.items, model.known, keyword, model.item), letters()]
+        }
+        Context::Quantity => vec![units::quantities()],
+        Context::Unit(units) => vec![units::at(units)],
+        Context::InitialUnit { of, value } => vec![initial_unit(of, value, model.known)],
         Context::Formula(place) => {
-            let wanted = place.wanted;
-            list.extend(names::in_formula(&items, included, &place));
-            if wanted == Wanted::Anything {
-                list.extend(functions(place.item));
-            }
-            if wanted == Wanted::State {
-                list.extend(["over", "until", "with", "from"].iter().filter_map(|w| keyword(w)));
-            }
+            let mut groups = names::in_formula(model, place);
+            groups.push(keywords(&place.words));
+            groups.push(letters());
+            groups
         }
     }
-    spelt_letters(&mut list, typed);
-    list.truncate(MOST);
-    Completions { range, list }
+}
+
+fn keywords(list: &[&str]) -> Vec<Completion> {
+    list.iter().filter_map(|word| words::keyword(word)).collect()
+}
+
+/// The units of an initial value of a coordinate or velocity.
+fn initial_unit(of: &str, value: &str, known: &[Known]) -> Vec<Completion> {
+    let name = of.trim_end_matches('\'');
+    let order = u32::try_from(of.len() - name.len()).unwrap_or(0);
+    let coordinate = known.iter().find(|k| k.name == name);
+    let fitting = coordinate.and_then(|k| units::Fitting::of(&k.quantity)).map(|f| f.rate(order));
+    match units::in_value(&pieces::read(value), fitting) {
+        Context::Unit(place) => units::at(&place),
+        _ => Vec::new(),
+    }
+}
+
+/// Letters and signs behind a backslash; nothing in a comment or in quotes.
+fn letters_at(text: &str, line: usize, start: usize, offset: usize) -> Completions {
+    let typed = &text[start..offset];
+    let range = start..offset + letters::rest(typed, &text[offset..]);
+    // Neither goes over a line's end.
+    let groups = match pieces::before_cursor(&text[line..start]) {
+        Some(_) => vec![letters::all()],
+        None => Vec::new(),
+    };
+    let (list, incomplete) = order::ordered(groups, typed);
+    Completions { range, list, incomplete }
+}
+
+/// Where the line of an offset begins, behind a byte order mark.
+fn line_start(text: &str, offset: usize) -> usize {
+    let start = text[..offset].rfind(['\n', '\r']).map_or(0, |at| at + 1);
+    let mark = '\u{feff}';
+    if start == 0 && offset > 0 && text.starts_with(mark) { mark.len_utf8() } else { start }
 }
 
 /// The name around a cursor, empty where there is none.
 fn word_around(text: &str, offset: usize) -> Range<usize> {
-    let end = offset + text[offset..].find(|c| !continues_name(c)).unwrap_or(text.len() - offset);
-    let start = text[..offset].rfind(|c| !continues_name(c));
-    let start = start.map_or(0, |at| at + text[at..].chars().next().map_or(1, char::len_utf8));
+    let end = text[offset..].find(|c| !continues_name(c)).map_or(text.len(), |at| offset + at);
+    let before = text[..offset].char_indices().rev().take_while(|(_, c)| continues_name(*c));
+    let start = before.last().map_or(offset, |(at, _)| at);
     // `2x` is two and x; a cursor in the number is in no name.
     let begins = text[start..end].find(begins_name).map_or(end, |at| start + at);
     if begins <= offset { begins..end } else { offset..offset }
-}
-
-fn in_comment(line: &str) -> bool {
-    let mut quoted = false;
-    line.chars().any(|c| {
-        quoted ^= c == '"';
-        c == '#' && !quoted
-    })
 }
 
 fn plain(label: &str, kind: CompletionKind, detail: &str, documentation: Option<String>) -> Completion {
@@ -150,90 +193,6 @@ fn plain(label: &str, kind: CompletionKind, detail: &str, documentation: Option<
         insert: label.into(),
         filter: label.into(),
     }
-}
-
-fn keyword(name: &str) -> Option<Completion> {
-    let k = keywords().iter().find(|k| {
-        k.name == name && matches!(k.role, KeywordRole::Item | KeywordRole::Modifier | KeywordRole::Clause)
-    })?;
-    Some(plain(k.name, CompletionKind::Keyword, k.follows, Some(k.explanation.to_string())))
-}
-
-/// The keywords that begin an item, in the order in which a model is written.
-fn item_keywords(items: &[leastwise_grammar::RawItem]) -> Vec<Completion> {
-    let named = items.iter().any(|i| i.text.starts_with("system"));
-    let mut list = Vec::new();
-    for k in keywords().iter().filter(|k| matches!(k.role, KeywordRole::Item | KeywordRole::Modifier)) {
-        if k.name == "system" && named {
-            continue;
-        }
-        list.extend(keyword(k.name));
-        // The modifiers stand beside what they modify.
-        let with = match k.name {
-            "coordinate" => Some("cyclic coordinate"),
-            "symmetry" => Some("broken symmetry"),
-            _ => None,
-        };
-        if let Some(both) = with {
-            let explanation = if both.starts_with("cyclic") {
-                "a coordinate that no term depends on: claimed, and checked"
-            } else {
-                "a symmetry known not to give a constant of the motion"
-            };
-            list.push(plain(both, CompletionKind::Keyword, k.follows, Some(explanation.into())));
-        }
-    }
-    list.retain(|c| !matches!(c.label.as_str(), "cyclic" | "broken"));
-    list
-}
-
-/// The functions and constants of the language.
-fn functions(item: &str) -> Vec<Completion> {
-    let mut list = Vec::new();
-    for k in keywords() {
-        let only_claims = matches!(k.name, "momentum" | "energy");
-        if (only_claims && item != "conserved") || k.name == "ε" {
-            continue;
-        }
-        let kind = match k.role {
-            KeywordRole::Function => CompletionKind::Function,
-            KeywordRole::Constant => CompletionKind::Constant,
-            _ => continue,
-        };
-        list.push(plain(k.name, kind, k.follows, Some(k.explanation.to_string())));
-    }
-    if item == "conserved" {
-        // What only a claim knows comes first.
-        list.sort_by_key(|c| !matches!(c.label.as_str(), "momentum" | "energy"));
-    }
-    list
-}
-
-fn letter(name: &str, sign: &str) -> Completion {
-    let shown = if sign.starts_with(['\u{0307}', '\u{0308}']) { format!("◌{sign}") } else { sign.to_string() };
-    Completion {
-        label: shown,
-        kind: CompletionKind::Letter,
-        detail: format!("\\{name}"),
-        documentation: None,
-        insert: sign.into(),
-        filter: format!("\\{name}"),
-    }
-}
-
-/// A Greek name can also be typed by the letters' names.
-fn spelt_letters(list: &mut Vec<Completion>, typed: &str) {
-    if typed.len() < 2 || !typed.is_ascii() {
-        return;
-    }
-    let spelt: Vec<Completion> = list
-        .iter()
-        .filter_map(|c| {
-            let filter = letters::spelt(&c.filter)?;
-            filter.starts_with(typed).then(|| Completion { filter, ..c.clone() })
-        })
-        .collect();
-    list.splice(0..0, spelt);
 }
 
 #[cfg(test)]
