@@ -7,6 +7,7 @@ mod names;
 mod order;
 mod pieces;
 mod run;
+pub mod signature;
 mod undeclared;
 mod units;
 mod words;
