@@ -96,6 +96,8 @@ pub(super) enum Wanted {
     Coordinate,
     /// A unit vector: the axis of a turn.
     Axis,
+    /// A rotation or another matrix: the argument of `spin` and `transpose`.
+    Matrix,
     /// A constant, set to one for the whole system.
     Constant,
 }
@@ -337,6 +339,7 @@ fn within(mut place: Place, rest: &[Piece<'_>]) -> Context {
         match function(at) {
             "momentum" if place.item == "conserved" => place.wanted = Wanted::Coordinate,
             "turn" if first_argument => place.wanted = Wanted::Axis,
+            "spin" | "transpose" => place.wanted = Wanted::Matrix,
             _ => {}
         }
     }

@@ -22,7 +22,6 @@ const LETTERS: &[(&str, &str)] = &[
     ("mu", "μ"),
     ("nu", "ν"),
     ("xi", "ξ"),
-    ("omicron", "ο"),
     ("pi", "π"),
     ("varpi", "ϖ"),
     ("rho", "ρ"),

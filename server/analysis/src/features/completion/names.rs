@@ -47,6 +47,7 @@ pub(super) fn in_formula(model: &Model<'_>, place: &Place) -> Vec<Vec<Completion
             groups.insert(0, constants().into_iter().filter(|c| c.label.starts_with('e')).collect());
             groups
         }
+        Wanted::Matrix => ranked.formula(&[Definitions, Coordinates, Parameters, Functions]),
         Wanted::Constant => vec![ranked.group(Parameters)],
     }
 }

@@ -196,6 +196,13 @@ fn claims_speak_of_momenta_and_the_energy() {
 }
 
 #[test]
+fn turns_want_an_axis_and_spins_a_rotation() {
+    check("let R = turn($0", "ex ey ez P");
+    check("let R = turn(ez, $0", "θ θ' θ̇");
+    check("kinetic T = 1/2 m |spin($0", "P N θ");
+}
+
+#[test]
 fn a_force_says_what_it_acts_on() {
     check_all("force push $0", &["on"]);
     check_all("force $0", &[]);
