@@ -14,6 +14,7 @@ pub mod lagrange;
 pub mod mass;
 pub mod model;
 pub mod regularity;
+pub mod search;
 pub mod similarity;
 pub mod surface;
 pub mod symmetry;
