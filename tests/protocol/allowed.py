@@ -48,6 +48,7 @@ class Allowed:
             "initialize": self.server,
             "textDocument/hover": lambda r: self.markup(r["contents"], "textDocument.hover.contentFormat"),
             "textDocument/completion": self.completions,
+            "textDocument/signatureHelp": self.signatures,
             "textDocument/documentSymbol": self.symbols,
             "textDocument/definition": self.links,
             "textDocument/codeAction": self.actions,
@@ -66,6 +67,8 @@ class Allowed:
             yield "options of renaming for a client that cannot prepare"
         if isinstance(can.get("codeActionProvider"), dict) and not self.can("textDocument.codeAction.codeActionLiteralSupport"):
             yield "options of code actions for a client that knows commands only"
+        if "signatureHelpProvider" in can and self.can("textDocument.signatureHelp") is None:
+            yield "functions around the cursor for a client that shows none"
         if "diagnosticProvider" in can and self.can("textDocument.diagnostic") is None:
             yield "diagnostics to be pulled by a client that does not pull"
 
@@ -114,6 +117,18 @@ class Allowed:
                 if field in c and not item.get(needs):
                     yield f"{field} of a completion for a client that knows none"
             yield from self.markup(c.get("documentation"), "textDocument.completion.completionItem.documentationFormat")
+
+    def signatures(self, result):
+        can = self.can("textDocument.signatureHelp.signatureInformation") or {}
+        for one in result["signatures"]:
+            yield from self.markup(one.get("documentation"), "textDocument.signatureHelp.signatureInformation.documentationFormat")
+            if "activeParameter" in one and not can.get("activeParameterSupport"):
+                yield "the argument of one function for a client that knows one of all"
+            for p in one.get("parameters", []):
+                if isinstance(p["label"], list) and not can.get("parameterInformation", {}).get("labelOffsetSupport"):
+                    yield "places of arguments for a client that knows their text only"
+                if isinstance(p["label"], str) and p["label"] not in one["label"]:
+                    yield "an argument that is not in its label"
 
     def symbols(self, result):
         kinds = (self.can("textDocument.documentSymbol.symbolKind") or {}).get("valueSet", KINDS)

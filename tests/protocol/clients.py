@@ -20,6 +20,14 @@ FULL = {
         "diagnostic": {"dynamicRegistration": False, "relatedDocumentSupport": False},
         "hover": {"contentFormat": ["markdown", "plaintext"]},
         "completion": {"completionItem": {"documentationFormat": ["markdown", "plaintext"], "snippetSupport": True}},
+        "signatureHelp": {
+            "signatureInformation": {
+                "documentationFormat": ["markdown", "plaintext"],
+                "parameterInformation": {"labelOffsetSupport": True},
+                "activeParameterSupport": True,
+            },
+            "contextSupport": True,
+        },
         "definition": {"linkSupport": True},
         "documentSymbol": {"hierarchicalDocumentSymbolSupport": True},
         "rename": {"prepareSupport": True},
@@ -94,6 +102,14 @@ NEOVIM = {
             "completionItem": {"documentationFormat": ["markdown", "plaintext"], "snippetSupport": True},
             "completionItemKind": {"valueSet": KINDS},
         },
+        "signatureHelp": {
+            "signatureInformation": {
+                "documentationFormat": ["markdown", "plaintext"],
+                "parameterInformation": {"labelOffsetSupport": True},
+                "activeParameterSupport": True,
+            },
+            "contextSupport": True,
+        },
         "definition": {"linkSupport": True},
         "documentSymbol": {"hierarchicalDocumentSymbolSupport": True, "symbolKind": {"valueSet": [*KINDS, 26]}},
         "rename": {"prepareSupport": True},
@@ -126,6 +142,7 @@ EGLOT = {
         "publishDiagnostics": {"relatedInformation": False, "codeDescriptionSupport": False, "tagSupport": {"valueSet": [1, 2]}},
         "hover": {"contentFormat": ["plaintext"]},
         "completion": {"completionItem": {"snippetSupport": False, "deprecatedSupport": True, "tagSupport": {"valueSet": [1]}}},
+        "signatureHelp": {"signatureInformation": {"parameterInformation": {"labelOffsetSupport": False}}},
         "definition": {"linkSupport": True},
         "documentSymbol": {"hierarchicalDocumentSymbolSupport": True, "symbolKind": {"valueSet": [*KINDS, 26]}},
         "rename": {"dynamicRegistration": False},

@@ -17,6 +17,8 @@ def ask_everything(client):
                 document.hover(line, column)
                 s.ask("textDocument/definition", document.at(line, column))
                 document.complete(line, column)
+                if "signatureHelpProvider" in s.capabilities:
+                    document.signature(line, column)
         assert document.symbols() and document.tokens()["data"] and document.hints()
         slip = next(d for d in found if d["code"] == "undeclared-name")
         actions = document.actions(slip)

@@ -135,6 +135,38 @@ def test_completion_in_a_text_that_is_being_typed():
         assert theta[0]["textEdit"]["range"] == span(11, 11, 11, 16)
 
 
+def test_a_list_that_is_not_whole_is_asked_for_again():
+    many = "".join(f"parameter stiffness_{k}\n" for k in range(400))
+    with Session() as s:
+        document = s.open(WINCH + many + "potential V = s")
+        short = s.ask("textDocument/completion", document.at(411, 15))
+        assert short["isIncomplete"] and len(short["items"]) < 400, len(short["items"])
+        document.edit(411, 15, 15, "tiffness_39")
+        later = document.complete(411, 26)
+        assert "stiffness_399" in [c["label"] for c in later], later
+        few = s.open(WINCH + "po", "untitled:few")
+        assert s.ask("textDocument/completion", few.at(11, 2))["isIncomplete"] is False
+
+
+def test_the_function_around_the_cursor():
+    text = WINCH + "function U(r, ψ): energy   # of the tether\npotential V = U(r, atan2(m, 𝑥 "
+    with Session() as s:
+        assert s.capabilities["signatureHelpProvider"]["triggerCharacters"] == ["(", ","]
+        document = s.open(text)
+        outer = document.signature(12, 18)
+        (one,) = outer["signatures"]
+        assert one["label"] == "U(r, ψ): energy" and one["documentation"]["value"] == "of the tether", one
+        assert [p["label"] for p in one["parameters"]] == [[2, 3], [5, 6]] and outer["activeParameter"] == 1
+        inner = document.signature(12, 31)
+        assert inner["signatures"][0]["label"] == "atan2(y, x)" and inner["activeParameter"] == 1, inner
+        assert document.signature(12, 12) is None
+    with Session(clients.EGLOT) as s:
+        help = s.open(text).signature(12, 18)
+        assert [p["label"] for p in help["signatures"][0]["parameters"]] == ["r", "ψ"], help
+    with Session(clients.BARE) as s:
+        assert "signatureHelpProvider" not in s.capabilities
+
+
 def test_rename_and_its_refusals():
     with Session() as s:
         document = s.open(WINCH)

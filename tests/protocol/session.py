@@ -291,7 +291,10 @@ class Document:
         return self.session.ask("textDocument/semanticTokens/full", self.id)
 
     def complete(self, line, character):
-        return self.session.ask("textDocument/completion", self.at(line, character))
+        return self.session.ask("textDocument/completion", self.at(line, character))["items"]
+
+    def signature(self, line, character):
+        return self.session.ask("textDocument/signatureHelp", self.at(line, character))
 
     def actions(self, diagnostic):
         context = {"diagnostics": [diagnostic], "only": ["quickfix"]}

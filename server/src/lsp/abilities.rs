@@ -28,6 +28,12 @@ pub struct Abilities {
     pub markdown_completion: bool,
     /// Completions may have details beside the label.
     pub label_details: bool,
+    /// It shows the function around the cursor.
+    pub signatures: bool,
+    /// Documentation of functions may be Markdown.
+    pub markdown_signature: bool,
+    /// Arguments in a label may be named by their places.
+    pub label_offsets: bool,
     /// Code actions may be more than commands.
     pub code_actions: bool,
     /// One code action may be the preferred one.
@@ -100,6 +106,7 @@ impl Abilities {
         let item = text.completion.as_ref().and_then(|c| c.completion_item.clone()).unwrap_or_default();
         let action = text.code_action.clone().unwrap_or_default();
         let hints = text.inlay_hint.clone().unwrap_or_default();
+        let signature = text.signature_help.as_ref().and_then(|s| s.signature_information.clone()).unwrap_or_default();
         let completion_kinds = text.completion.as_ref().and_then(|c| c.completion_item_kind.clone()?.value_set);
         let symbol_kinds = text.document_symbol.as_ref().and_then(|d| d.symbol_kind.clone()?.value_set);
         Abilities {
@@ -114,6 +121,9 @@ impl Abilities {
             markdown_hover: markdown(text.hover.and_then(|h| h.content_format).as_ref()),
             markdown_completion: markdown(item.documentation_format.as_ref()),
             label_details: yes(item.label_details_support),
+            signatures: text.signature_help.is_some(),
+            markdown_signature: markdown(signature.documentation_format.as_ref()),
+            label_offsets: yes(signature.parameter_information.and_then(|p| p.label_offset_support)),
             code_actions: action.code_action_literal_support.is_some(),
             preferred: yes(action.is_preferred_support),
             document_changes: yes(work.workspace_edit.and_then(|e| e.document_changes)),

@@ -11,7 +11,7 @@ use tower_lsp::ls_types as lsp;
 pub fn answer(document: &Document, abilities: &Abilities, position: lsp::Position) -> lsp::CompletionResponse {
     let snapshot = document.snapshot();
     if snapshot.text.len() > super::worker::MAX_TEXT {
-        return lsp::CompletionResponse::Array(Vec::new());
+        return lsp::CompletionResponse::List(lsp::CompletionList::default());
     }
     let included = lock(&document.included).clone();
     let positions = Positions::new(snapshot.text.clone(), abilities.encoding);
@@ -19,7 +19,7 @@ pub fn answer(document: &Document, abilities: &Abilities, position: lsp::Positio
     let found = complete(&snapshot.text, offset, &included);
     let range = positions.range(&found.range);
     let items = found.list.into_iter().enumerate().map(|(k, c)| item(k, c, range, abilities)).collect();
-    lsp::CompletionResponse::Array(items)
+    lsp::CompletionResponse::List(lsp::CompletionList { is_incomplete: found.incomplete, items })
 }
 
 fn item(k: usize, c: Completion, range: lsp::Range, abilities: &Abilities) -> lsp::CompletionItem {

@@ -12,6 +12,7 @@ mod positions;
 mod server;
 mod settings;
 mod shared;
+mod signatures;
 mod tokens;
 mod transport;
 mod worker;

@@ -6,7 +6,7 @@ use super::documents::Document;
 use super::settings::{SECTION, Settings};
 use super::shared::Shared;
 use super::worker::{self, Job, about_names, about_verdicts, ask};
-use super::{answers, completions, convert, tokens};
+use super::{answers, completions, convert, signatures, tokens};
 use std::sync::Arc;
 use std::sync::atomic::Ordering;
 use std::time::Duration;
@@ -146,6 +146,10 @@ fn capabilities(abilities: &Abilities, offered: bool) -> ServerCapabilities {
         completion_provider: Some(CompletionOptions {
             trigger_characters: Some(["\\", ":", "["].map(String::from).to_vec()),
             ..CompletionOptions::default()
+        }),
+        signature_help_provider: abilities.signatures.then(|| SignatureHelpOptions {
+            trigger_characters: Some(["(", ","].map(String::from).to_vec()),
+            ..SignatureHelpOptions::default()
         }),
         definition_provider: Some(OneOf::Left(true)),
         references_provider: Some(OneOf::Left(true)),
@@ -317,6 +321,14 @@ impl LanguageServer for Backend {
         let shared = self.shared.clone();
         let work = move || completions::answer(&document, shared.abilities(), place.position);
         tokio::task::spawn_blocking(work).await.map(Some).map_err(|_| worker::internal())
+    }
+
+    async fn signature_help(&self, params: SignatureHelpParams) -> Result<Option<SignatureHelp>> {
+        let place = params.text_document_position_params;
+        let document = self.document(&place.text_document.uri)?;
+        let shared = self.shared.clone();
+        let work = move || signatures::answer(&document, shared.abilities(), place.position);
+        tokio::task::spawn_blocking(work).await.map_err(|_| worker::internal())
     }
 
     async fn formatting(&self, params: DocumentFormattingParams) -> Result<Option<Vec<TextEdit>>> {
