@@ -17,6 +17,7 @@ pub mod pages;
 pub mod quantities;
 pub mod report;
 pub mod scope;
+pub mod search;
 mod sheet;
 pub mod uses;
 mod values;

@@ -64,6 +64,7 @@ pub fn hints(view: &mut View<'_>, derived: &Derived, range: lsp::Range) -> Resul
         InlayKind::Momentum => settings.momentum_hints,
         InlayKind::Claim => settings.claim_hints,
         InlayKind::Summary => settings.summary_hint,
+        InlayKind::Search => settings.search_hint,
     };
     let resolves = view.shared.abilities().resolves_hints;
     let hint = |h: &Inlay| {
@@ -89,6 +90,7 @@ fn number(kind: InlayKind) -> u64 {
         InlayKind::Momentum => 0,
         InlayKind::Claim => 1,
         InlayKind::Summary => 2,
+        InlayKind::Search => 3,
     }
 }
 

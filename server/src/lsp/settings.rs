@@ -11,12 +11,18 @@ pub struct Settings {
     pub claim_hints: bool,
     /// The hint behind the last term.
     pub summary_hint: bool,
+    /// The hint on what a search found.
+    pub search_hint: bool,
     /// The longest hint, in characters.
     pub hint_length: usize,
     /// The longest hover, in lines.
     pub hover_lines: usize,
     /// Whether hints on how a formula was read are shown.
     pub readings: bool,
+    /// Whether constants of the motion are looked for that nobody claimed.
+    pub search_run: bool,
+    /// The degree of the symmetries that are looked for.
+    pub search_degree: usize,
     /// The most findings that are shown of one file.
     pub max_findings: usize,
 }
@@ -27,9 +33,12 @@ impl Default for Settings {
             momentum_hints: true,
             claim_hints: true,
             summary_hint: true,
+            search_hint: true,
             hint_length: 60,
             hover_lines: 40,
             readings: true,
+            search_run: true,
+            search_degree: leastwise_analysis::search::DEGREE as usize,
             max_findings: 200,
         }
     }
@@ -61,7 +70,7 @@ impl Settings {
                 continue;
             }
             let Value::Object(entries) = entries else {
-                wrong.push(format!("`{group}` is no group of settings; there are hints, hover and diagnostics"));
+                wrong.push(format!("`{group}` is no group of settings; there are hints, hover, search and diagnostics"));
                 continue;
             };
             for (name, value) in entries {
@@ -81,12 +90,15 @@ impl Settings {
             "hints.momentum" => return switch(&mut self.momentum_hints),
             "hints.claims" => return switch(&mut self.claim_hints),
             "hints.summary" => return switch(&mut self.summary_hint),
+            "hints.search" => return switch(&mut self.search_hint),
+            "search.run" => return switch(&mut self.search_run),
             "diagnostics.readings" => return switch(&mut self.readings),
             _ => {}
         }
         let (place, least, most) = match key {
             "hints.maxLength" => (&mut self.hint_length, 10, 400),
             "hover.maxLines" => (&mut self.hover_lines, 5, 1000),
+            "search.degree" => (&mut self.search_degree, 0, leastwise_analysis::search::MAX_DEGREE.into()),
             "diagnostics.max" => (&mut self.max_findings, 1, 10_000),
             _ => {
                 wrong.push(format!("there is no setting `{key}`"));
@@ -145,7 +157,7 @@ mod tests {
         check(
             json!({"hover": 3}),
             |_| {},
-            &["`hover` is no group of settings; there are hints, hover and diagnostics"],
+            &["`hover` is no group of settings; there are hints, hover, search and diagnostics"],
         );
         check(json!([1]), |_| {}, &["the settings are no object; the usual ones are used"]);
     }

@@ -16,7 +16,9 @@ use crate::checked::{Checked, Contents};
 use crate::database::Session;
 use crate::derive::Derived;
 use crate::features::place::{self, Place, Thing, formulas_at, item_at, place_at};
+use crate::sheet::Maker;
 use leastwise_grammar::tree::*;
+use leastwise_mechanics::verdicts::SymmetryAnswer;
 use std::ops::Range;
 use writer::Writer;
 
@@ -51,6 +53,16 @@ impl Session {
         });
         (!blocks.is_empty()).then_some(Hover { range, blocks })
     }
+}
+
+/// What the charge of a symmetry is called in the trade: `energy`, `angular momentum`, …; `charge` where it has no such name.
+pub(crate) fn charge_name(
+    maker: &mut Maker<'_>,
+    checked: &Checked,
+    derived: &Derived,
+    answer: &SymmetryAnswer,
+) -> &'static str {
+    charge::charge(&mut Writer::new(maker, checked, derived), answer).name
 }
 
 /// Writes about a place.

@@ -43,6 +43,8 @@ pub enum InlayKind {
     Claim,
     /// Degrees of freedom and energy, behind the last term.
     Summary,
+    /// What a search found, behind the last term.
+    Search,
 }
 
 impl Session {
