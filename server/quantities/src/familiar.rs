@@ -12,7 +12,7 @@ pub struct Familiar {
 }
 
 /// Units of which others are made, the most familiar first.
-const UNITS: &[&str] = &["N", "J", "W", "C", "V", "Ω", "H", "Wb", "F", "T"];
+const UNITS: &[&str] = &["N", "J", "W", "C", "V", "Ω", "H", "Wb", "F"];
 
 /// Quantities in whose names others are told, the most familiar first.
 const NAMES: &[&str] = &["force", "energy", "power", "charge", "voltage"];
