@@ -118,7 +118,7 @@ pub fn search(
 type Finder<'f> =
     dyn FnMut(&mut Context<'_>, &Model, &Scope, &[Expr], &mut dyn FnMut(Stage)) -> Result<Found, Stopped> + 'f;
 
-#[cfg(test)]
+#[cfg_attr(not(test), expect(dead_code))]
 fn search_with(
     path: &str,
     text: &str,
