@@ -4,6 +4,7 @@
 //! the one that follows the text; what it hands back is printed and belongs to no arena. Each item that it offers is put
 //! into the text and checked: only claims that are proved there are offered.
 
+mod hidden;
 mod naming;
 mod source;
 
