@@ -26,6 +26,7 @@ use crate::mass::mass_rows;
 use crate::model::Model;
 use crate::regularity::{MassVerdict, mass_verdict};
 use closure::{Found, Values, coefficients, search, value};
+pub(crate) use flow::invert;
 use flow::{Flow, Phase};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 

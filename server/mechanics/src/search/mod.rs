@@ -4,6 +4,16 @@
 //! system for its coefficients; see `relations`. Each item is confirmed by the zero test before it is told. An empty
 //! answer says only that there is none other in this ansatz.
 
+mod hidden;
+#[allow(dead_code, reason = "the search calls it as soon as there are point symmetries")]
+mod integrals;
+mod kernel;
+mod killing;
+mod kinetic;
+mod primitive;
+
+pub use hidden::{Hidden, hidden};
+
 use crate::symmetry::Generator;
 use leastwise_algebra::Expr;
 
