@@ -53,24 +53,17 @@ impl std::error::Error for UnitError {}
 impl Compound {
     /// From symbols and their exponents, as the grammar delivers them.
     pub fn new<S: AsRef<str>>(factors: &[(S, Exponent)]) -> Result<Compound, UnitError> {
-        Compound::build(factors, unit)
+        let known = factors.iter().enumerate().map(|(at, (symbol, exponent))| {
+            let symbol = symbol.as_ref();
+            let found = unit(symbol).ok_or_else(|| UnitError::Unknown { at, symbol: symbol.to_owned() })?;
+            Ok((found, *exponent))
+        });
+        Compound::of(known.collect::<Result<_, _>>()?).ok_or(UnitError::TooLarge)
     }
 
     /// From text, as it is printed: `N·m/s²`, `kg m^2`, `W/(m^2 K^4)`.
     pub fn read(text: &str) -> Result<Compound, UnitError> {
         Compound::new(&crate::spelling::read(text).map_err(UnitError::Spelling)?)
-    }
-
-    pub(crate) fn build<S: AsRef<str>>(
-        factors: &[(S, Exponent)],
-        lookup: impl Fn(&str) -> Option<Symbol>,
-    ) -> Result<Compound, UnitError> {
-        let known = factors.iter().enumerate().map(|(at, (symbol, exponent))| {
-            let symbol = symbol.as_ref();
-            let found = lookup(symbol).ok_or_else(|| UnitError::Unknown { at, symbol: symbol.to_owned() })?;
-            Ok((found, *exponent))
-        });
-        Compound::of(known.collect::<Result<_, _>>()?).ok_or(UnitError::TooLarge)
     }
 
     fn of(factors: Vec<(Symbol, Exponent)>) -> Option<Compound> {
@@ -130,15 +123,15 @@ impl Compound {
 
     /// Whether one of its units is measured: the dalton.
     pub fn is_measured(&self) -> bool {
-        self.factors.iter().any(|(s, e)| s.unit.uncertainty.is_some() && !e.is_zero())
+        self.factors.iter().any(|(s, e)| s.unit.uncertainty().is_some() && !e.is_zero())
     }
 
     /// The standard uncertainty of the factor, to first order; `None` where it is exact or irrational. All measured units
     /// are multiples of the dalton, so that their uncertainties add up with their signs.
     pub fn uncertainty(&self) -> Option<Rational> {
         let mut relative = Rational::ZERO;
-        for (s, e) in self.factors.iter().filter(|(s, _)| s.unit.uncertainty.is_some()) {
-            let own = s.unit.uncertainty.as_ref()?.div(s.unit.factor.to_rational()?)?;
+        for (s, e) in self.factors.iter().filter(|(s, _)| s.unit.uncertainty().is_some()) {
+            let own = s.unit.uncertainty()?.div(s.unit.factor().to_rational()?)?;
             relative = relative.add(&own.mul(&e.to_rational()));
         }
         (!relative.is_zero()).then(|| Some(relative.abs().mul(self.factor.to_rational()?)))?
@@ -251,7 +244,7 @@ mod tests {
         let factor = (0..units().len(), 0..prefixes().len() + 1, -4i64..5, 1i64..3);
         proptest::collection::vec(factor, 0..4).prop_filter_map("levels are not converted", |list| {
             let factors = list.into_iter().filter_map(|(u, p, n, d)| {
-                let (unit, prefix) = (units()[u], prefixes().get(p));
+                let (unit, prefix) = (&units()[u], prefixes().get(p));
                 let prefix = prefix.filter(|p| unit.prefixes.take(p)).map_or("", |p| p.symbol);
                 Some((format!("{prefix}{}", unit.symbol), Exponent::new(n, d)?)).filter(|f| !f.1.is_zero())
             });

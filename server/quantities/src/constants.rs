@@ -55,7 +55,7 @@ fn read(text: &'static str) -> Result<Constants, String> {
             "" => None,
             kind => Some(quantity(kind).ok_or_else(|| about(&format!("quantity `{kind}`")))?),
         };
-        if quantity.is_some_and(|q| q.dimension() != unit.dimension()) {
+        if quantity.is_some_and(|q| q.dimension != unit.dimension()) {
             return Err(about(&format!("{unit} is no unit of {kind}")));
         }
         if out.symbols.insert(symbol, out.list.len()).is_some() {
