@@ -59,7 +59,7 @@ pub(super) fn named(
     item: &Item,
 ) -> (String, Option<String>) {
     let Origin::Symmetry { generator, gauge } = &item.origin else {
-        return match super::hidden::named(maker, checked, derived, item.charge) {
+        return match super::hidden::named(maker, checked, item.charge) {
             Some((word, title)) => (word, Some(title)),
             None => (INTEGRAL.to_string(), None),
         };
@@ -167,7 +167,7 @@ pub(super) fn suffixed(kind: &str, labels: &[String]) -> String {
 }
 
 /// Whether an expression is made from parameters and numbers.
-pub(super) fn is_constant(maker: &Maker<'_>, e: Expr) -> bool {
+fn is_constant(maker: &Maker<'_>, e: Expr) -> bool {
     maker.arena.atoms(e).into_iter().all(|a| match maker.arena.node(a) {
         Node::Symbol(s) => maker.arena.info(*s).role == Role::Parameter,
         Node::Jet(..) | Node::Member { .. } => false,
