@@ -1,11 +1,12 @@
 //! The ansatz F = Σ cₘ m/q + Σ dⱼ eⱼ: monomials m that could give what is in the integrand, over a denominator q that
 //! derivation would make the integrand's, and logarithms and inverse tangents eⱼ; its coefficients by a linear system.
 
-use super::polynomial::{Monomial, Poly, exponent, times, trim};
+use super::polynomial::{Monomial, Poly, exponent, power_of, times, trim};
 use super::solve::{Coefficient, Column};
 use super::special::Extra;
 use super::tower::{Fail, Frac, Kind, Res, Tower};
 use crate::arena::{Arena, Expr, Node};
+use crate::budget::Stopped;
 use crate::rational::Rational;
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -14,51 +15,126 @@ const MAX_UNKNOWNS: usize = 360;
 /// How often the monomials are completed by those that would cancel what they bring.
 const ROUNDS: usize = 7;
 
+/// What one group of summands may cost, in nodes.
+const GROUP_NODES: u64 = 1_500_000;
+
+/// The monomials over one denominator.
+struct Family {
+    /// The denominator in F.
+    below: Vec<u16>,
+    /// The largest that its derivatives have.
+    den: Vec<u16>,
+    /// The generators in the monomials.
+    usable: Vec<usize>,
+    /// What derivation multiplies a monomial by.
+    steps: BTreeSet<Monomial>,
+    /// Monomials over `den` that are to be made or to be cancelled, and those that have been looked at.
+    targets: BTreeSet<Monomial>,
+    done: BTreeSet<Monomial>,
+    /// Lowest and highest exponents.
+    bounds: Vec<(i16, i16)>,
+}
+
+fn same(a: &Frac, b: &Frac) -> bool {
+    (0..a.den.len().max(b.den.len())).all(|k| a.power_of_factor(k) == b.power_of_factor(k))
+}
+
 impl Tower<'_, '_> {
     /// F with DF = the sum of the integrand's summands.
     pub fn integrate(&mut self, integrand: Expr) -> Res<Option<Expr>> {
-        // Summands whose denominators share a factor belong together.
-        let mut groups: Vec<Frac> = Vec::new();
+        // Summands over one denominator make one part.
+        let mut parts: Vec<Frac> = Vec::new();
         for (e, c) in self.arena.summands(integrand) {
             let f = self.read(e, 0)?.scale(&c);
-            let mut whole = self.cancel(f)?;
-            let (joined, apart): (Vec<Frac>, Vec<Frac>) =
-                groups.into_iter().partition(|g| self.share_a_factor(g, &whole));
-            groups = apart;
-            for g in joined {
-                whole = self.add(&whole, &g)?;
+            let f = self.cancel(f)?;
+            match parts.iter().position(|g| self.moving_factors(g) == self.moving_factors(&f) && same(g, &f)) {
+                Some(k) => parts[k] = self.add(&parts[k].clone(), &f)?,
+                None => parts.push(f),
             }
+        }
+        // Parts whose denominators share a factor belong together.
+        let mut groups: Vec<Vec<Frac>> = Vec::new();
+        for f in parts {
+            let f = self.cancel(f)?;
+            if f.is_zero() {
+                continue;
+            }
+            let (joined, apart): (Vec<_>, Vec<_>) =
+                groups.into_iter().partition(|g| g.iter().any(|p| self.share_a_factor(p, &f)));
+            groups = apart;
+            let mut whole: Vec<Frac> = joined.into_iter().flatten().collect();
+            whole.push(f);
             groups.push(whole);
         }
         let mut out = Vec::new();
         let mut open: Vec<Frac> = Vec::new();
-        for g in groups {
-            let g = self.cancel(g)?;
-            if g.is_zero() {
-                continue;
-            }
-            match self.solve_group(&g)? {
+        for g in &groups {
+            match self.try_group(g)? {
                 Some(f) => out.push(f),
-                None => open.push(g),
+                None => open.extend(g.iter().cloned()),
             }
         }
+        // What has no integral alone may have one together: term by term, over a common denominator, all at once.
         if !open.is_empty() {
-            if open.len() == 1 && out.is_empty() {
-                return Ok(None);
+            let mut found = if groups.len() > 1 { self.try_group(&open)? } else { None };
+            if found.is_none() && open.len() > 1 {
+                found = self.try_whole(&open)?;
             }
-            // What has no integral alone may have one together with the rest.
-            let mut whole = self.read(integrand, 0)?;
-            whole = self.cancel(whole)?;
-            return self.solve_group(&whole);
+            match found {
+                Some(f) => out.push(f),
+                None if groups.len() > 1 => return self.try_whole(&groups.concat()),
+                None => return Ok(None),
+            }
         }
         Ok(Some(self.arena.sum(&out)))
     }
 
+    fn try_whole(&mut self, parts: &[Frac]) -> Res<Option<Expr>> {
+        let mut whole = Frac::zero();
+        for p in parts {
+            whole = self.add(&whole, p)?;
+        }
+        let whole = self.cancel(whole)?;
+        if whole.is_zero() { Ok(Some(Arena::ZERO)) } else { self.try_group(&[whole]) }
+    }
+
+    /// One group has a share of the budget: others may still be done when it is spent.
+    fn try_group(&mut self, parts: &[Frac]) -> Res<Option<Expr>> {
+        let mut own = self.budget.part(GROUP_NODES);
+        let before = own.left();
+        std::mem::swap(self.budget, &mut own);
+        let result = self.solve_group(parts);
+        std::mem::swap(self.budget, &mut own);
+        // `own` is the share again.
+        let spent = before - own.left();
+        self.budget.charge(spent as usize)?;
+        match result {
+            Err(Fail::Unsupported | Fail::Stopped(Stopped::TooLarge)) => Ok(None),
+            other => other,
+        }
+    }
+
+    fn moving_factors(&self, f: &Frac) -> BTreeSet<usize> {
+        (0..f.den.len()).filter(|&k| f.den[k] > 0 && !self.factors[k].constant).collect()
+    }
+
+    /// Whether the derivatives of one may bring what is in the other: factors of denominators, those of the derivatives of
+    /// logarithms and the like included.
     fn share_a_factor(&self, a: &Frac, b: &Frac) -> bool {
-        let moving = |f: &Frac| -> BTreeSet<usize> {
-            (0..f.den.len()).filter(|&k| f.den[k] > 0 && !self.factors[k].constant).collect()
+        let reach = |f: &Frac| {
+            let mut out = self.moving_factors(f);
+            for k in f.num.variables() {
+                if matches!(
+                    self.generators[k].kind,
+                    Kind::Other | Kind::Root | Kind::Absolute | Kind::Unspecified { .. }
+                ) && let Some(rate) = &self.generators[k].rate
+                {
+                    out.extend(self.moving_factors(rate));
+                }
+            }
+            out
         };
-        let (a, b) = (moving(a), moving(b));
+        let (a, b) = (reach(a), reach(b));
         a == b || a.iter().any(|k| b.contains(k))
     }
 
@@ -84,45 +160,148 @@ impl Tower<'_, '_> {
         p.0.keys().map(|m| self.moving_part(m)).collect()
     }
 
-    fn solve_group(&mut self, v: &Frac) -> Res<Option<Expr>> {
-        let extras = self.extras(v)?;
-        let mut below = vec![0u16; self.factors.len()];
-        for (k, b) in below.iter_mut().enumerate() {
-            let n = v.power_of_factor(k);
-            if n > 0 && !self.factors[k].constant {
-                *b = if self.is_ramified(k) { n } else { n - 1 };
+    /// F with DF = Σ parts. The parts' denominators tell the denominators of F: each factor's power lowered by one.
+    fn solve_group(&mut self, parts: &[Frac]) -> Res<Option<Expr>> {
+        let mut whole = Frac::zero();
+        for p in parts {
+            whole = self.add(&whole, p)?;
+        }
+        let mut extras: Vec<Extra> = Vec::new();
+        for p in parts {
+            for x in self.extras(p)? {
+                if !extras.iter().any(|y| y.expr == x.expr) {
+                    extras.push(x);
+                }
             }
         }
+        let mut families: Vec<Family> = Vec::new();
+        for p in parts {
+            for below in self.lowered(p, parts.len() > 1) {
+                if !families.iter().any(|f| f.below == below) {
+                    families.push(self.family(below, &whole)?);
+                }
+            }
+        }
+        // Over a denominator common to all.
+        let mut common = whole.den.clone();
+        common.resize(self.factors.len(), 0);
+        let dens = families.iter().map(|f| &f.den).chain(extras.iter().map(|x| &x.rate.den));
+        for den in dens {
+            for (c, d) in common.iter_mut().zip(den) {
+                *c = (*c).max(*d);
+            }
+        }
+        let wanted = self.raise(&whole, &common)?;
+        let mut extra_columns = Vec::new();
+        for x in &extras {
+            extra_columns.push(self.raise(&x.rate, &common)?);
+        }
+        for f in &mut families {
+            for p in parts {
+                self.aim(f, p)?;
+            }
+            f.bounds = self.bounds(&whole, &f.targets);
+        }
+        let mut seen: BTreeMap<(usize, Monomial), Poly> = BTreeMap::new();
+        for round in 0..ROUNDS {
+            let mut fresh: BTreeSet<(usize, Monomial)> = BTreeSet::new();
+            for (i, f) in families.iter_mut().enumerate() {
+                for t in f.targets.difference(&f.done) {
+                    self.budget.charge(f.steps.len())?;
+                    for s in &f.steps {
+                        let m = times(t, s, -1);
+                        let known = m.is_empty() && f.below.iter().all(|&n| n == 0);
+                        if !known && self.allowed(&m, f) && !seen.contains_key(&(i, m.clone())) {
+                            fresh.insert((i, m));
+                        }
+                    }
+                }
+                f.done = f.targets.clone();
+            }
+            if fresh.is_empty() && round > 0 {
+                return Ok(None);
+            }
+            for (i, m) in fresh {
+                let f = Frac { num: Poly::monomial(m.clone(), Rational::ONE), den: families[i].below.clone() };
+                let image = self.rate(&f)?;
+                for family in &mut families {
+                    self.aim(family, &image)?;
+                }
+                seen.insert((i, m), self.raise(&image, &common)?);
+                if seen.len() + extras.len() > MAX_UNKNOWNS {
+                    break;
+                }
+            }
+            let mut columns: Vec<Column> = seen
+                .iter()
+                .map(|((i, m), p)| Column { of: Some((families[*i].below.clone(), m.clone())), image: p.clone() })
+                .collect();
+            // Few factors first: of several integrals the simplest is taken.
+            columns.sort_by_key(|c| {
+                c.of.as_ref().map_or(0, |(below, m)| {
+                    let up: u32 = m.iter().map(|e| u32::from(e.unsigned_abs())).sum();
+                    up + below.iter().map(|n| 4 * u32::from(*n)).sum::<u32>()
+                })
+            });
+            columns.extend(extra_columns.iter().map(|p| Column { of: None, image: p.clone() }));
+            if let Some(found) = self.solve(&columns, &wanted)? {
+                return Ok(Some(self.assemble(&columns, &found, &extras)?));
+            }
+            if seen.len() + extras.len() > MAX_UNKNOWNS {
+                return Ok(None);
+            }
+        }
+        Ok(None)
+    }
+
+    /// The denominators that F may have so that V has this one: all powers lowered by one; where there are other parts
+    /// also one power alone.
+    fn lowered(&self, v: &Frac, each: bool) -> Vec<Vec<u16>> {
+        let down = |k: usize, n: u16| if n == 0 || self.factors[k].constant { 0 } else { n - 1 };
+        let same = |k: usize, n: u16| if self.factors[k].constant { 0 } else { n };
+        let all: Vec<u16> =
+            v.den.iter().enumerate().map(|(k, &n)| if self.is_ramified(k) { n } else { down(k, n) }).collect();
+        let mut out = vec![all];
+        let moving: Vec<usize> = (0..v.den.len()).filter(|&k| same(k, v.den[k]) > 0 && !self.is_ramified(k)).collect();
+        if each && moving.len() > 1 {
+            for &j in &moving {
+                let one = v.den.iter().enumerate().map(|(k, &n)| if k == j { n - 1 } else { same(k, n) }).collect();
+                out.push(one);
+            }
+        }
+        for den in &mut out {
+            while den.last() == Some(&0) {
+                den.pop();
+            }
+        }
+        out
+    }
+
+    /// The monomials over a denominator: by which steps derivation changes them.
+    fn family(&mut self, below: Vec<u16>, whole: &Frac) -> Res<Family> {
         let usable: Vec<usize> = (0..self.generators.len())
             .filter(|&k| {
                 self.generators[k].kind != Kind::Rate && !self.is_constant(k) && self.generators[k].rate.is_some()
             })
             .collect();
-        let usable = self.relevant(v, &usable);
+        let usable = self.relevant(whole, &usable);
         // Logarithmic rates of what a candidate is made of.
         let mut logs = Vec::new();
         for &k in &usable {
             let rate = self.generators[k].rate.clone().ok_or(Fail::Unsupported)?;
-            let mut list = Monomial::from_elem(0, k + 1);
-            list[k] = -1;
-            logs.push(Frac { num: rate.num.shift(&list, &Rational::ONE), den: rate.den });
+            logs.push(Frac { num: rate.num.shift(&power_of(k, -1), &Rational::ONE), den: rate.den });
         }
         for (k, &n) in below.iter().enumerate() {
             if n > 0 {
                 logs.push(self.rate_of_log_factor(k)?);
             }
         }
-        let mut den = vec![0u16; self.factors.len()];
-        below.resize(den.len(), 0);
+        let mut gap = vec![0u16; self.factors.len()];
         for f in &logs {
-            for (k, d) in den.iter_mut().enumerate() {
+            for (k, d) in gap.iter_mut().enumerate() {
                 *d = (*d).max(f.power_of_factor(k));
             }
         }
-        for (k, d) in den.iter_mut().enumerate() {
-            *d = (*d + below[k]).max(v.power_of_factor(k));
-        }
-        let gap: Vec<u16> = den.iter().zip(&below).map(|(d, b)| d - b).collect();
         let mut steps: BTreeSet<Monomial> = BTreeSet::new();
         for f in &logs {
             let raised = self.raise(f, &gap)?;
@@ -131,7 +310,7 @@ impl Tower<'_, '_> {
         // What a relation makes of a step: sin² is 1 − cos².
         for &k in &usable {
             let Some((n, by)) = &self.generators[k].relation else { continue };
-            let down = super::polynomial::power_of(k, -*n);
+            let down = power_of(k, -*n);
             let reduced: Vec<Monomial> = by.0.keys().map(|b| self.moving_part(&times(b, &down, 1))).collect();
             let more: Vec<Monomial> = steps
                 .iter()
@@ -141,71 +320,28 @@ impl Tower<'_, '_> {
             steps.extend(more);
         }
         self.budget.charge(steps.len())?;
-        let raised = self.raise(v, &den)?;
-        let mut targets = self.moving_monomials(&raised);
-        let bounds = self.bounds(v, &raised);
-        // The columns of logarithms and inverse tangents, over a denominator common to all.
-        let mut common = den.clone();
-        common.resize(self.factors.len(), 0);
-        for x in &extras {
-            for (k, d) in common.iter_mut().enumerate() {
-                *d = (*d).max(x.rate.power_of_factor(k));
-            }
-        }
-        let wanted = self.raise(v, &common)?;
-        let mut extra_columns = Vec::new();
-        for x in &extras {
-            extra_columns.push(self.raise(&x.rate, &common)?);
-        }
-        let mut seen: BTreeMap<Monomial, Poly> = BTreeMap::new();
-        let mut done: BTreeSet<Monomial> = BTreeSet::new();
-        for round in 0..ROUNDS {
-            let mut fresh: BTreeSet<Monomial> = BTreeSet::new();
-            for t in targets.difference(&done) {
-                self.budget.charge(steps.len())?;
-                for s in &steps {
-                    let m = times(t, s, -1);
-                    if !m.is_empty() && !seen.contains_key(&m) && self.allowed(&m, &bounds, &usable) {
-                        fresh.insert(m);
-                    }
-                }
-            }
-            done.extend(targets.iter().cloned());
-            if fresh.is_empty() && round > 0 {
-                return Ok(None);
-            }
-            for m in fresh {
-                let f = Frac { num: Poly::monomial(m.clone(), Rational::ONE), den: below.clone() };
-                let image = self.rate(&f)?;
-                let image = self.raise(&image, &common)?;
-                let lower = self.rate_over(&f, &den)?;
-                targets.extend(self.moving_monomials(&lower));
-                seen.insert(m, image);
-                if seen.len() + extras.len() > MAX_UNKNOWNS {
-                    break;
-                }
-            }
-            let mut columns: Vec<Column> =
-                seen.iter().map(|(m, p)| Column { of: Some(m.clone()), image: p.clone() }).collect();
-            // Few factors first: of several integrals the simplest is taken.
-            columns
-                .sort_by_key(|c| c.of.as_ref().map_or(0, |m| m.iter().map(|e| e.unsigned_abs() as u32).sum::<u32>()));
-            columns.extend(extra_columns.iter().map(|p| Column { of: None, image: p.clone() }));
-            if let Some(found) = self.solve(&columns, &wanted)? {
-                return Ok(Some(self.assemble(&columns, &found, &extras, &below)?));
-            }
-            if seen.len() + extras.len() > MAX_UNKNOWNS {
-                return Ok(None);
-            }
-        }
-        Ok(None)
+        let den = gap.iter().enumerate().map(|(k, d)| d + below.get(k).copied().unwrap_or(0)).collect();
+        Ok(Family { below, den, usable, steps, targets: BTreeSet::new(), done: BTreeSet::new(), bounds: Vec::new() })
     }
 
-    /// The derivative's numerator over a given denominator.
-    fn rate_over(&mut self, f: &Frac, den: &[u16]) -> Res<Poly> {
-        let r = self.rate(f)?;
-        let fits = r.den.iter().enumerate().all(|(k, &e)| e <= den.get(k).copied().unwrap_or(0));
-        if fits { self.raise(&r, den) } else { Ok(r.num) }
+    /// Takes the monomials of a part among a family's targets, where its derivatives can have that denominator.
+    fn aim(&mut self, family: &mut Family, part: &Frac) -> Res<()> {
+        let fits = part
+            .den
+            .iter()
+            .enumerate()
+            .all(|(k, &n)| n == 0 || self.factors[k].constant || n <= family.den.get(k).copied().unwrap_or(0));
+        if fits {
+            let mut free = part.clone();
+            for (k, n) in free.den.iter_mut().enumerate() {
+                if self.factors[k].constant {
+                    *n = 0;
+                }
+            }
+            let raised = self.raise(&free, &family.den)?;
+            family.targets.extend(self.moving_monomials(&raised));
+        }
+        Ok(())
     }
 
     /// The generators that F may be made of: those of the integrand, and of their derivatives.
@@ -256,42 +392,38 @@ impl Tower<'_, '_> {
     }
 
     /// The lowest and the highest exponents of a candidate.
-    fn bounds(&self, v: &Frac, raised: &Poly) -> Vec<(i16, i16)> {
+    fn bounds(&self, v: &Frac, targets: &BTreeSet<Monomial>) -> Vec<(i16, i16)> {
         let low = v.num.lowest();
         (0..self.generators.len())
-            .map(|k| {
-                let g = &self.generators[k];
-                match &g.relation {
-                    Some((n, _)) => (0, n - 1),
-                    None => (exponent(&low, k).min(0), raised.degree(k).max(0) + 1),
+            .map(|k| match &self.generators[k].relation {
+                Some((n, _)) => (0, n - 1),
+                None => {
+                    let high = targets.iter().map(|m| exponent(m, k)).max().unwrap_or(0);
+                    (exponent(&low, k).min(0), high.max(0) + 1)
                 }
             })
             .collect()
     }
 
-    fn allowed(&self, m: &Monomial, bounds: &[(i16, i16)], usable: &[usize]) -> bool {
-        m.iter().enumerate().all(|(k, &e)| e == 0 || usable.contains(&k) && (bounds[k].0..=bounds[k].1).contains(&e))
+    fn allowed(&self, m: &Monomial, family: &Family) -> bool {
+        m.iter().enumerate().all(|(k, &e)| {
+            e == 0 || family.usable.contains(&k) && (family.bounds[k].0..=family.bounds[k].1).contains(&e)
+        })
     }
 
     /// F from its coefficients.
-    fn assemble(
-        &mut self,
-        columns: &[Column],
-        found: &[(usize, Coefficient)],
-        extras: &[Extra],
-        below: &[u16],
-    ) -> Res<Expr> {
+    fn assemble(&mut self, columns: &[Column], found: &[(usize, Coefficient)], extras: &[Extra]) -> Res<Expr> {
         let first_extra = columns.len() - extras.len();
         let mut parts = Vec::new();
         // What has a common denominator of constants is one fraction.
-        let mut plain: Vec<(Poly, Poly)> = Vec::new();
+        let mut plain: Vec<((Vec<u16>, Poly), Poly)> = Vec::new();
         for (i, c) in found {
             match &columns[*i].of {
-                Some(m) => {
+                Some((below, m)) => {
                     let num = self.mul_poly(&c.num, &Poly::monomial(m.clone(), Rational::ONE))?;
-                    match plain.iter_mut().find(|(d, _)| *d == c.den) {
+                    match plain.iter_mut().find(|(d, _)| d.0 == *below && d.1 == c.den) {
                         Some((_, n)) => *n = n.add(&num),
-                        None => plain.push((c.den.clone(), num)),
+                        None => plain.push(((below.clone(), c.den.clone()), num)),
                     }
                 }
                 None => {
@@ -303,8 +435,8 @@ impl Tower<'_, '_> {
                 }
             }
         }
-        for (den, num) in plain {
-            let f = self.cancel(Frac { num, den: below.to_vec() })?;
+        for ((below, den), num) in plain {
+            let f = self.cancel(Frac { num, den: below })?;
             let num = self.write(&f)?;
             let single = den.as_monomial().is_some();
             let den = self.write_poly(&den)?;

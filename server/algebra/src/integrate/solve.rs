@@ -9,16 +9,20 @@ use crate::rational::Rational;
 use hashbrown::HashMap;
 use std::collections::BTreeMap;
 
-/// 2⁶¹ − 1, which is 3 modulo 4.
-const P: u64 = (1 << 61) - 1;
-/// How often other residues are tried where a root does not exist.
-const TRIES: u64 = 64;
+/// Primes below 2⁶¹ that are 3 modulo 4, by their distance: where constants under roots are no squares modulo one of them,
+/// the next is tried.
+const PRIMES: [u64; 32] = [
+    1, 45, 229, 465, 829, 985, 1153, 1281, 1425, 1489, 1525, 1533, 1609, 1621, 1669, 1741, 1753, 1813, 1845, 1849,
+    1869, 1909, 1921, 1945, 2133, 2185, 2373, 2385, 2401, 2605, 2665, 3045,
+];
+/// How often other residues are tried for each prime.
+const TRIES: u64 = 4;
 /// More coefficients than this are not solved for exactly.
 const MAX_EXACT: usize = 90;
 
-/// An unknown: a monomial, or none for another function, and the numerator of its derivative.
+/// An unknown: a monomial over a denominator, or none for another function, and the numerator of its derivative.
 pub(super) struct Column {
-    pub of: Option<Monomial>,
+    pub of: Option<(Vec<u16>, Monomial)>,
     pub image: Poly,
 }
 
@@ -29,59 +33,74 @@ pub(super) struct Coefficient {
     pub den: Poly,
 }
 
-fn mul(a: u64, b: u64) -> u64 {
-    let w = a as u128 * b as u128;
-    let r = (w & P as u128) as u64 + (w >> 61) as u64;
-    if r >= P { r - P } else { r }
-}
+/// A prime field.
+#[derive(Clone, Copy)]
+struct Modulus(u64);
 
-fn pow(mut a: u64, mut n: u64) -> u64 {
-    let mut out = 1;
-    while n > 0 {
-        if n & 1 == 1 {
-            out = mul(out, a);
-        }
-        a = mul(a, a);
-        n >>= 1;
+impl Modulus {
+    fn mul(self, a: u64, b: u64) -> u64 {
+        (a as u128 * b as u128 % self.0 as u128) as u64
     }
-    out
+
+    fn pow(self, mut a: u64, mut n: u64) -> u64 {
+        let mut out = 1;
+        while n > 0 {
+            if n & 1 == 1 {
+                out = self.mul(out, a);
+            }
+            a = self.mul(a, a);
+            n >>= 1;
+        }
+        out
+    }
+
+    fn inverse(self, a: u64) -> u64 {
+        self.pow(a, self.0 - 2)
+    }
+
+    fn add(self, a: u64, b: u64) -> u64 {
+        let r = a + b;
+        if r >= self.0 { r - self.0 } else { r }
+    }
+
+    fn neg(self, a: u64) -> u64 {
+        if a == 0 { 0 } else { self.0 - a }
+    }
 }
 
-fn inverse(a: u64) -> u64 {
-    pow(a, P - 2)
-}
-
-fn add(a: u64, b: u64) -> u64 {
-    let r = a + b;
-    if r >= P { r - P } else { r }
-}
-
-fn neg(a: u64) -> u64 {
-    if a == 0 { 0 } else { P - a }
+/// A prime, and residues of the generators that are constants.
+struct Residues {
+    modulus: Modulus,
+    values: Vec<u64>,
 }
 
 type Sparse = BTreeMap<usize, u64>;
 
 /// Columns in echelon form.
-#[derive(Default)]
 struct Echelon {
+    modulus: Modulus,
     /// By pivot row: the column's number and its entries, scaled to one at the pivot.
     pivots: HashMap<usize, usize>,
     columns: Vec<(Sparse, Vec<(usize, u64)>)>,
 }
 
 impl Echelon {
+    fn new(modulus: Modulus) -> Echelon {
+        Echelon { modulus, pivots: HashMap::new(), columns: Vec::new() }
+    }
+
     /// Subtracts what is known; what is left, and how often each was subtracted.
     fn reduce(&self, mut c: Sparse, budget: &mut Budget) -> Result<(Sparse, Vec<(usize, u64)>), Stopped> {
+        let p = self.modulus;
         let mut used = Vec::new();
         let mut from = 0;
         while let Some((&row, &x)) = c.range(from..).find(|(r, _)| self.pivots.contains_key(*r)) {
             let k = self.pivots[&row];
-            let minus = neg(x);
+            let minus = p.neg(x);
             budget.charge(self.columns[k].0.len() / 4 + 1)?;
             for (&r, &y) in &self.columns[k].0 {
                 let slot = c.entry(r).or_insert(0);
-                *slot = add(*slot, mul(minus, y));
+                *slot = p.add(*slot, p.mul(minus, y));
                 if *slot == 0 {
                     c.remove(&r);
                 }
@@ -94,14 +113,15 @@ impl Echelon {
 
     /// Takes a column in; its pivot row where it is independent.
     fn push(&mut self, c: Sparse, budget: &mut Budget) -> Result<Option<usize>, Stopped> {
+        let p = self.modulus;
         let (mut c, mut used) = self.reduce(c, budget)?;
         let k = self.columns.len();
         let Some((&row, &x)) = c.iter().next() else {
             self.columns.push((Sparse::new(), Vec::new()));
             return Ok(None);
         };
-        let scale = inverse(x);
-        c.values_mut().for_each(|v| *v = mul(*v, scale));
+        let scale = p.inverse(x);
+        c.values_mut().for_each(|v| *v = p.mul(*v, scale));
         // Its own column is scale · (column − Σ used).
         used.push((usize::MAX, scale));
         self.columns.push((c, used));
@@ -111,17 +131,18 @@ impl Echelon {
 
     /// The coefficients of a combination of the original columns.
     fn coefficients(&self, used: Vec<(usize, u64)>) -> Vec<u64> {
+        let p = self.modulus;
         let mut v = vec![0; self.columns.len()];
-        used.into_iter().for_each(|(k, x)| v[k] = add(v[k], x));
+        used.into_iter().for_each(|(k, x)| v[k] = p.add(v[k], x));
         for k in (0..v.len()).rev() {
             if v[k] == 0 {
                 continue;
             }
             let list = &self.columns[k].1;
             let scale = list.last().map_or(1, |l| l.1);
-            v[k] = mul(v[k], scale);
+            v[k] = p.mul(v[k], scale);
             for &(j, x) in &list[..list.len().saturating_sub(1)] {
-                v[j] = add(v[j], neg(mul(v[k], x)));
+                v[j] = p.add(v[j], p.neg(p.mul(v[k], x)));
             }
         }
         v
@@ -131,18 +152,18 @@ impl Echelon {
 impl Tower<'_, '_> {
     /// Coefficients with Σ cᵢ columnᵢ = wanted: those that are not zero, exactly.
     pub fn solve(&mut self, columns: &[Column], wanted: &Poly) -> Res<Option<Vec<(usize, Coefficient)>>> {
-        let Some(values) = self.residues()? else { return Ok(None) };
+        let Some(at) = self.residues()? else { return Ok(None) };
         let mut rows: HashMap<Monomial, usize> = HashMap::new();
         let mut sparse = Vec::new();
         for p in columns.iter().map(|c| &c.image).chain([wanted]) {
             self.budget.charge(p.0.len())?;
-            match self.residue_column(p, &values, &mut rows) {
+            match self.residue_column(p, &at, &mut rows) {
                 Some(c) => sparse.push(c),
                 None => return Ok(None),
             }
         }
         let Some(target) = sparse.pop() else { return Ok(None) };
-        let mut echelon = Echelon::default();
+        let mut echelon = Echelon::new(at.modulus);
         for c in &sparse {
             echelon.push(c.clone(), self.budget)?;
         }
@@ -156,7 +177,7 @@ impl Tower<'_, '_> {
             return Ok(None);
         }
         // As many rows as unknowns, independent.
-        let mut small = Echelon::default();
+        let mut small = Echelon::new(at.modulus);
         let mut chosen = Vec::new();
         for &k in &support {
             match small.push(sparse[k].clone(), self.budget)? {
@@ -177,20 +198,21 @@ impl Tower<'_, '_> {
     }
 
     /// Residues of the constants that satisfy their relations.
-    fn residues(&mut self) -> Res<Option<Vec<u64>>> {
-        for seed in 0..TRIES {
-            let mut values = vec![0u64; self.generators.len()];
+    fn residues(&mut self) -> Res<Option<Residues>> {
+        for seed in 0..TRIES * PRIMES.len() as u64 {
+            let p = Modulus((1 << 61) - PRIMES[(seed / TRIES) as usize]);
+            let mut at = Residues { modulus: p, values: vec![0u64; self.generators.len()] };
             let mut fits = true;
             for k in 0..self.generators.len() {
                 if !self.is_constant_number(k) {
                     continue;
                 }
-                let free = mix(mix(0x6A11, seed), k as u64) % (P - 1) + 1;
-                values[k] = match &self.generators[k].relation {
-                    Some((2, by)) => match self.residue(by, &values) {
+                let free = mix(mix(0x6A11, seed), k as u64) % (p.0 - 1) + 1;
+                at.values[k] = match &self.generators[k].relation {
+                    Some((2, by)) => match self.residue(by, &at) {
                         Some(square) => {
-                            let r = pow(square, P.div_ceil(4));
-                            fits &= mul(r, r) == square && r != 0;
+                            let r = p.pow(square, p.0.div_ceil(4));
+                            fits &= p.mul(r, r) == square && r != 0;
                             r
                         }
                         None => {
@@ -202,27 +224,28 @@ impl Tower<'_, '_> {
                 };
             }
             if fits {
-                return Ok(Some(values));
+                return Ok(Some(at));
             }
         }
         Ok(None)
     }
 
-    fn residue(&self, p: &Poly, values: &[u64]) -> Option<u64> {
+    fn residue(&self, p: &Poly, at: &Residues) -> Option<u64> {
         let mut out = 0;
         for (m, r) in &p.0 {
-            out = add(out, self.residue_of_term(m, r, values)?);
+            out = at.modulus.add(out, self.residue_of_term(m, r, at)?);
         }
         Some(out)
     }
 
-    fn residue_of_term(&self, m: &Monomial, r: &Rational, values: &[u64]) -> Option<u64> {
-        let (n, d) = r.modulo(P)?;
-        let mut out = mul(n, inverse(d));
+    fn residue_of_term(&self, m: &Monomial, r: &Rational, at: &Residues) -> Option<u64> {
+        let p = at.modulus;
+        let (n, d) = r.modulo(p.0)?;
+        let mut out = if d == 1 { n } else { p.mul(n, p.inverse(d)) };
         for (k, &e) in m.iter().enumerate() {
             if e != 0 && self.is_constant_number(k) {
-                let base = if e < 0 { inverse(values[k]) } else { values[k] };
-                out = mul(out, pow(base, e.unsigned_abs().into()));
+                let base = if e < 0 { p.inverse(at.values[k]) } else { at.values[k] };
+                out = p.mul(out, p.pow(base, e.unsigned_abs().into()));
             }
         }
         Some(out)
@@ -232,13 +255,13 @@ impl Tower<'_, '_> {
         trim(m.iter().enumerate().map(|(k, &e)| if self.is_constant_number(k) { 0 } else { e }).collect())
     }
 
-    fn residue_column(&self, p: &Poly, values: &[u64], rows: &mut HashMap<Monomial, usize>) -> Option<Sparse> {
+    fn residue_column(&self, p: &Poly, at: &Residues, rows: &mut HashMap<Monomial, usize>) -> Option<Sparse> {
         let mut out = Sparse::new();
         for (m, r) in &p.0 {
             let n = rows.len();
             let row = *rows.entry(self.moving(m)).or_insert(n);
             let slot = out.entry(row).or_insert(0);
-            *slot = add(*slot, self.residue_of_term(m, r, values)?);
+            *slot = at.modulus.add(*slot, self.residue_of_term(m, r, at)?);
         }
         out.retain(|_, v| *v != 0);
         Some(out)
