@@ -57,9 +57,8 @@ fn look(
     let mut candidates = Vec::new();
     if !kinetic.gyroscopic.is_empty() {
         let list = functions(cx, &kinetic.positions, &scope.angles, GYROSCOPIC_DEGREE);
-        if tensors.len() + list.len() * kinetic.velocities.len() > MAX_UNKNOWNS {
-            let why = "integrals quadratic in the velocities were not looked for: with gyroscopic forces there are too many unknown coefficients";
-            return Ok((Vec::new(), Some(why.into())));
+        if list.len() * kinetic.velocities.len() > MAX_UNKNOWNS {
+            return Err(Halt::Unsolved("with gyroscopic forces there are too many unknown coefficients".into()));
         }
         for f in list {
             for i in 0..kinetic.velocities.len() {
@@ -68,15 +67,6 @@ fn look(
             }
         }
     }
-    // The tensors come last, so that solutions without them are told apart.
-    for &value in &tensors {
-        candidates.push(Candidate::new(cx, &kinetic, value, true)?);
-    }
-    if candidates.len() > MAX_UNKNOWNS {
-        let why = "integrals quadratic in the velocities were not looked for: there are too many Killing tensors";
-        return Ok((Vec::new(), Some(why.into())));
-    }
-    let solutions = solve(cx, &kinetic, &candidates)?;
     let (mut linear, mut known) = (Vec::new(), vec![kinetic.energy]);
     for item in points {
         if jet_order(cx.arena, item.charge) != 1 {
@@ -92,8 +82,11 @@ fn look(
     let ground = Ground { positions: &kinetic.positions, angles: &scope.angles, potential, degree };
     let mut found = Vec::new();
     let no_closed_form = "the velocity-free part of a first integral exists, but no closed form was found";
-    let mut more = untouched(cx, &kinetic, &fields)?;
-    more.extend(solutions.iter().filter(|s| s.linear).cloned());
+    let more = if kinetic.gyroscopic.is_empty() {
+        untouched(cx, &kinetic, &fields)?
+    } else {
+        solve(cx, &kinetic, &candidates)?
+    };
     let values: Vec<Expr> = more.iter().map(|s| s.value).collect();
     for k in independent(cx, &kinetic.velocities, 1, &linear, &values)? {
         match primitive(cx, &ground, &more[k].slopes)? {
@@ -108,12 +101,18 @@ fn look(
             known.push(cx.arena.mul(a, b));
         }
     }
-    let hidden: Vec<&Solution> = solutions.iter().filter(|s| !s.linear).collect();
-    let values: Vec<Expr> = hidden.iter().map(|s| s.value).collect();
-    for k in independent(cx, &kinetic.velocities, 2, &known, &values)? {
-        match primitive(cx, &ground, &hidden[k].slopes)? {
+    // Tensors of what is known are no part of the ansatz. The others come last, so that solutions without them are told
+    // apart.
+    for k in independent(cx, &kinetic.velocities, 2, &known, &tensors)? {
+        candidates.push(Candidate::new(cx, &kinetic, tensors[k], true)?);
+    }
+    if candidates.len() > MAX_UNKNOWNS {
+        return Err(Halt::Unsolved("there are too many unknown coefficients".into()));
+    }
+    for s in solve(cx, &kinetic, &candidates)?.into_iter().filter(|s| !s.linear) {
+        match primitive(cx, &ground, &s.slopes)? {
             Some(w) => {
-                let charge = textbook_multiple(cx, &kinetic, values[k], w)?;
+                let charge = textbook_multiple(cx, &kinetic, s.value, w)?;
                 found.push(Item { charge, origin: Origin::Quadratic, known: false });
             }
             None => incomplete = incomplete.or(Some(no_closed_form.into())),
@@ -331,7 +330,7 @@ fn textbook_multiple(cx: &mut Context<'_>, kinetic: &Kinetic, value: Expr, w: Ex
 }
 
 /// A product, summand by summand: factored terms stay factored, and parameters cancel.
-fn times(cx: &mut Context<'_>, e: Expr, scale: Expr) -> Result<Expr, Stopped> {
+pub(super) fn times(cx: &mut Context<'_>, e: Expr, scale: Expr) -> Result<Expr, Stopped> {
     let mut out = Vec::new();
     for (term, c) in cx.arena.summands(e) {
         out.push((cx.arena.mul(term, scale), c));
@@ -341,7 +340,7 @@ fn times(cx: &mut Context<'_>, e: Expr, scale: Expr) -> Result<Expr, Stopped> {
 
 /// A factor that takes parameters from below lines and those common to all terms, and makes the numbers before
 /// velocities whole.
-fn plain(cx: &mut Context<'_>, whole: Expr) -> Result<Expr, Stopped> {
+pub(super) fn plain(cx: &mut Context<'_>, whole: Expr) -> Result<Expr, Stopped> {
     let flat = cx.arena.expand(whole, cx.budget)?;
     let terms = cx.arena.summands(flat);
     let mut factors: Vec<(Expr, Rational)> = Vec::new();

@@ -5,7 +5,7 @@
 //! some that are no such products: these are looked for with components Kᵢⱼ in the ansatz of the search.
 
 use super::Scope;
-use super::kernel::{Halt, kernel};
+use super::kernel::{Halt, dependent, kernel};
 use super::kinetic::Kinetic;
 use crate::context::Context;
 use leastwise_algebra::{Arena, Expr, Function, Rational, Stopped};
@@ -61,7 +61,7 @@ pub(super) fn quadratic_part(cx: &mut Context<'_>, velocities: &[Expr], e: Expr)
 }
 
 /// The rate along geodesics.
-fn geodesic_rate(cx: &mut Context<'_>, kinetic: &Kinetic, e: Expr) -> Result<Expr, Stopped> {
+pub(super) fn geodesic_rate(cx: &mut Context<'_>, kinetic: &Kinetic, e: Expr) -> Result<Expr, Stopped> {
     let mut parts = Vec::new();
     for i in 0..kinetic.positions.len() {
         let d = cx.arena.partial(e, kinetic.positions[i], cx.budget)?;
@@ -138,6 +138,7 @@ pub(super) fn tensors(
     let maximal = fields.len() == n * (n + 1) / 2;
     let mut incomplete = None;
     if !kinetic.flat && !maximal {
+        list.push(kinetic.energy);
         let least = scope.degree.max(2);
         let squares: Vec<Expr> =
             (0..n).flat_map(|i| (i..n).map(move |j| (i, j))).map(|(i, j)| cx.arena.mul(v[i], v[j])).collect();
@@ -150,12 +151,13 @@ pub(super) fn tensors(
             }
         }
         if ansatz.len() <= MAX_UNKNOWNS {
-            list.extend(constant_along_geodesics(cx, kinetic, &ansatz)?);
+            // Without what is known already.
+            let new: Vec<Expr> = independent(cx, v, 2, &list, &ansatz)?.into_iter().map(|k| ansatz[k]).collect();
+            list.extend(constant_along_geodesics(cx, kinetic, &new)?);
         } else {
             let why = "of the kinetic energy's Killing tensors only products of Killing fields were looked at: their ansatz has too many coefficients";
             incomplete = Some(why.into());
         }
-        list.push(kinetic.energy);
     }
     let kept = independent(cx, v, 2, &[], &list)?;
     Ok((kept.into_iter().map(|k| list[k]).collect(), incomplete))
@@ -178,8 +180,6 @@ pub(super) fn independent(
             velocities.iter().map(|&v| cx.arena.partial(e, v, cx.budget)).collect::<Result<_, Stopped>>()?
         });
     }
-    // The last column of a relation depends on those before it.
-    let dependent: Vec<usize> =
-        kernel(cx, &columns)?.iter().filter_map(|c| c.iter().rposition(|&x| x != Arena::ZERO)).collect();
+    let dependent = dependent(cx, &columns)?;
     Ok((0..list.len()).filter(|k| !dependent.contains(&(known.len() + k))).collect())
 }

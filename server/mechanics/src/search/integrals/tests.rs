@@ -335,6 +335,40 @@ fn a_charge_in_a_uniform_field_has_products_only() {
 }
 
 #[test]
+fn a_charge_on_two_springs_has_one_more() {
+    let (mut f, at, speed) = body(&["x", "y"]);
+    magnetic(&mut f, &at, &speed);
+    springs(&mut f, &at);
+    let expected = "m² (k₁ - k₂) ẋ² + 2 m q B (k₂ y ẋ - k₁ x ẏ) + (m (k₁ - k₂) - q² B²) k₁ x² - k₂ q² B² y²";
+    check(f, &[], &[expected]);
+}
+
+/// Two masses on a line with a spring between them.
+fn pair() -> (Fixture, Vec<Expr>) {
+    let mut f = Fixture::new();
+    let (m1, m2, k) = (f.parameter("m₁"), f.parameter("m₂"), f.parameter("k"));
+    let ((x, a), (y, b)) = (f.coordinate("x"), f.coordinate("y"));
+    let parts = [f.half_square(m1, a), f.half_square(m2, b)];
+    f.term(TermKind::Kinetic, "masses", &parts);
+    let d = f.arena.sub(x, y);
+    let spring = f.half_square(k, d);
+    f.term(TermKind::Potential, "spring", &[spring]);
+    (f, vec![x, y])
+}
+
+#[test]
+fn coupled_masses_have_the_energies_of_their_modes() {
+    // The energy of the relative motion is the whole energy less that of the centre of mass.
+    check(pair().0, &[], &["* m₁ ẋ + m₂ ẏ"]);
+    // On walls there are two modes.
+    let (mut f, at) = pair();
+    springs(&mut f, &at);
+    let (texts, incomplete) = found(&mut f, &[], &[]);
+    assert_eq!(incomplete, None);
+    assert!(texts.len() == 1 && texts[0].starts_with("m₁ (m₂ (k + k₁) - m₁ (k + k₂)) ẋ² - 2 m₁ m₂ k ẋ ẏ"), "{texts:?}");
+}
+
+#[test]
 fn refusals_say_why() {
     let (mut f, at, _) = body(&["x"]);
     let t = f.time();
