@@ -207,6 +207,20 @@ mod tests {
     }
 
     #[test]
+    fn the_grammar_reads_the_constants() {
+        let none = leastwise_grammar::callable_names(std::iter::empty());
+        for c in table::constants() {
+            let text = format!("parameter {} = {}", c.symbol, c.written().0);
+            let parsed = leastwise_grammar::parse_item(&text, &none);
+            let ItemKind::Parameter(list) = &parsed.item.kind else { panic!("{text}") };
+            assert!(parsed.slips.is_empty(), "{text}: {:?}", parsed.slips);
+            assert_eq!(list[0].declared.name.text, c.symbol);
+            let unit = list[0].value.as_ref().and_then(|v| v.unit.as_ref());
+            assert_eq!(unit.map_or(Some([0; 7]), dimension), sixtieths(c.unit.dimension()), "{text}");
+        }
+    }
+
+    #[test]
     fn usual_units() {
         let check = |name: &str, d: [i64; 7], unit: Option<&str>| {
             assert_eq!(usual_unit(name, d.map(|n| n * 60)).as_deref(), unit, "{name}");
