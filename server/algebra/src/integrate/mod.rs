@@ -5,6 +5,7 @@
 //! not fit costs an answer, never a wrong one.
 
 mod ansatz;
+mod common;
 mod factor;
 mod polynomial;
 mod read;
@@ -20,6 +21,7 @@ use crate::budget::{Budget, Stopped};
 use crate::zero::Sign;
 use tower::{Fail, Tower};
 
+pub use common::without_common_factor;
 pub use rules::antiderivative;
 
 /// What parallel integration may spend, in nodes.

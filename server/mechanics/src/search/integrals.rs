@@ -79,7 +79,8 @@ fn look(
     let potential = lagrangian(cx, model)?;
     let potential = cx.arena.substitute(potential, &at_rest, cx.budget)?;
     let degree = scope.degree + 2;
-    let ground = Ground { positions: &kinetic.positions, angles: &scope.angles, potential, degree };
+    let (positions, velocities, angles) = (&kinetic.positions, &kinetic.velocities, &scope.angles);
+    let ground = Ground { model, positions, velocities, angles, potential, degree };
     let mut found = Vec::new();
     let no_closed_form = "the velocity-free part of a first integral exists, but no closed form was found";
     let more = if kinetic.gyroscopic.is_empty() {

@@ -5,7 +5,9 @@
 //! determinants, of the columns' values at numeric states (Cramer's rule). What comes out is to be confirmed.
 
 use crate::context::Context;
-use leastwise_algebra::{Arena, Expr, Function, Node, Rational, Reason, Residues, Role, Stopped};
+use leastwise_algebra::{
+    Arena, Expr, Function, Node, Rational, Reason, Residues, Role, Stopped, without_common_factor,
+};
 
 /// Why a search ends.
 pub(super) enum Halt {
@@ -201,11 +203,15 @@ fn quotients(
     if rows.len() < n {
         return Err(unsolved());
     }
+    let mut minors = Vec::new();
+    for left_out in 0..=n {
+        let columns: Vec<usize> = (0..=n).filter(|&c| c != left_out).collect();
+        let d = determinant(cx, &rows, &columns)?;
+        minors.push(if left_out % 2 == 0 { d } else { cx.arena.neg(d) });
+    }
     let mut out = vec![Arena::ZERO; relation.len()];
-    for (left_out, &j) in support.iter().enumerate() {
-        let minor: Vec<usize> = (0..=n).filter(|&c| c != left_out).collect();
-        let d = determinant(cx, &rows, &minor)?;
-        out[j] = if left_out % 2 == 0 { d } else { cx.arena.neg(d) };
+    for (j, c) in support.into_iter().zip(without_common_factor(cx.arena, &minors, cx.budget)?) {
+        out[j] = c;
     }
     Ok(out)
 }

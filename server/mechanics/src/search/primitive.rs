@@ -1,13 +1,19 @@
 //! W with given ∂W/∂q: by integration over one coordinate after the other, in whatever order it can be done; or else as
-//! a combination, with polynomials as coefficients, of what the potential energy is made of.
+//! a combination, with polynomials as coefficients, of what the potential energy is made of; or else as a gauge term.
 
 use super::kernel::{Halt, kernel};
 use super::killing::{MAX_UNKNOWNS, functions};
 use crate::context::Context;
+use crate::gauge::gauge_term;
+use crate::model::Model;
 use leastwise_algebra::{Arena, Expr, Function, Node, Rational, Stopped, antiderivative};
 
 /// What the search for W starts from.
 pub(super) struct Ground<'a> {
+    /// The model.
+    pub model: &'a Model,
+    /// q̇.
+    pub velocities: &'a [Expr],
     /// q.
     pub positions: &'a [Expr],
     /// Which of them are angles.
@@ -21,7 +27,7 @@ pub(super) struct Ground<'a> {
 /// W with ∂W/∂qⁱ = `slopes`[i], proved; `None` where no closed form was found. Costs an expansion and at most n
 /// antiderivatives for each of the n coordinates.
 pub(super) fn primitive(cx: &mut Context<'_>, ground: &Ground<'_>, slopes: &[Expr]) -> Result<Option<Expr>, Stopped> {
-    for attempt in [integrated, fitted] {
+    for attempt in [integrated, fitted, parallel] {
         let Some(w) = attempt(cx, ground, slopes)? else { continue };
         let mut proved = true;
         for (&q, &f) in ground.positions.iter().zip(slopes) {
@@ -75,6 +81,13 @@ fn integrated(cx: &mut Context<'_>, ground: &Ground<'_>, slopes: &[Expr]) -> Res
         out.push((g, Rational::ONE));
     }
     cx.build(&out).map(Some)
+}
+
+/// W with dW/dt = Σ ∂W/∂q q̇, as a gauge term is found.
+fn parallel(cx: &mut Context<'_>, ground: &Ground<'_>, slopes: &[Expr]) -> Result<Option<Expr>, Stopped> {
+    let parts: Vec<_> =
+        slopes.iter().zip(ground.velocities).map(|(&f, &v)| (cx.arena.mul(f, v), Rational::ONE)).collect();
+    gauge_term(cx, ground.model, &parts)
 }
 
 /// W by a linear system for its coefficients; to be confirmed.
