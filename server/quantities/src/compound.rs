@@ -4,14 +4,16 @@ use crate::units::{Mark, Symbol, unit};
 use crate::{Dimension, Exact, Exponent};
 use leastwise_algebra::Rational;
 use std::fmt;
+use std::sync::OnceLock;
 
 /// A product of powers of units as it was written, with what it comes to.
 #[derive(Clone, Debug)]
 pub struct Compound {
     factors: Vec<(Symbol, Exponent)>,
     dimension: Dimension,
-    factor: Exact,
     angle: Exponent,
+    /// Told when it is asked for: a dimension is wanted at every keystroke, a factor only to be shown.
+    factor: OnceLock<Option<Exact>>,
 }
 
 /// Why a unit or a conversion cannot be told.
@@ -71,7 +73,6 @@ impl Compound {
         for (symbol, exponent) in &factors {
             out.dimension = out.dimension.times(symbol.unit.dimension.pow(*exponent)?)?;
             out.angle = out.angle.plus(symbol.unit.angle.times(*exponent)?)?;
-            out.factor = out.factor.times(&symbol.factor().pow(*exponent)?)?;
         }
         out.factors = factors;
         Some(out)
@@ -79,7 +80,7 @@ impl Compound {
 
     /// The unit one.
     pub fn one() -> Compound {
-        Compound { factors: Vec::new(), dimension: Dimension::ONE, factor: Exact::ONE, angle: Exponent::ZERO }
+        Compound { factors: Vec::new(), dimension: Dimension::ONE, angle: Exponent::ZERO, factor: OnceLock::new() }
     }
 
     /// The units and their exponents as written.
@@ -97,9 +98,15 @@ impl Compound {
         self.angle
     }
 
-    /// How many coherent SI units it is; an error for a level.
+    /// How many coherent SI units it is; an error for a level, or where it has too many digits.
     pub fn factor(&self) -> Result<&Exact, UnitError> {
-        if self.has(Mark::Level) { Err(UnitError::Level) } else { Ok(&self.factor) }
+        if self.has(Mark::Level) {
+            return Err(UnitError::Level);
+        }
+        let factor = self.factor.get_or_init(|| {
+            self.factors.iter().try_fold(Exact::ONE, |product, (s, e)| product.times(&s.factor().pow(*e)?))
+        });
+        factor.as_ref().ok_or(UnitError::TooLarge)
     }
 
     /// Whether one of its units has this mark.
@@ -134,7 +141,7 @@ impl Compound {
             let own = s.unit.uncertainty()?.div(s.unit.factor().to_rational()?)?;
             relative = relative.add(&own.mul(&e.to_rational()));
         }
-        (!relative.is_zero()).then(|| Some(relative.abs().mul(self.factor.to_rational()?)))?
+        (!relative.is_zero()).then(|| Some(relative.abs().mul(self.factor().ok()?.to_rational()?)))?
     }
 
     /// The product.
@@ -216,8 +223,9 @@ mod tests {
             assert_eq!(Compound::read(text).map_err(|e| e.to_string()).err().as_deref(), Some(message));
         };
         check("N/ft", "`ft` is not known as a unit");
-        check("km^2147483647", "the unit's exponents or digits are too large");
         check("m^2147483647 m", "the unit's exponents or digits are too large");
+        let large = Compound::read("km^2147483647").expect("its dimension is known");
+        assert_eq!(large.factor(), Err(UnitError::TooLarge));
         let unknown = Compound::new(&[("m", Exponent::ONE), ("foo", Exponent::ONE)]).map(|_| ());
         assert_eq!(unknown, Err(UnitError::Unknown { at: 1, symbol: "foo".to_owned() }));
     }
