@@ -8,6 +8,7 @@ use crate::sheet::Maker;
 use leastwise_algebra::{Arena, Expr, Function, Node, Rational, Verdict};
 use leastwise_grammar::tree::Severity;
 use leastwise_mechanics::context::{Context, Parts};
+use leastwise_mechanics::gauge::{self, Winding};
 use leastwise_mechanics::model::TermKind;
 use leastwise_mechanics::symmetry::{NoGenerator, Status};
 use leastwise_mechanics::verdicts::{Answers, Culprit, MassVerdict, SymmetryAnswer, dependent_parts};
@@ -355,7 +356,8 @@ fn symmetry(
     }
 }
 
-/// A gauge term that changes when an angle makes a full turn: the charge is a function on the covering space only.
+/// A gauge term that changes when an angle makes a full turn, or on a way around an axis: the charge is a function on the
+/// covering space only.
 fn multivalued(
     maker: &mut Maker<'_>,
     checked: &Checked,
@@ -364,25 +366,25 @@ fn multivalued(
     out: &mut Vec<Finding>,
 ) {
     let Some(gauge) = a.gauge else { return };
-    let pi = maker.arena.pi();
-    for i in checked.angles() {
-        let q = &checked.model().coordinates[i];
-        if q.members.is_some() {
-            continue;
-        }
-        let atom = q.jet(maker.arena, 0);
-        let Some(change) = turned_once(maker, gauge, atom, pi) else { continue };
-        let mut cx = Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
-        if !cx.vanishes(&change).is_refuted() {
-            continue;
-        }
-        let (gauge, name) = (one_line(&maker.prints.text(maker.arena, gauge)), q.label(maker.arena));
+    let model = checked.model();
+    let angles: Vec<usize> = checked.angles().collect();
+    let mut cx = Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
+    let Ok(windings) = gauge::multivalued(&mut cx, model, gauge, &angles) else { return };
+    let gauge = one_line(&maker.prints.text(maker.arena, gauge));
+    for winding in windings {
+        let when = match winding {
+            Winding::Turn(i) => format!("when {} turns by 2π", model.coordinates[i].label(maker.arena)),
+            Winding::Axis(y, x) => {
+                let (x, y) = (maker.prints.text(maker.arena, x), maker.prints.text(maker.arena, y));
+                format!("on a way around the axis {} = 0, {} = 0", one_line(&x), one_line(&y))
+            }
+        };
         out.push(finding(
             "gauge-multivalued",
             Severity::Information,
             claim.range.clone(),
             format!(
-                "`{}` holds up to d/dt of {gauge}, which changes when {name} turns by 2π: its charge is not single-valued",
+                "`{}` holds up to d/dt of {gauge}, which changes {when}: its charge is not single-valued",
                 claim.name
             ),
         ));

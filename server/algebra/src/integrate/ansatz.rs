@@ -7,6 +7,7 @@ use super::special::Extra;
 use super::tower::{Fail, Frac, Kind, Res, Tower};
 use crate::arena::{Arena, Expr, Node};
 use crate::budget::Stopped;
+use crate::function::Function;
 use crate::rational::Rational;
 use std::collections::{BTreeMap, BTreeSet};
 
@@ -37,6 +38,10 @@ struct Family {
 
 fn same(a: &Frac, b: &Frac) -> bool {
     (0..a.den.len().max(b.den.len())).all(|k| a.power_of_factor(k) == b.power_of_factor(k))
+}
+
+fn fits(a: &[u16], b: &[u16]) -> bool {
+    a.iter().zip(b).all(|(x, y)| x <= y)
 }
 
 impl Tower<'_, '_> {
@@ -177,8 +182,8 @@ impl Tower<'_, '_> {
         let mut families: Vec<Family> = Vec::new();
         for p in parts {
             for below in self.lowered(p, parts.len() > 1) {
-                if !families.iter().any(|f| f.below == below) {
-                    families.push(self.family(below, &whole)?);
+                if !families.iter().any(|f| f.below == below && p.den.len() <= f.den.len() && fits(&p.den, &f.den)) {
+                    families.push(self.family(below, &whole, &p.den)?);
                 }
             }
         }
@@ -202,17 +207,20 @@ impl Tower<'_, '_> {
             }
             f.bounds = self.bounds(&whole, &f.targets);
         }
-        let mut seen: BTreeMap<(usize, Monomial), Poly> = BTreeMap::new();
+        let mut seen: BTreeMap<(Vec<u16>, Monomial), Poly> = BTreeMap::new();
         for round in 0..ROUNDS {
-            let mut fresh: BTreeSet<(usize, Monomial)> = BTreeSet::new();
-            for (i, f) in families.iter_mut().enumerate() {
+            let mut fresh: BTreeSet<(Vec<u16>, Monomial)> = BTreeSet::new();
+            for f in &mut families {
                 for t in f.targets.difference(&f.done) {
                     self.budget.charge(f.steps.len())?;
                     for s in &f.steps {
                         let m = times(t, s, -1);
                         let known = m.is_empty() && f.below.iter().all(|&n| n == 0);
-                        if !known && self.allowed(&m, f) && !seen.contains_key(&(i, m.clone())) {
-                            fresh.insert((i, m));
+                        if !known && self.allowed(&m, f) {
+                            let candidate = (f.below.clone(), m);
+                            if !seen.contains_key(&candidate) {
+                                fresh.insert(candidate);
+                            }
                         }
                     }
                 }
@@ -221,21 +229,19 @@ impl Tower<'_, '_> {
             if fresh.is_empty() && round > 0 {
                 return Ok(None);
             }
-            for (i, m) in fresh {
-                let f = Frac { num: Poly::monomial(m.clone(), Rational::ONE), den: families[i].below.clone() };
+            for (below, m) in fresh {
+                let f = Frac { num: Poly::monomial(m.clone(), Rational::ONE), den: below.clone() };
                 let image = self.rate(&f)?;
                 for family in &mut families {
                     self.aim(family, &image)?;
                 }
-                seen.insert((i, m), self.raise(&image, &common)?);
+                seen.insert((below, m), self.raise(&image, &common)?);
                 if seen.len() + extras.len() > MAX_UNKNOWNS {
                     break;
                 }
             }
-            let mut columns: Vec<Column> = seen
-                .iter()
-                .map(|((i, m), p)| Column { of: Some((families[*i].below.clone(), m.clone())), image: p.clone() })
-                .collect();
+            let mut columns: Vec<Column> =
+                seen.iter().map(|(of, p)| Column { of: Some(of.clone()), image: p.clone() }).collect();
             // Few factors first: of several integrals the simplest is taken.
             columns.sort_by_key(|c| {
                 c.of.as_ref().map_or(0, |(below, m)| {
@@ -278,7 +284,7 @@ impl Tower<'_, '_> {
     }
 
     /// The monomials over a denominator: by which steps derivation changes them.
-    fn family(&mut self, below: Vec<u16>, whole: &Frac) -> Res<Family> {
+    fn family(&mut self, below: Vec<u16>, whole: &Frac, part: &[u16]) -> Res<Family> {
         let usable: Vec<usize> = (0..self.generators.len())
             .filter(|&k| {
                 self.generators[k].kind != Kind::Rate && !self.is_constant(k) && self.generators[k].rate.is_some()
@@ -301,6 +307,11 @@ impl Tower<'_, '_> {
             for (k, d) in gap.iter_mut().enumerate() {
                 *d = (*d).max(f.power_of_factor(k));
             }
+        }
+        for (k, d) in gap.iter_mut().enumerate() {
+            let below = below.get(k).copied().unwrap_or(0);
+            let wanted = if self.factors[k].constant { 0 } else { part.get(k).copied().unwrap_or(0) };
+            *d = (*d).max(wanted.saturating_sub(below));
         }
         let mut steps: BTreeSet<Monomial> = BTreeSet::new();
         for f in &logs {
@@ -415,6 +426,7 @@ impl Tower<'_, '_> {
     fn assemble(&mut self, columns: &[Column], found: &[(usize, Coefficient)], extras: &[Extra]) -> Res<Expr> {
         let first_extra = columns.len() - extras.len();
         let mut parts = Vec::new();
+        let mut others: Vec<(Coefficient, Expr)> = Vec::new();
         // What has a common denominator of constants is one fraction.
         let mut plain: Vec<((Vec<u16>, Poly), Poly)> = Vec::new();
         for (i, c) in found {
@@ -428,12 +440,27 @@ impl Tower<'_, '_> {
                 }
                 None => {
                     let x = &extras[*i - first_extra];
-                    let (num, den) = (self.write_poly(&c.num)?, self.write_poly(&c.den)?);
-                    let ratio = self.arena.div(num, den);
-                    // log√f is half of log f.
-                    parts.push(self.arena.mul(ratio, x.expr));
+                    // log a − log b is log(a/b).
+                    let minus = Coefficient { num: c.num.neg(), den: c.den.clone() };
+                    let partner = others.iter().position(|o| o.0 == minus && is_log(self.arena, o.1));
+                    match partner.filter(|_| is_log(self.arena, x.expr)) {
+                        Some(k) => others[k].1 = self.log_of_ratio(others[k].1, x.expr),
+                        None => others.push((c.clone(), x.expr)),
+                    }
                 }
             }
+        }
+        for (mut c, mut e) in others {
+            // −log(a/b) is log(b/a).
+            if c.num.primitive().0.is_negative()
+                && let Some(inverse) = self.log_of_inverse(e)
+            {
+                e = inverse;
+                c.num = c.num.neg();
+            }
+            let (num, den) = (self.write_poly(&c.num)?, self.write_poly(&c.den)?);
+            let ratio = self.arena.div(num, den);
+            parts.push(self.arena.mul(ratio, e));
         }
         for ((below, den), num) in plain {
             let f = self.cancel(Frac { num, den: below })?;
@@ -456,4 +483,46 @@ impl Tower<'_, '_> {
         }
         Ok(self.arena.sum(&parts))
     }
+
+    /// −log where it is of a quotient.
+    fn log_of_inverse(&mut self, e: Expr) -> Option<Expr> {
+        let Node::Call(Function::Log, args) = self.arena.node(e).clone() else { return None };
+        let (inner, absolute) = match self.arena.node(args[0]) {
+            Node::Call(Function::Abs, args) => (args[0], true),
+            _ => (args[0], false),
+        };
+        let below = self.arena.factors(inner).iter().any(|f| f.1.is_negative());
+        if !below {
+            return None;
+        }
+        let mut inverse = self.arena.pow(inner, -1);
+        if absolute {
+            inverse = self.arena.call(Function::Abs, &[inverse]);
+        }
+        Some(self.arena.call(Function::Log, &[inverse]))
+    }
+
+    fn log_of_ratio(&mut self, a: Expr, b: Expr) -> Expr {
+        let inner = |e: Expr, arena: &Arena| match arena.node(e) {
+            Node::Call(_, args) => args[0],
+            _ => e,
+        };
+        let (a, b) = (inner(a, self.arena), inner(b, self.arena));
+        let absolute = |e: Expr, arena: &Arena| match arena.node(e) {
+            Node::Call(Function::Abs, args) => Some(args[0]),
+            _ => None,
+        };
+        let e = match (absolute(a, self.arena), absolute(b, self.arena)) {
+            (None, None) => self.arena.div(a, b),
+            (x, y) => {
+                let e = self.arena.div(x.unwrap_or(a), y.unwrap_or(b));
+                self.arena.call(Function::Abs, &[e])
+            }
+        };
+        self.arena.call(Function::Log, &[e])
+    }
+}
+
+fn is_log(arena: &Arena, e: Expr) -> bool {
+    matches!(arena.node(e), Node::Call(Function::Log, _))
 }

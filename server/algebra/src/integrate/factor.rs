@@ -1,7 +1,7 @@
 //! Factors of denominators: content, squares, linear factors of quadratics, rational roots. What is not split further may
 //! still be reducible: then a logarithm is missed, never a wrong one made.
 
-use super::polynomial::{Poly, content, power_of};
+use super::polynomial::{Monomial, Poly, content, exponent, power_of};
 use super::tower::{Res, Tower};
 use crate::rational::Rational;
 
@@ -109,6 +109,12 @@ impl Tower<'_, '_> {
                 return self.split(b, out, level + 1);
             }
         }
+        for &k in &variables {
+            if let Some((a, b)) = self.binomial_factor(&p, k)? {
+                self.split(a, out, level + 1)?;
+                return self.split(b, out, level + 1);
+            }
+        }
         if let [k] = variables[..]
             && let Some((a, b)) = self.rational_root(&p, k)?
         {
@@ -150,6 +156,34 @@ impl Tower<'_, '_> {
         let c = content(&line, k, self.budget)?;
         let line = line.divide(&c, self.budget)?.unwrap_or(line).primitive().1;
         Ok(p.divide(&line, self.budget)?.map(|q| (line, q)))
+    }
+
+    /// xₖⁿ ± bⁿ: xₖ ± b is a factor, for odd n or the lower sign.
+    fn binomial_factor(&mut self, p: &Poly, k: usize) -> Res<Option<(Poly, Poly)>> {
+        let n = p.degree(k);
+        if p.0.len() != 2 {
+            return Ok(None);
+        }
+        for (m, r) in &p.0 {
+            let (Some((num, den)), false) = (r.small(), exponent(m, k) == n) else { continue };
+            if m.iter().any(|e| e % n != 0) {
+                continue;
+            }
+            let base: Monomial = m.iter().map(|e| e / n).collect();
+            for a in 1..=MAX_ROOT {
+                let (root, power) = (Rational::integer(a), Rational::integer(a).pow(n.into(), 512));
+                if den != 1 || power != Some(Rational::integer(num.abs())) {
+                    continue;
+                }
+                for sign in [root.clone(), root.neg()] {
+                    let line = Poly::variable(k).add(&Poly::monomial(base.clone(), sign));
+                    if let Some(q) = p.divide(&line, self.budget)? {
+                        return Ok(Some((line, q)));
+                    }
+                }
+            }
+        }
+        Ok(None)
     }
 
     fn rational_root(&mut self, p: &Poly, k: usize) -> Res<Option<(Poly, Poly)>> {

@@ -66,6 +66,18 @@ impl Tower<'_, '_> {
     /// log p, of the absolute value where the sign is not known.
     fn log(&mut self, p: &Poly, rate: Frac, out: &mut Vec<Extra>) -> Res<()> {
         let e = self.write_poly(p)?;
+        // A quadratic without real zeros has the sign of its first coefficient.
+        for k in p.variables() {
+            if p.degree(k) == 2 && !self.is_constant(k) && p.lowest().is_empty() {
+                let parts = p.coefficients(k);
+                let disc = self.discriminant(&parts)?;
+                if self.sign(&disc)?.is_negative() && self.sign(&parts[2])?.is_positive() {
+                    let expr = self.arena.call(Function::Log, &[e]);
+                    out.push(Extra { expr, rate });
+                    return Ok(());
+                }
+            }
+        }
         let expr = self.log_of(e);
         out.push(Extra { expr, rate });
         Ok(())
@@ -146,9 +158,15 @@ impl Tower<'_, '_> {
         } else {
             return Ok(Root::Unknown);
         };
-        let e = self.write_poly(of)?;
+        // Squares of constants are taken out; the sign of the root does not matter.
+        let low = of.lowest();
+        let half = |k: usize, e: i16| if self.generators[k].relation.is_none() { e.div_euclid(2) } else { 0 };
+        let outside = super::polynomial::trim(low.iter().enumerate().map(|(k, &e)| half(k, e)).collect());
+        let inside = of.shift(&super::polynomial::times(&Default::default(), &outside, -2), &Rational::ONE);
+        let e = self.write_poly(&inside)?;
         let e = self.arena.sqrt(e);
         let r = self.read(e, 0)?;
+        let r = self.mul(&r, &Frac::of(Poly::monomial(outside, Rational::ONE)))?;
         Ok(if sign.is_nonnegative() { Root::Of(r) } else { Root::OfNegative(r) })
     }
 
@@ -370,9 +388,13 @@ impl Tower<'_, '_> {
                 let second = self.mul(&w, r)?.scale(&two());
                 let rate = self.conjugate_rate(&line, &second, &inverse)?;
                 let whole = self.add(&line, &second)?;
-                let e = self.write(&whole)?;
-                let (_, e) = content(self.arena, e);
-                out.push(Extra { expr: self.log_of(e), rate });
+                let e = self.without_constants(&whole)?;
+                // Where the quadratic has no real zero the root is the larger one.
+                let e_w = self.write(&w)?;
+                let upper = (self.signs)(self.arena, e_w, self.budget).is_positive();
+                let positive = upper && self.sign(&disc)?.is_negative();
+                let expr = if positive { self.arena.call(Function::Log, &[e]) } else { self.log_of(e) };
+                out.push(Extra { expr, rate });
             }
             Root::OfNegative(w) => {
                 let second = self.mul(&w, r)?.scale(&two());
@@ -419,8 +441,7 @@ impl Tower<'_, '_> {
                 let rate = self.sub(&rate, &minus)?;
                 let rate = self.cancel(rate)?;
                 let whole = self.add(&line, &second)?;
-                let (e, y) = (self.write(&whole)?, self.write(y)?);
-                let (_, e) = content(self.arena, e);
+                let (e, y) = (self.without_constants(&whole)?, self.write(y)?);
                 let e = self.arena.div(e, y);
                 out.push(Extra { expr: self.log_of(e), rate });
             }
@@ -431,6 +452,18 @@ impl Tower<'_, '_> {
             Root::Unknown => {}
         }
         Ok(())
+    }
+
+    /// Without a number and powers of constants as factors, which a logarithm has no use for.
+    fn without_constants(&mut self, f: &Frac) -> Res<Expr> {
+        let low = f.num.lowest();
+        let constants = low.iter().enumerate().map(|(k, &e)| if self.is_constant(k) { -e } else { 0 }).collect();
+        let num = f.num.shift(&super::polynomial::trim(constants), &Rational::ONE);
+        let e = self.write(&Frac { num, den: f.den.clone() })?;
+        // All signs are plus where the terms are of one sign.
+        let (c, e) = content(self.arena, e);
+        let minus = self.arena.summands(e).iter().filter(|t| t.1.is_negative()).count();
+        Ok(if c.is_negative() && minus > 0 { self.arena.neg(e) } else { e })
     }
 
     /// D log(a + b) = D(a + b) (a − b)/(a² − b²).
