@@ -17,7 +17,7 @@ const MAX_UNKNOWNS: usize = 360;
 const ROUNDS: usize = 7;
 
 /// What one group of summands may cost, in nodes.
-const GROUP_NODES: u64 = 1_500_000;
+const GROUP_NODES: u64 = 1_000_000;
 
 /// The monomials over one denominator.
 struct Family {

@@ -24,8 +24,8 @@ use tower::{Fail, Tower};
 pub use common::without_common_factor;
 pub use rules::antiderivative;
 
-/// What parallel integration may spend, in nodes.
-const NODES: u64 = 3_000_000;
+/// What parallel integration may spend, in nodes; never more than a quarter of what there is.
+const NODES: u64 = 2_000_000;
 
 /// F with Σ ∂F/∂x · rate = `e` for the variables x with their rates, found by parallel integration (Risch and Norman): an
 /// ansatz of monomials in the generators of `e` with undetermined coefficients, and logarithms and inverse tangents of
@@ -38,7 +38,7 @@ pub fn primitive(
     signs: &mut dyn FnMut(&mut Arena, Expr, &mut Budget) -> Sign,
     budget: &mut Budget,
 ) -> Result<Option<Expr>, Stopped> {
-    let mut own = budget.part(NODES);
+    let mut own = budget.part(NODES.min(budget.left() / 4));
     let before = own.left();
     let result = attempt(arena, e, variables, signs, &mut own);
     let spent = before - own.left();

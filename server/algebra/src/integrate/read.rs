@@ -63,6 +63,7 @@ impl<'a, 'b> Tower<'a, 'b> {
             hyperbolic: vec![None; exponential.basis.len()],
             spans: [circular, exponential],
             tangents,
+            paired: Vec::new(),
             atoms: HashMap::new(),
             memo: HashMap::new(),
             orders,
@@ -83,17 +84,9 @@ impl<'a, 'b> Tower<'a, 'b> {
             t.generators[k].rate = Some(rate);
         }
         // Exponentials are written with sinh and cosh where those are in the integrand.
-        for i in 0..t.spans[1].basis.len() {
-            let pair = hyperbolic.iter().any(|a| t.spans[1].multiples(*a).is_some_and(|m| m[i] != 0));
-            let argument = t.spans[1].basis[i];
-            let made = t.exponential_pair(argument, pair)?;
-            t.hyperbolic[i] = Some(made);
-        }
-        for i in 0..t.spans[0].basis.len() {
-            let argument = t.spans[0].basis[i];
-            let made = t.circular_pair(argument, i)?;
-            t.circular[i] = Some(made);
-        }
+        t.paired = (0..t.spans[1].basis.len())
+            .map(|i| hyperbolic.iter().any(|a| t.spans[1].multiples(*a).is_some_and(|m| m[i] != 0)))
+            .collect();
         Ok(t)
     }
 
@@ -112,7 +105,17 @@ impl<'a, 'b> Tower<'a, 'b> {
         Ok(Frac::of(Poly::variable(k)))
     }
 
-    fn circular_pair(&mut self, argument: Expr, i: usize) -> Res<Pair> {
+    /// The generators of an argument in the basis, made when they are first needed.
+    fn circular_pair(&mut self, i: usize) -> Res<Pair> {
+        if let Some(known) = &self.circular[i] {
+            return Ok(known.clone());
+        }
+        let made = self.new_circular_pair(self.spans[0].basis[i], i)?;
+        self.circular[i] = Some(made.clone());
+        Ok(made)
+    }
+
+    fn new_circular_pair(&mut self, argument: Expr, i: usize) -> Res<Pair> {
         let inner = self.read(argument, 1)?;
         let rate = self.rate(&inner)?;
         let (s, c) = (self.arena.call(Function::Sin, &[argument]), self.arena.call(Function::Cos, &[argument]));
@@ -126,17 +129,25 @@ impl<'a, 'b> Tower<'a, 'b> {
         Ok(Pair { argument, first, second, rate })
     }
 
-    fn exponential_pair(&mut self, argument: Expr, pair: bool) -> Res<Pair> {
+    fn exponential_pair(&mut self, i: usize) -> Res<Pair> {
+        if let Some(known) = &self.hyperbolic[i] {
+            return Ok(known.clone());
+        }
+        let made = self.new_exponential_pair(self.spans[1].basis[i], i)?;
+        self.hyperbolic[i] = Some(made.clone());
+        Ok(made)
+    }
+
+    fn new_exponential_pair(&mut self, argument: Expr, i: usize) -> Res<Pair> {
         let inner = self.read(argument, 1)?;
         let rate = self.rate(&inner)?;
-        if !pair {
+        if !self.paired[i] {
             let e = self.arena.call(Function::Exp, &[argument]);
             let k = self.atom(e, Kind::Exponential, None)?;
             self.generators[k].rate = Some(self.mul(&rate, &Frac::of(Poly::variable(k)))?);
             return Ok(Pair { argument, first: k, second: k, rate });
         }
         let (s, c) = (self.arena.call(Function::Sinh, &[argument]), self.arena.call(Function::Cosh, &[argument]));
-        let i = self.hyperbolic.iter().filter(|h| h.is_some()).count();
         let second = self.atom(c, Kind::Cosh(i), None)?;
         let first = self.atom(s, Kind::Sinh(i), None)?;
         let less_one = Poly::monomial(power_of(second, 2), Rational::ONE).sub(&Poly::one());
@@ -534,7 +545,7 @@ impl<'a, 'b> Tower<'a, 'b> {
             if n == 0 {
                 continue;
             }
-            let pair = self.circular[i].clone().ok_or(Fail::Unsupported)?;
+            let pair = self.circular_pair(i)?;
             let si = Frac::of(Poly::variable(pair.first)).scale(&Rational::integer(n.signum()));
             let ci = Frac::of(Poly::variable(pair.second));
             for _ in 0..n.abs() {
@@ -555,7 +566,7 @@ impl<'a, 'b> Tower<'a, 'b> {
             if n == 0 {
                 continue;
             }
-            let pair = self.hyperbolic[i].clone().ok_or(Fail::Unsupported)?;
+            let pair = self.exponential_pair(i)?;
             let power = if pair.first == pair.second {
                 Frac::of(Poly::monomial(power_of(pair.first, n as i16), Rational::ONE))
             } else {

@@ -58,6 +58,9 @@ impl Tower<'_, '_> {
         for g in 0..self.generators.len() {
             if self.generators[g].kind == Kind::Root && !self.is_constant(g) && v.num.has(g) {
                 self.of_root(g, &low, &present, &mut out)?;
+                for &k in &present {
+                    self.of_root_below(g, k, &mut out)?;
+                }
             }
         }
         Ok(out)
@@ -205,16 +208,23 @@ impl Tower<'_, '_> {
         Ok(())
     }
 
-    /// Of a quadratic factor a x² + b x + c of a denominator.
+    /// Of a factor a y² + b y + c of a denominator, for y a generator or a power of one.
     fn of_quadratic(&mut self, p: &Poly, out: &mut Vec<Extra>) -> Res<()> {
         // The variable declared last comes first, so that x² + y² gives atan2(y, x).
         for k in (0..self.generators.len()).rev() {
-            if self.is_constant(k) || p.degree(k) != 2 || self.generators[k].rate.is_none() {
+            let n = p.degree(k) / 2;
+            if self.is_constant(k) || n < 1 || p.degree(k) % 2 != 0 || self.generators[k].rate.is_none() {
                 continue;
             }
-            let parts = p.coefficients(k);
+            let all = p.coefficients(k);
+            let gaps = (0..all.len()).any(|j| j % n as usize != 0 && !all[j].is_zero());
+            if gaps {
+                continue;
+            }
+            let parts: Vec<Poly> = all.into_iter().step_by(n as usize).collect();
+            let y = self.reduce(Poly::monomial(power_of(k, n), Rational::ONE))?;
             let disc = self.discriminant(&parts)?;
-            let line = parts[2].scale(&two()).mul(&Poly::variable(k), self.budget)?.add(&parts[1]);
+            let line = self.mul_poly(&parts[2].scale(&two()), &y)?.add(&parts[1]);
             match self.root_of(&disc)? {
                 Root::OfNegative(s) => {
                     // A² + S² = 4 a p.
@@ -222,21 +232,9 @@ impl Tower<'_, '_> {
                     return self.inverse_tangent(&Frac::of(line), &s, &Frac::of(squares), out);
                 }
                 Root::Of(s) => {
-                    // log|(A − S)/(A + S)| with A² − S² = 4 a p: rate 2 (S DA − A DS)/(4 a p).
-                    let a = Frac::of(line);
-                    let (da, ds) = (self.rate(&a)?, self.rate(&s)?);
-                    let (x, y) = (self.mul(&s, &da)?, self.mul(&a, &ds)?);
-                    let squares = self.mul_poly(&parts[2], p)?.scale(&two());
-                    let inverse = self.invert(&Frac::of(squares))?;
-                    let over = self.sub(&x, &y)?;
-                    let rate = self.mul(&over, &inverse)?;
-                    let (down, up) = (self.sub(&a, &s)?, self.add(&a, &s)?);
-                    let (down, up) = (self.write(&down)?, self.write(&up)?);
-                    let e = self.arena.div(down, up);
-                    let expr = self.log_of(e);
-                    let rate = self.cancel(rate)?;
-                    out.push(Extra { expr, rate });
-                    return Ok(());
+                    // A² − S² = 4 a p.
+                    let squares = self.mul_poly(&parts[2], p)?.scale(&Rational::integer(4));
+                    return self.log_of_quotient(&Frac::of(line), &s, &Frac::of(squares), out);
                 }
                 Root::Unknown => {}
             }
@@ -370,6 +368,35 @@ impl Tower<'_, '_> {
                 self.inner_root(&shifted, &Frac::of(p), &r, out)?;
             }
         }
+        Ok(())
+    }
+
+    /// Of a factor r² ± S² for a root r: atan(r/S), log|(r − S)/(r + S)|.
+    fn of_root_below(&mut self, g: usize, factor: usize, out: &mut Vec<Extra>) -> Res<()> {
+        let Some((2, square)) = self.generators[g].relation.clone() else { return Ok(()) };
+        let p = self.factors[factor].poly.clone();
+        let rest = p.sub(&square);
+        let r = Frac::of(Poly::variable(g));
+        match self.root_of(&rest)? {
+            Root::Of(s) => self.inverse_tangent(&r, &s, &Frac::of(p), out),
+            Root::OfNegative(s) => self.log_of_quotient(&r, &s, &Frac::of(p), out),
+            Root::Unknown => Ok(()),
+        }
+    }
+
+    /// log|(a − b)/(a + b)|; its derivative is 2 (b Da − a Db)/(a² − b²), with a² − b² given.
+    fn log_of_quotient(&mut self, a: &Frac, b: &Frac, squares: &Frac, out: &mut Vec<Extra>) -> Res<()> {
+        let (da, db) = (self.rate(a)?, self.rate(b)?);
+        let (x, y) = (self.mul(b, &da)?, self.mul(a, &db)?);
+        let over = self.sub(&x, &y)?.scale(&two());
+        let inverse = self.invert(squares)?;
+        let rate = self.mul(&over, &inverse)?;
+        let rate = self.cancel(rate)?;
+        let (down, up) = (self.sub(a, b)?, self.add(a, b)?);
+        let (down, up) = (self.write(&down)?, self.write(&up)?);
+        let e = self.arena.div(down, up);
+        let expr = self.log_of(e);
+        out.push(Extra { expr, rate });
         Ok(())
     }
 

@@ -143,6 +143,8 @@ pub(super) struct Tower<'a, 'b> {
     pub spans: [super::span::Span; 2],
     /// Arguments of the tangents in the integrand.
     pub tangents: Vec<Expr>,
+    /// Which exponentials are written with sinh and cosh.
+    pub paired: Vec<bool>,
     pub atoms: HashMap<Expr, usize>,
     pub memo: HashMap<Expr, Frac>,
     /// Highest total order of each unspecified function.
