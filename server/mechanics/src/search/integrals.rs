@@ -84,6 +84,9 @@ fn look(
     let mut found = Vec::new();
     let no_closed_form = "the velocity-free part of a first integral exists, but no closed form was found";
     let more = if kinetic.gyroscopic.is_empty() {
+        // Those that are known need not be found again.
+        let new = independent(cx, &kinetic.velocities, 1, &linear, &fields)?;
+        let fields: Vec<Expr> = new.into_iter().map(|k| fields[k]).collect();
         untouched(cx, &kinetic, &fields)?
     } else {
         solve(cx, &kinetic, &candidates)?
@@ -263,27 +266,38 @@ fn untouched(cx: &mut Context<'_>, kinetic: &Kinetic, fields: &[Expr]) -> Result
 
 /// An integral linear in the velocities as the charge of a point symmetry: ηⁱ = M⁻¹ B.
 fn symmetry(cx: &mut Context<'_>, model: &Model, kinetic: &Kinetic, value: Expr, w: Expr) -> Result<Item, Stopped> {
-    let mut slopes = Vec::new();
-    for &v in &kinetic.velocities {
-        slopes.push(cx.arena.partial(value, v, cx.budget)?);
-    }
-    let mut eta = raise(cx, &kinetic.inverse, &slopes)?;
-    let whole: Vec<Expr> = eta.iter().zip(&kinetic.velocities).map(|(&e, &v)| cx.arena.mul(e, v)).collect();
-    let whole = cx.arena.sum(&whole);
+    let whole = cx.arena.add(value, w);
     let mut scale = plain(cx, whole)?;
+    scale = with_inertia(cx, kinetic, whole, scale)?;
+    let mut charge = times(cx, whole, scale)?;
+    let moved = |cx: &mut Context<'_>, charge: Expr| {
+        let mut slopes = Vec::new();
+        for &v in &kinetic.velocities {
+            slopes.push(cx.arena.partial(charge, v, cx.budget)?);
+        }
+        let mut eta = raise(cx, &kinetic.inverse, &slopes)?;
+        // Shifts and what stays often don't look it.
+        let minus = cx.arena.number(Rational::MINUS_ONE);
+        for e in &mut eta {
+            for plain in [Arena::ZERO, Arena::ONE, minus] {
+                if *e != plain && cx.vanishes(&[(*e, Rational::ONE), (plain, Rational::MINUS_ONE)]).is_proved() {
+                    *e = plain;
+                }
+            }
+        }
+        Ok::<_, Stopped>(eta)
+    };
+    let mut eta = moved(cx, charge)?;
     // Forwards, and counter-clockwise: y → y + ε x in a plane.
-    let mut moved = eta.iter().filter(|&&e| e != Arena::ZERO);
-    if let Some(&telling) = if kinetic.flat { moved.next_back() } else { moved.next() } {
+    let mut telling = eta.iter().filter(|&&e| e != Arena::ZERO);
+    if let Some(&telling) = if kinetic.flat { telling.next_back() } else { telling.next() } {
         let telling = cx.arena.expand(telling, cx.budget)?;
         if cx.arena.summands(telling).iter().all(|t| t.1.is_negative()) {
-            scale = cx.arena.neg(scale);
+            let minus = cx.arena.number(Rational::MINUS_ONE);
+            charge = times(cx, charge, minus)?;
+            eta = moved(cx, charge)?;
         }
     }
-    for e in &mut eta {
-        *e = times(cx, *e, scale)?;
-    }
-    let whole = cx.arena.add(value, w);
-    let mut charge = times(cx, whole, scale)?;
     let generator = Generator { tau: Arena::ZERO, eta };
     // What L has more, such as A η, is a gauge term.
     let full = crate::symmetry::charge(cx, model, &generator)?;
@@ -316,18 +330,23 @@ fn textbook_multiple(cx: &mut Context<'_>, kinetic: &Kinetic, value: Expr, w: Ex
         let own = cx.arena.factors(*t);
         own.iter().all(|(b, n)| constant(cx, *b) || kinetic.velocities.contains(b) && n.to_i64() == Some(2))
     });
-    // Without a mass in it: times the mass, as an energy or a product of a momentum and a velocity.
-    let scaled = times(cx, flat, scale)?;
-    let atoms = cx.arena.atoms(scaled);
-    if !kinetic.inertia.iter().any(|m| atoms.contains(m)) {
-        let inertia = cx.arena.product(&kinetic.inertia);
-        scale = cx.arena.mul(scale, inertia);
-    }
+    scale = with_inertia(cx, kinetic, flat, scale)?;
     if squares {
         scale = cx.arena.scale(scale, &Rational::HALF);
     }
     let (value, w) = (times(cx, value, scale)?, times(cx, w, scale)?);
     Ok(cx.arena.add(value, w))
+}
+
+/// Where there is no mass in the multiple: times the mass, as an energy or a product of a momentum and a velocity.
+fn with_inertia(cx: &mut Context<'_>, kinetic: &Kinetic, e: Expr, scale: Expr) -> Result<Expr, Stopped> {
+    let scaled = times(cx, e, scale)?;
+    let atoms = cx.arena.atoms(scaled);
+    if kinetic.inertia.iter().any(|m| atoms.contains(&m.0)) {
+        return Ok(scale);
+    }
+    let inertia = cx.arena.monomial(&kinetic.inertia);
+    Ok(cx.arena.mul(scale, inertia))
 }
 
 /// A product, summand by summand: factored terms stay factored, and parameters cancel.

@@ -4,7 +4,7 @@
 //! monomials in the parameters. These are compared at other primes; where they differ the coefficients are quotients of
 //! determinants, of the columns' values at numeric states (Cramer's rule). What comes out is to be confirmed.
 
-use crate::context::Context;
+use crate::context::{Context, Parts};
 use leastwise_algebra::{
     Arena, Expr, Function, Node, Rational, Reason, Residues, Role, Stopped, without_common_factor,
 };
@@ -27,9 +27,9 @@ impl From<Stopped> for Halt {
 const PRIMES: [[i64; 12]; 2] =
     [[11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53], [101, 67, 97, 71, 89, 103, 83, 79, 107, 73, 61, 59]];
 /// Determinants of more rows are not expanded.
-const MAX_ROWS: usize = 6;
+const MAX_ROWS: usize = 12;
 /// States that are tried for the rows of a determinant.
-const STATES: i64 = 16;
+const STATES: i64 = 12;
 
 /// Values of atoms.
 type Values = hashbrown::HashMap<Expr, Expr>;
@@ -156,7 +156,7 @@ fn quotients(
     if n == 0 || n > MAX_ROWS {
         return Err(unsolved());
     }
-    // Sine and cosine are rational at quarters of a turn.
+    // Sine and cosine have roots only at twelfths of a turn.
     let mut angles = Vec::new();
     for &e in support.iter().flat_map(|&j| &columns[j]) {
         let mut arguments = Vec::new();
@@ -169,44 +169,43 @@ fn quotients(
             angles.extend(cx.arena.atoms(a));
         }
     }
-    let quarter = cx.arena.pi();
-    let quarter = cx.arena.scale(quarter, &Rational::HALF);
+    let half_turn = cx.arena.pi();
+    let twelfth = cx.arena.scale(half_turn, &Rational::new(1, 6).unwrap_or(Rational::ONE));
     let lines: Vec<Vec<Expr>> =
         (0..columns[0].len()).map(|i| support.iter().map(|&j| columns[j][i]).collect()).collect();
-    let mut rows: Vec<Vec<Expr>> = Vec::new();
-    let mut reduced: Vec<Vec<Rational>> = Vec::new();
-    'states: for k in 0..STATES {
+    let mut equations = Vec::new();
+    for k in 0..STATES {
         let mut at = Values::new();
         for (i, &a) in state.iter().enumerate() {
-            let number = Rational::integer(2 + (i as i64 * 7 + k * 5) % 23);
-            let value = if angles.contains(&a) { cx.arena.scale(quarter, &number) } else { cx.arena.number(number) };
+            // Every other state has zeros: its equations are short.
+            let number = if k % 2 == 1 && (i as i64 + k / 2) % 3 == 0 { 0 } else { 2 + (i as i64 * 7 + k * 5) % 23 };
+            let number = Rational::integer(number);
+            let value = if angles.contains(&a) { cx.arena.scale(twelfth, &number) } else { cx.arena.number(number) };
             at.insert(a, value);
         }
         for line in &lines {
-            let (mut row, mut numbers) = (Vec::new(), Vec::new());
-            for &e in line {
-                let e = cx.arena.substitute(e, &at, cx.budget)?;
-                let e = cx.arena.expand(e, cx.budget)?;
-                let number = cx.arena.substitute(e, values, cx.budget)?;
-                numbers.extend(cx.arena.as_number(number).cloned());
-                row.push(e);
-            }
-            // Roots and sines of numbers are left out.
-            if numbers.len() == row.len() && adds_rank(&mut reduced, numbers) {
-                rows.push(row);
-                if rows.len() == n {
-                    break 'states;
-                }
-            }
+            split_by_roots(cx, line, &at, &mut equations)?;
+        }
+    }
+    equations.sort_by_key(|row: &Vec<Expr>| row.iter().map(|&e| cx.arena.size(e)).sum::<usize>());
+    let (mut rows, mut reduced) = (Vec::new(), Vec::new());
+    for row in equations {
+        let mut numbers = Vec::new();
+        for &e in &row {
+            let number = cx.arena.substitute(e, values, cx.budget)?;
+            numbers.extend(cx.arena.as_number(number).cloned());
+        }
+        if rows.len() < n && numbers.len() == row.len() && adds_rank(&mut reduced, numbers) {
+            rows.push(row);
         }
     }
     if rows.len() < n {
         return Err(unsolved());
     }
+    let mut known = hashbrown::HashMap::new();
     let mut minors = Vec::new();
     for left_out in 0..=n {
-        let columns: Vec<usize> = (0..=n).filter(|&c| c != left_out).collect();
-        let d = determinant(cx, &rows, &columns)?;
+        let d = determinant(cx, &rows, ((1 << (n + 1)) - 1) & !(1 << left_out), &mut known)?;
         minors.push(if left_out % 2 == 0 { d } else { cx.arena.neg(d) });
     }
     let mut out = vec![Arena::ZERO; relation.len()];
@@ -214,6 +213,38 @@ fn quotients(
         out[j] = c;
     }
     Ok(out)
+}
+
+/// The values of some columns at a state, one row for each product of roots of numbers in them: these are independent
+/// over the functions of the parameters.
+fn split_by_roots(
+    cx: &mut Context<'_>,
+    line: &[Expr],
+    at: &Values,
+    equations: &mut Vec<Vec<Expr>>,
+) -> Result<(), Stopped> {
+    let mut by_root: Vec<(Expr, Vec<Parts>)> = Vec::new();
+    for (j, &e) in line.iter().enumerate() {
+        let e = cx.arena.substitute(e, at, cx.budget)?;
+        let e = cx.arena.expand(e, cx.budget)?;
+        for (term, c) in cx.arena.summands(e) {
+            let (mut root, mut rest) = (Vec::new(), Vec::new());
+            for (base, n) in cx.arena.factors(term) {
+                let number = cx.arena.as_number(base).is_some();
+                if number { root.push((base, n)) } else { rest.push((base, n)) }
+            }
+            let (root, rest) = (cx.arena.monomial(&root), cx.arena.monomial(&rest));
+            let k = by_root.iter().position(|r| r.0 == root).unwrap_or_else(|| {
+                by_root.push((root, vec![Parts::new(); line.len()]));
+                by_root.len() - 1
+            });
+            by_root[k].1[j].push((rest, c));
+        }
+    }
+    for (_, parts) in by_root {
+        equations.push(parts.iter().map(|p| cx.build(p)).collect::<Result<_, _>>()?);
+    }
+    Ok(())
 }
 
 /// Whether a row is independent of others; it is added to them, reduced.
@@ -230,18 +261,29 @@ fn adds_rank(rows: &mut Vec<Vec<Rational>>, mut row: Vec<Rational>) -> bool {
     adds
 }
 
-/// The determinant of the last rows in some columns, expanded by the first of these.
-fn determinant(cx: &mut Context<'_>, rows: &[Vec<Expr>], columns: &[usize]) -> Result<Expr, Stopped> {
+/// The determinant of the last rows in some columns, a set of bits, expanded by the first of these rows. Costs a sum for
+/// each set.
+fn determinant(
+    cx: &mut Context<'_>,
+    rows: &[Vec<Expr>],
+    columns: u32,
+    known: &mut hashbrown::HashMap<u32, Expr>,
+) -> Result<Expr, Stopped> {
     let Some((first, below)) = rows.split_first() else { return Ok(Arena::ONE) };
+    if let Some(&d) = known.get(&columns) {
+        return Ok(d);
+    }
     let mut parts = Vec::new();
-    for (k, &c) in columns.iter().enumerate() {
+    let mut sign = Rational::ONE;
+    for c in (0..first.len()).filter(|c| columns >> c & 1 == 1) {
         if first[c] != Arena::ZERO {
-            let others: Vec<usize> = columns.iter().copied().filter(|&x| x != c).collect();
-            let minor = determinant(cx, below, &others)?;
-            let sign = if k % 2 == 0 { Rational::ONE } else { Rational::MINUS_ONE };
-            parts.push((cx.arena.mul(first[c], minor), sign));
+            let minor = determinant(cx, below, columns & !(1 << c), known)?;
+            parts.push((cx.arena.mul(first[c], minor), sign.clone()));
         }
+        sign = sign.neg();
     }
     let sum = cx.build(&parts)?;
-    cx.arena.expand(sum, cx.budget)
+    let d = cx.arena.expand(sum, cx.budget)?;
+    known.insert(columns, d);
+    Ok(d)
 }

@@ -15,13 +15,20 @@ pub(super) const MAX_UNKNOWNS: usize = 240;
 
 /// Functions of the ansatz: monomials up to a total degree, times trigonometric polynomials of degree 2 in each angle.
 pub(super) fn functions(cx: &mut Context<'_>, positions: &[Expr], angles: &[usize], degree: u32) -> Vec<Expr> {
+    ansatz(cx, positions, angles, &[], degree)
+}
+
+/// The same, of degree 1 in some of the angles.
+fn ansatz(cx: &mut Context<'_>, positions: &[Expr], angles: &[usize], plain: &[usize], degree: u32) -> Vec<Expr> {
     let mut out: Vec<(Expr, u32)> = vec![(Arena::ONE, 0)];
     for (i, &q) in positions.iter().enumerate() {
         let mut next = Vec::new();
         for &(f, d) in &out {
             if angles.contains(&i) {
                 let (s, c) = (cx.arena.call(Function::Sin, &[q]), cx.arena.call(Function::Cos, &[q]));
-                for factors in [vec![], vec![c], vec![s], vec![s, s], vec![s, c]] {
+                let shapes = [vec![], vec![c], vec![s], vec![s, s], vec![s, c]];
+                let count = if plain.contains(&i) { 3 } else { shapes.len() };
+                for factors in shapes.into_iter().take(count) {
                     let g = cx.arena.product(&factors);
                     next.push((cx.arena.mul(f, g), d));
                 }
@@ -33,6 +40,10 @@ pub(super) fn functions(cx: &mut Context<'_>, positions: &[Expr], angles: &[usiz
             }
         }
         out = next;
+        // That many are not used: with more coordinates there are only more.
+        if out.len() > MAX_UNKNOWNS {
+            break;
+        }
     }
     out.into_iter().map(|(f, _)| f).collect()
 }
@@ -61,7 +72,7 @@ pub(super) fn quadratic_part(cx: &mut Context<'_>, velocities: &[Expr], e: Expr)
 }
 
 /// The rate along geodesics.
-pub(super) fn geodesic_rate(cx: &mut Context<'_>, kinetic: &Kinetic, e: Expr) -> Result<Expr, Stopped> {
+fn geodesic_rate(cx: &mut Context<'_>, kinetic: &Kinetic, e: Expr) -> Result<Expr, Stopped> {
     let mut parts = Vec::new();
     for i in 0..kinetic.positions.len() {
         let d = cx.arena.partial(e, kinetic.positions[i], cx.budget)?;
@@ -102,9 +113,12 @@ pub(super) fn fields(cx: &mut Context<'_>, kinetic: &Kinetic, scope: &Scope) -> 
         return Ok(out);
     }
     let mut list = Vec::new();
+    // Of an angle that M does not contain e^{iφ} is enough for rotations.
+    let within = cx.arena.atoms(kinetic.energy);
+    let cyclic: Vec<usize> = scope.angles.iter().copied().filter(|&i| !within.contains(&q[i])).collect();
     // One degree more than is asked for: rotations in parabolic coordinates have degree 3.
     for degree in (0..=scope.degree.max(2) + 1).rev() {
-        let f = functions(cx, q, &scope.angles, degree);
+        let f = ansatz(cx, q, &scope.angles, &cyclic, degree);
         list = products(cx, &f, v);
         if list.len() <= MAX_UNKNOWNS {
             break;
@@ -142,17 +156,17 @@ pub(super) fn tensors(
         let least = scope.degree.max(2);
         let squares: Vec<Expr> =
             (0..n).flat_map(|i| (i..n).map(move |j| (i, j))).map(|(i, j)| cx.arena.mul(v[i], v[j])).collect();
-        let mut ansatz = Vec::new();
+        let mut unknown = Vec::new();
         for degree in (least..=least + 2).rev() {
             let f = functions(cx, &kinetic.positions, &scope.angles, degree);
-            ansatz = products(cx, &f, &squares);
-            if ansatz.len() <= MAX_UNKNOWNS {
+            unknown = products(cx, &f, &squares);
+            if unknown.len() <= MAX_UNKNOWNS {
                 break;
             }
         }
-        if ansatz.len() <= MAX_UNKNOWNS {
+        if unknown.len() <= MAX_UNKNOWNS {
             // Without what is known already.
-            let new: Vec<Expr> = independent(cx, v, 2, &list, &ansatz)?.into_iter().map(|k| ansatz[k]).collect();
+            let new: Vec<Expr> = independent(cx, v, 2, &list, &unknown)?.into_iter().map(|k| unknown[k]).collect();
             list.extend(constant_along_geodesics(cx, kinetic, &new)?);
         } else {
             let why = "of the kinetic energy's Killing tensors only products of Killing fields were looked at: their ansatz has too many coefficients";

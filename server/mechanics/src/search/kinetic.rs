@@ -26,7 +26,7 @@ pub(super) struct Kinetic {
     /// q̇.
     pub velocities: Vec<Expr>,
     /// The parameters that are factors of every element of the diagonal of M.
-    pub inertia: Vec<Expr>,
+    pub inertia: Vec<(Expr, Rational)>,
     /// ½ M q̇ q̇.
     pub energy: Expr,
     /// Whether M does not depend on q: the geodesics are straight.
@@ -92,11 +92,10 @@ impl Kinetic {
         }
         let rest = raise(cx, &inverse, &parts.free)?;
         let geodesic = raise(cx, &inverse, &parts.quadratic)?;
-        let mut inertia: Vec<Expr> =
-            cx.arena.factors(mass[0][0]).into_iter().filter(|f| f.1.is_one()).map(|f| f.0).collect();
-        inertia.retain(|&m| {
-            let parameter = matches!(cx.arena.node(m), Node::Symbol(s) if cx.arena.info(*s).role == Role::Parameter);
-            parameter && (0..n).all(|i| cx.arena.factors(mass[i][i]).iter().any(|f| f.0 == m && f.1.is_one()))
+        let mut inertia = cx.arena.factors(mass[0][0]);
+        inertia.retain(|f| {
+            let parameter = matches!(cx.arena.node(f.0), Node::Symbol(s) if cx.arena.info(*s).role == Role::Parameter);
+            parameter && (0..n).all(|i| cx.arena.factors(mass[i][i]).contains(f))
         });
         let mut energy = Vec::new();
         for i in 0..n {

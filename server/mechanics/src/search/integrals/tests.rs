@@ -390,3 +390,101 @@ fn refusals_say_why() {
     f.term(TermKind::Kinetic, "body", &[v4]);
     refused(f, "the kinetic energy is not quadratic in the velocities");
 }
+
+/// ½ Σ m v² for bodies in the plane with masses of their own, −g mᵢ mⱼ/r between them.
+fn bodies(n: usize) -> Fixture {
+    let mut f = Fixture::new();
+    let g = f.parameter("g");
+    let mut list: Vec<(Expr, Expr, Expr)> = Vec::new();
+    for i in 1..=n {
+        let m = f.parameter(&format!("m{i}"));
+        let ((x, a), (y, b)) = (f.coordinate(&format!("x{i}")), f.coordinate(&format!("y{i}")));
+        let parts = [f.half_square(m, a), f.half_square(m, b)];
+        f.term(TermKind::Kinetic, "body", &parts);
+        for &(w, u, v) in &list {
+            let (u, v) = (f.arena.sub(x, u), f.arena.sub(y, v));
+            let (u2, v2) = (f.arena.pow(u, 2), f.arena.pow(v, 2));
+            let r2 = f.arena.add(u2, v2);
+            let factors = [(g, Rational::ONE), (m, Rational::ONE), (w, Rational::ONE), (r2, Rational::HALF.neg())];
+            let u = f.arena.monomial(&factors);
+            f.term(TermKind::Lagrangian, "gravity", &[u]);
+        }
+        list.push((m, x, y));
+    }
+    f
+}
+
+#[test]
+fn bodies_that_attract_each_other_have_linear_ones_only() {
+    // Momentum, angular momentum, and that of the centre of mass [Julliard-Tosel, C. R. Acad. Sci. 327 (1998) 387].
+    let (texts, incomplete) = found(&mut bodies(3), &[], &[]);
+    assert_eq!(incomplete, None);
+    assert!(texts.len() == 4 && texts.iter().all(|t| t.starts_with('*')), "{texts:?}");
+}
+
+#[test]
+fn two_bodies_have_the_laplace_vector_of_the_relative_motion() {
+    let (texts, incomplete) = found(&mut bodies(2), &[], &[]);
+    assert_eq!(incomplete, None);
+    let hidden = texts.iter().filter(|t| !t.starts_with('*')).count();
+    assert_eq!((texts.len(), hidden), (6, 2), "{texts:?}");
+}
+
+#[test]
+fn pendulums_have_none() {
+    // On a cart; the momentum is known to be conserved.
+    let mut f = Fixture::new();
+    let [m, cart, l, g] = ["m", "M", "l", "g"].map(|p| f.parameter(p));
+    let ((_, a), (theta, b)) = (f.coordinate("x"), f.coordinate("θ"));
+    let (s, c) = (f.arena.call(Function::Sin, &[theta]), f.arena.call(Function::Cos, &[theta]));
+    let (across, down) = (f.arena.product(&[l, c, b]), f.arena.product(&[l, s, b]));
+    let across = f.arena.add(a, across);
+    let parts = [f.half_square(cart, a), f.half_square(m, across), f.half_square(m, down)];
+    f.term(TermKind::Kinetic, "motion", &parts);
+    let u = f.arena.product(&[m, g, l, c]);
+    f.term(TermKind::Lagrangian, "weight", &[u]);
+    check(f, &[1], &["* (M + m) ẋ + m l cos θ θ̇"]);
+    // On a spring.
+    let mut f = polar(false, true);
+    let [m, k, l, g] = ["m", "k", "l", "g"].map(|p| f.parameter(p));
+    let [r, angle] = [0, 1].map(|i| f.model.coordinates[i].jet(&mut f.arena, 0));
+    let c = f.arena.call(Function::Cos, &[angle]);
+    let d = f.arena.sub(r, l);
+    let (weight, spring) = (f.arena.product(&[m, g, r, c]), f.half_square(k, d));
+    f.term(TermKind::Lagrangian, "weight", &[weight]);
+    potential(&mut f, &[spring]);
+    check(f, &[1], &[]);
+}
+
+#[test]
+fn a_heavy_top_is_searched_through_in_part() {
+    // Two spins and the energy; the ansatz for Killing tensors in three angles is too large.
+    let mut f = Fixture::new();
+    let [across, along, w] = ["A", "C", "w"].map(|p| f.parameter(p));
+    let ((theta, a), (_, b), (_, c)) = (f.coordinate("θ"), f.coordinate("φ"), f.coordinate("ψ"));
+    let (s, co) = (f.arena.call(Function::Sin, &[theta]), f.arena.call(Function::Cos, &[theta]));
+    let (sb, cb) = (f.arena.mul(s, b), f.arena.mul(co, b));
+    let spin = f.arena.add(c, cb);
+    let parts = [f.half_square(across, a), f.half_square(across, sb), f.half_square(along, spin)];
+    f.term(TermKind::Kinetic, "top", &parts);
+    let u = f.arena.mul(w, co);
+    potential(&mut f, &[u]);
+    let (texts, incomplete) = found(&mut f, &[0, 1, 2], &[]);
+    assert_eq!(texts, ["* ψ̇ + cos θ φ̇", "* (C + (A - C) sin² θ) φ̇ + C cos θ ψ̇"]);
+    assert!(incomplete.unwrap().contains("products of Killing fields"));
+}
+
+#[test]
+fn the_search_ends_with_its_budget() {
+    // Four coordinates take some hundred thousand nodes; with fewer it stops, and nothing is told.
+    let mut f = oscillator(&["x", "y", "u", "v"]);
+    let before = f.budget.left();
+    found(&mut f, &[], &[]);
+    let spent = before - f.budget.left();
+    assert!(spent < 300_000, "{spent}");
+    let mut f = oscillator(&["x", "y", "u", "v"]);
+    f.budget = leastwise_algebra::Budget::new(spent / 4);
+    let model = f.model.clone();
+    let scope = Scope { degree: 2, angles: Vec::new(), quadratic: true };
+    assert_eq!(integrals(&mut f.cx(), &model, &scope, &[]), Err(leastwise_algebra::Stopped::TooLarge));
+}
