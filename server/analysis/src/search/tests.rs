@@ -184,3 +184,90 @@ fn an_empty_search_says_that_there_is_none_other() {
     assert!(nothing.none_other() && nothing.ansatz().contains("degree 2"), "{nothing:?}");
     assert!(report(PLANE, &["delay"]).none_other(), "the energy is known");
 }
+
+/// All that is found, as `name: title`; each is written into the text and proved there.
+#[track_caller]
+fn check_search(text: &str, expected: &[&str]) {
+    let flag = Arc::new(AtomicBool::new(false));
+    let report = search("swing.least", text, &NoFiles, DEGREE, &flag, &mut |_| ()).expect("a report");
+    assert_eq!(report.incomplete, None);
+    let shown: Vec<String> = report.news().map(|r| format!("{}: {}", r.name, r.title)).collect();
+    assert_eq!(shown, expected);
+    let offers = report.offers();
+    assert_eq!(offers.len(), expected.len(), "{report:?}");
+    let sources: Vec<&str> = offers.iter().filter_map(|r| r.source.as_deref()).collect();
+    let mut session = Session::new();
+    let (at, new) = insertion(&session.check("swing.least", text, &NoFiles), &sources);
+    let checked = session.check("swing.least", &format!("{}{new}{}", &text[..at], &text[at..]), &NoFiles);
+    let derived = session.derive(&checked);
+    assert_eq!(session.findings(&checked, &derived), []);
+    assert!(derived.symmetries.iter().all(|s| matches!(s, Ok(a) if matches!(a.conserved, Ok(Verdict::Proved)))));
+    assert!(derived.conserved.iter().all(|c| matches!(c, Ok(a) if matches!(a.verdict, Ok(Verdict::Proved)))));
+    assert_eq!(derived.symmetries.len() + derived.conserved.len(), expected.len());
+    // What is written is not found again.
+    let again = search("swing.least", &checked.text, &NoFiles, DEGREE, &flag, &mut |_| ()).expect("a report");
+    assert!(again.none_other(), "{again:?}");
+}
+
+#[test]
+fn a_free_particle_in_the_plane() {
+    check_search(
+        PLANE,
+        &[
+            "rotation_xy: angular momentum about z",
+            "boost_x: charge of boost_x",
+            "boost_y: charge of boost_y",
+            "dilation: charge of dilation",
+            "expansion: charge of expansion",
+        ],
+    );
+}
+
+#[test]
+fn two_equal_springs() {
+    check_search(
+        &format!("{PLANE}parameter k: stiffness\nassume m > 0\npotential V = 1/2 k (x^2 + y^2)\n"),
+        &[
+            "rotation_xy: angular momentum about z",
+            "energy_x: energy of x alone",
+            "fradkin_xy: Fradkin tensor, component x y",
+        ],
+    );
+}
+
+#[test]
+fn a_planet_in_space() {
+    check_search(
+        "coordinate x, y, z: length\nparameter m: mass, k: N m^2\nassume m > 0, k > 0\n\
+         kinetic T = 1/2 m (x'^2 + y'^2 + z'^2)\npotential V = -k / sqrt(x^2 + y^2 + z^2)\n",
+        &[
+            "rotation_xy: angular momentum about z",
+            "rotation_xz: angular momentum about y",
+            "rotation_yz: angular momentum about x",
+            "runge_lenz_x: Laplace–Runge–Lenz vector, component along x",
+            "runge_lenz_y: Laplace–Runge–Lenz vector, component along y",
+            "runge_lenz_z: Laplace–Runge–Lenz vector, component along z",
+        ],
+    );
+}
+
+/// In the symmetric gauge the shifts are symmetries up to gauge terms [LL2 §21].
+#[test]
+fn a_charge_in_a_uniform_field() {
+    check_search(
+        &format!("{PLANE}parameter q: charge, B: T\nassume m > 0, B > 0\nlagrangian A = 1/2 q B (x y' - y x')\n"),
+        &[
+            "translation_x: charge of translation_x",
+            "translation_y: charge of translation_y",
+            "rotation_xy: canonical angular momentum",
+        ],
+    );
+}
+
+#[test]
+fn nothing_but_the_energy() {
+    check_search(
+        "coordinate x, y\nkinetic T = 1/2 (x'^2 + y'^2)\npotential V = 1/2 (x^2 + y^2) + x^2 y - 1/3 y^3\n",
+        &[],
+    );
+}
