@@ -103,9 +103,10 @@ def test_nothing_is_shown_of_an_older_text():
     with Session() as s:
         document = s.open(PLANE)
         searched(s)
-        assert found(document)
+        assert found(document) and "rotation_xy = m (x ẏ - y ẋ)" in document.hover(0, 8)["contents"]["value"]
         document.edit(LAST, 0, 0, "# a remark\n")
         assert found(document) == set() and document.lenses() == [] and document.rewrites(LAST + 1) == []
+        assert "rotation_xy" not in document.hover(0, 8)["contents"]["value"]
         try:
             s.ask("workspace/executeCommand", {"command": "leastwise.writeFound", "arguments": [document.uri]})
         except Refused as error:
