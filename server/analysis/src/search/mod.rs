@@ -31,7 +31,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 pub const DEGREE: u32 = 2;
 /// The largest degree that may be asked for.
 pub const MAX_DEGREE: u32 = 4;
-/// Nodes that a search may visit or make.
+/// Nodes that a search may visit or make. Of the example models the winch takes most, between 4 and 20 millions.
 const NODES: u64 = 20_000_000;
 
 /// A constant of the motion that was found.

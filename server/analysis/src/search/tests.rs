@@ -20,7 +20,7 @@ fn generator(cx: &mut Context<'_>, model: &Model, name: &str) -> (Generator, Opt
     let t = cx.arena.sym(t);
     let q: Vec<Expr> = model.coordinates.iter().map(|q| q.jet(cx.arena, 0)).collect();
     let (mut tau, mut eta, mut gauge) = (Arena::ZERO, vec![Arena::ZERO; q.len()], None);
-    let mut mass = |cx: &mut Context<'_>, e: Expr| {
+    let mass = |cx: &mut Context<'_>, e: Expr| {
         let m = cx.arena.symbol("m", None, leastwise_algebra::Role::Parameter);
         let m = cx.arena.sym(m);
         cx.arena.mul(m, e)
