@@ -381,6 +381,11 @@ impl Tower<'_, '_> {
                             })
                         })
                     }
+                    // The root in an inverse sine's derivative.
+                    Kind::Root => have.iter().any(|&h| {
+                        let below = &self.generators[h];
+                        below.kind == Kind::Other && below.rate.as_ref().is_some_and(|r| r.num.has(k))
+                    }),
                     // U where U' is there.
                     Kind::Unspecified { .. } => g.rate.as_ref().is_some_and(|r| {
                         r.num

@@ -7,6 +7,8 @@ use crate::rational::Rational;
 
 /// Roots of polynomials in one variable are tried up to this numerator and denominator.
 const MAX_ROOT: i64 = 12;
+/// The same for factors of two variables.
+const MAX_PAIR: i64 = 3;
 
 impl Tower<'_, '_> {
     /// A number and the factors with their powers. No negative exponents.
@@ -115,9 +117,7 @@ impl Tower<'_, '_> {
                 return self.split(b, out, level + 1);
             }
         }
-        if let [k] = variables[..]
-            && let Some((a, b)) = self.rational_root(&p, k)?
-        {
+        if let Some((a, b)) = self.rational_root(&p, &variables)? {
             self.split(a, out, level + 1)?;
             return self.split(b, out, level + 1);
         }
@@ -186,14 +186,25 @@ impl Tower<'_, '_> {
         Ok(None)
     }
 
-    fn rational_root(&mut self, p: &Poly, k: usize) -> Res<Option<(Poly, Poly)>> {
-        for d in 1..=MAX_ROOT {
-            for n in -MAX_ROOT..=MAX_ROOT {
-                let line = Poly::variable(k).scale(&Rational::integer(d)).sub(&Poly::number(Rational::integer(n)));
-                if line.primitive().1 == line
-                    && let Some(q) = p.divide(&line, self.budget)?
-                {
-                    return Ok(Some((line, q)));
+    /// d x − n, or d x − n y: with small numbers.
+    fn rational_root(&mut self, p: &Poly, variables: &[usize]) -> Res<Option<(Poly, Poly)>> {
+        let mut pairs: Vec<(usize, Poly, i64)> = Vec::new();
+        if let [k] = variables {
+            pairs.push((*k, Poly::one(), MAX_ROOT));
+        } else {
+            for (i, &k) in variables.iter().enumerate() {
+                pairs.extend(variables[i + 1..].iter().map(|&j| (k, Poly::variable(j), MAX_PAIR)));
+            }
+        }
+        for (k, other, most) in pairs {
+            for d in 1..=most {
+                for n in -most..=most {
+                    let line = Poly::variable(k).scale(&Rational::integer(d)).plus(&other, &Rational::integer(-n));
+                    if line.primitive().1 == line
+                        && let Some(q) = p.divide(&line, self.budget)?
+                    {
+                        return Ok(Some((line, q)));
+                    }
                 }
             }
         }

@@ -42,8 +42,18 @@ impl Tower<'_, '_> {
                 self.log(&Poly::variable(k), rate, &mut out)?;
             }
         }
-        let present: Vec<usize> =
-            (0..self.factors.len()).filter(|&k| v.power_of_factor(k) > 0 && !self.factors[k].constant).collect();
+        // Factors below, those of the derivatives of inverse functions and logarithms included.
+        let mut below: Vec<usize> = (0..self.factors.len()).filter(|&k| v.power_of_factor(k) > 0).collect();
+        for g in v.num.variables() {
+            if self.generators[g].kind == Kind::Other
+                && let Some(rate) = &self.generators[g].rate
+            {
+                below.extend((0..rate.den.len()).filter(|&k| rate.den[k] > 0));
+            }
+        }
+        below.sort_unstable();
+        below.dedup();
+        let present: Vec<usize> = below.into_iter().filter(|&k| !self.factors[k].constant).collect();
         self.of_pairs(&low, &present, &mut out)?;
         for &k in &present {
             let rate = self.rate_of_log_factor(k)?;
