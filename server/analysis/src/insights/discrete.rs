@@ -81,7 +81,7 @@ impl DiscreteRow {
             Holds::UpToDerivative(Some(f)) if !f.text.contains('\n') => format!("yes, L changes by d/dt({})", f.text),
             Holds::UpToDerivative(_) => "yes, L changes by a total time derivative".into(),
             Holds::Broken(terms) => format!("broken by {}", named(terms)),
-            Holds::BrokenByForces(forces) => format!("of L, broken by {}", named(forces)),
+            Holds::BrokenByForces(forces) => format!("holds for L, broken by {}", named(forces)),
             Holds::Undecided(why) => format!("undecided: {why}"),
         }
     }
