@@ -154,9 +154,9 @@ fn missing(
     if let Some(residues) = residues(cx, model, rows, &list)? {
         let own: Vec<usize> = (0..parts.len()).collect();
         let mut tried = 0;
-        for k in parts.len()..list.len() {
+        for (k, &offer) in list.iter().enumerate().skip(parts.len()) {
             let Some(ratio) = residues.ratio(&own, &[k]) else { continue };
-            let term = cx.arena.scale(list[k], &ratio.neg());
+            let term = cx.arena.scale(offer, &ratio.neg());
             let mut whole = claim.clone();
             whole.push((term, Rational::ONE));
             let sum = cx.build(&whole)?;
@@ -170,6 +170,13 @@ fn missing(
             if tried == MAX_TRIED {
                 break;
             }
+        }
+    }
+    if let Some(term) = offers::rest(cx, &claim, known)? {
+        let mut whole = claim.clone();
+        whole.push((term, Rational::ONE));
+        if is_conserved(cx, model, rows, &whole)? {
+            return Ok(Some(term));
         }
     }
     if !model.constraints.is_empty() {

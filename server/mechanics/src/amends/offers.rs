@@ -4,7 +4,7 @@ use crate::context::{Context, Parts};
 use crate::energy::energy;
 use crate::lagrange::{jet_order, lagrangian, signed_parts};
 use crate::model::{Model, time};
-use leastwise_algebra::{Arena, Expr, Stopped};
+use leastwise_algebra::{Arena, Expr, Rational, Stopped};
 
 /// Products of coordinates and momenta are formed up to so many coordinates.
 const MAX_PRODUCTS: usize = 4;
@@ -66,6 +66,29 @@ pub(super) fn offers(cx: &mut Context<'_>, model: &Model, known: &[Expr]) -> Res
         }
     }
     Ok(out)
+}
+
+/// What a claim lacks to be a multiple of a known constant, where it has at least as many summands itself; the shortest.
+pub(super) fn rest(cx: &mut Context<'_>, claim: &Parts, known: &[Expr]) -> Result<Option<Expr>, Stopped> {
+    let claim = cx.build(claim)?;
+    let mut best: Option<(usize, Expr)> = None;
+    for &k in known {
+        if cx.arena.size(k) > MAX_NODES || cx.arena.size(claim) > MAX_NODES {
+            continue;
+        }
+        let wide = cx.arena.expand(k, cx.budget)?;
+        let all = cx.arena.summands(wide).len();
+        for (n, d) in [(1, 1), (-1, 1), (2, 1), (-2, 1), (1, 2), (-1, 2)] {
+            let Some(c) = Rational::new(n, d) else { continue };
+            let gap = cx.arena.linear(&[(k, c), (claim, Rational::MINUS_ONE)]);
+            let gap = cx.arena.expand(gap, cx.budget)?;
+            let left = cx.arena.summands(gap).len();
+            if left > 0 && 2 * left <= all && best.is_none_or(|b| left < b.0) {
+                best = Some((left, gap));
+            }
+        }
+    }
+    Ok(best.map(|b| b.1))
 }
 
 /// The summands of an expression, multiplied out where it is small.

@@ -415,6 +415,7 @@ fn claims_about_vectors() {
     `p[2]` is conserved (proved)
         p[2] = ẏ
         d/dt p[2] = 0
+    It comes from the symmetry y → y + ε.
     "#);
 }
 
