@@ -4,6 +4,7 @@
 //! monomials in the parameters. These are compared at other primes; where they differ the coefficients are quotients of
 //! determinants, of the columns' values at numeric states (Cramer's rule). What comes out is to be confirmed.
 
+use super::sums::sum_of_two;
 use crate::context::{Context, Parts};
 use leastwise_algebra::{
     Arena, Expr, Function, Node, Rational, Reason, Residues, Role, Stopped, without_common_factor,
@@ -54,11 +55,23 @@ pub(super) fn kernel(cx: &mut Context<'_>, columns: &[Vec<Expr>]) -> Result<Vec<
     }
     let mut out = Vec::new();
     for (r, other) in numbers.iter().zip(&others) {
-        let guess: Vec<Expr> = r.iter().map(|c| decode(cx, &constants, c)).collect();
+        let mut guess: Vec<Expr> = r.iter().map(|c| decode(cx, &constants, c)).collect();
         let mut fits = true;
-        for (&g, c) in guess.iter().zip(other) {
-            let there = cx.arena.substitute(g, &second, cx.budget)?;
-            fits &= cx.arena.as_number(there) == Some(c);
+        for (g, (here, c)) in guess.iter_mut().zip(r.iter().zip(other)) {
+            let there = cx.arena.substitute(*g, &second, cx.budget)?;
+            if cx.arena.as_number(there) == Some(c) {
+                continue;
+            }
+            let n = constants.list.len();
+            let primes = PRIMES.each_ref().map(|p| &p[..n]);
+            let sum = if constants.roots { None } else { sum_of_two(cx, &constants.list, primes, [here, c]) };
+            match sum {
+                Some(sum) => *g = sum,
+                None => {
+                    fits = false;
+                    break;
+                }
+            }
         }
         out.push(if fits { guess } else { quotients(cx, columns, r, &state, &first)? });
     }
