@@ -15,6 +15,7 @@ pub mod insights;
 mod lower;
 mod mends;
 mod names;
+mod near;
 pub mod pages;
 pub mod quantities;
 pub mod report;

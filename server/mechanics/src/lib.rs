@@ -14,6 +14,7 @@ pub mod idle;
 pub mod lagrange;
 pub mod mass;
 pub mod model;
+pub mod near;
 pub mod regularity;
 pub mod search;
 pub mod similarity;

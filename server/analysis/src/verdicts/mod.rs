@@ -31,6 +31,7 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
     match &derived.answers {
         Ok(answers) => {
             cyclic(maker, checked, answers, &mut out);
+            crate::near::cyclic(maker, checked, derived, &mut out);
             mass(maker, checked, answers, &mut out);
             // A claimed delay says it already.
             let claimed = derived.symmetries.iter().flatten().any(|a| {
@@ -48,9 +49,13 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
             format!("the equations of motion are not derived: {stopped}"),
         )),
     }
-    for (claim, answer) in checked.symmetries().iter().zip(&derived.symmetries) {
+    for (k, (claim, answer)) in checked.symmetries().iter().zip(&derived.symmetries).enumerate() {
         match answer {
-            Ok(a) => symmetry(maker, checked, claim, a, &mut out),
+            Ok(a) => {
+                let first = out.len();
+                symmetry(maker, checked, claim, a, &mut out);
+                crate::near::symmetry(maker, checked, derived, k, &mut out[first..]);
+            }
             Err(why) => no_generator(maker, checked, claim, why, &mut out),
         }
     }

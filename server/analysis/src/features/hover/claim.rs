@@ -103,6 +103,11 @@ pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
             "L changes by a total time derivative dF/dt, of which no closed form was found: F is not in the charge.",
         );
     }
+    if checked.complete
+        && let Some(said) = crate::near::of_symmetry(w.maker, checked, w.derived, k)
+    {
+        w.prose(format!("It {said}."));
+    }
     if !a.smallest {
         w.prose("The set of terms to blame is minimal, perhaps not a smallest one.");
     }

@@ -271,6 +271,7 @@ fn claims_with_constraints() {
         η_y = x
         Q = m (x ẏ - y ẋ)
         dQ/dt = -m g x   (potential U)
+    It holds if g = 0.
     The flow preserves the constraints.
     "#);
     insta::assert_snapshot!(within(ROD, "symmetry $0side"), @r#"
@@ -398,7 +399,7 @@ fn charges_by_their_names() {
         Q = -1/2 J φ̇² - M φ
         F = M φ   (δL = dF/dt)
         dQ/dt = 0
-    F changes when `φ` turns by 2π: the charge is not single-valued.
+    F changes when φ turns by 2π: the charge is not single-valued.
     Poisson brackets that do not vanish:
         {p_φ, delay} = M
     "#);
