@@ -132,8 +132,13 @@ pub(crate) fn multiplied(text: &str, operand: &Operand<'_>, by: &Rational) -> Ed
         formula = inner;
     }
     let at = |span: Span| offset + span.start as usize..offset + span.end as usize;
-    let whole = at(formula.span);
-    let list = factors(formula);
+    let mut whole = at(formula.span);
+    let mut list = factors(formula);
+    // A sign before the first factor stays where it is.
+    while let FormulaKind::Neg(inner) = &list[0].1.kind {
+        list[0].1 = inner;
+        whole.start = at(inner.span).start;
+    }
     // `n`, then perhaps `/ d`, at the front; `/ d` at the end.
     let mut number = by.abs();
     let mut front = 0;
@@ -258,6 +263,7 @@ pub(crate) fn fixes(maker: &mut Maker<'_>, checked: &Checked, derived: &Derived,
     let Ok(found) = amends::amends(&mut cx, model, answers.rows.as_ref(), &parts, &groups, &known) else {
         return Vec::new();
     };
+    let _ = maker.budget.charge((NODES.min(maker.budget.left()) - budget.left()) as usize);
     let text = &*checked.text;
     let mut out = Vec::new();
     for amend in found.into_iter().take(SHOWN) {
@@ -415,4 +421,66 @@ fn arrows(maker: &mut Maker<'_>, checked: &Checked, g: &Generator) -> String {
         out.push("…".to_owned());
     }
     out.join(", ")
+}
+
+#[cfg(test)]
+mod tests {
+    use crate::Session;
+    use crate::features::rename::edited;
+    use crate::include::NoFiles;
+
+    const STONE: &str = "coordinate x, z\nparameter m, g\nkinetic 1/2 m (x'^2 + z'^2)\npotential m g z\n";
+    const ORBIT: &str =
+        "coordinate x, y\nparameter m, k\nlet r = sqrt(x^2 + y^2)\nkinetic 1/2 m (x'^2 + y'^2)\npotential -k/r\n";
+
+    /// The claim after the first mend, and what is said of it; `-` where none is offered.
+    fn check(model: &str, claim: &str, said: &str, mended: &str) {
+        let text = format!("{model}conserved c = {claim}\n");
+        let mut session = Session::new();
+        let checked = session.check("model.least", &text, &NoFiles);
+        let derived = session.derive(&checked);
+        let found = session.with_maker(&checked, |maker| super::fixes(maker, &checked, &derived, 0));
+        let Some((words, fix)) = found.first() else {
+            assert_eq!("-", mended);
+            return;
+        };
+        assert_eq!(words, said);
+        let after = edited(&text, &fix.edits);
+        assert_eq!(after, format!("{model}conserved c = {mended}\n"));
+        let checked = session.check("model.least", &after, &NoFiles);
+        let derived = session.derive(&checked);
+        assert!(derived.conserved[0].as_ref().is_ok_and(|c| c.verdict.is_ok_and(|v| v.is_proved())));
+    }
+
+    #[test]
+    fn a_sign() {
+        check(STONE, "z' - g t", "with the other sign before `g t` it is conserved", "z' + g t");
+        let said = "with the other sign before `y x'` it is conserved";
+        check(ORBIT, "m (x y' + y x')", said, "m (x y' - y x')");
+        let said = "with the other sign before `k x/r` it is conserved";
+        check(ORBIT, "m (x y' - y x') y' + k x/r", said, "m (x y' - y x') y' - k x/r");
+    }
+
+    #[test]
+    fn a_factor_goes_into_the_number_that_is_there() {
+        let said = "with the factor 2 at `1/4 m (x'^2 + z'^2)` it is conserved";
+        check(STONE, "m g z + 1/4 m (x'^2 + z'^2)", said, "m g z + 1/2 m (x'^2 + z'^2)");
+        let said = "with the factor 2 at `1/2 g t` it is conserved";
+        check(STONE, "z' + 1/2 g t", said, "z' + g t");
+        check(STONE, "z' + g t/2", "with the factor 2 at `g t/2` it is conserved", "z' + g t");
+        check(STONE, "z' + 3 g t", "with the factor 1/3 at `3 g t` it is conserved", "z' + g t");
+        check(STONE, "z'/3 + g t", "with the factor 1/3 at `g t` it is conserved", "z'/3 + 1/3 g t");
+    }
+
+    #[test]
+    fn a_term_that_is_missing() {
+        check(STONE, "z'", "g t is missing: with it the sum is conserved", "z' + g*t");
+        let said = "-k x/√(x² + y²) is missing: with it the sum is conserved";
+        check(ORBIT, "m (x y' - y x') y'", said, "m (x y' - y x') y' - k*x/sqrt(x^2 + y^2)");
+    }
+
+    #[test]
+    fn what_is_no_constant_is_left() {
+        check(ORBIT, "x^3 y'", "", "-");
+    }
 }

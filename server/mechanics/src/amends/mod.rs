@@ -76,8 +76,10 @@ pub fn amends(
             (1, size.saturating_add(if l.is_negative() { 8 } else { 0 }))
         }
     };
-    // Of equal ones the later part: what stands first is the quantity that was meant.
-    factors.sort_by_key(|(g, lambda)| (rank(lambda), std::cmp::Reverse(*g)));
+    // Of equal factors the one at more parts, which counts them alike; then the later: what stands first is the quantity
+    // that was meant.
+    let width = |g: usize, lambda: &Rational| if rank(lambda).0 == 1 { groups[g].len() } else { 0 };
+    factors.sort_by_key(|(g, lambda)| (rank(lambda), std::cmp::Reverse((width(*g, lambda), *g))));
     let mut out = Vec::new();
     for (g, lambda) in factors.into_iter().take(MAX_TRIED) {
         let step = lambda.sub(&Rational::ONE);
@@ -149,7 +151,9 @@ fn missing(
 ) -> Result<Option<Expr>, Stopped> {
     let claim: Parts = parts.iter().map(|&p| (p, Rational::ONE)).collect();
     let mut list = parts.to_vec();
-    list.extend(offers::offers(cx, model, known)?);
+    // What stands in the claim already is not missing.
+    let own: Vec<Expr> = parts.iter().map(|&p| cx.arena.split_coefficient(p).1).collect();
+    list.extend(offers::offers(cx, model, known)?.into_iter().filter(|e| !own.contains(e)));
     list.truncate(MAX_RATES);
     if let Some(residues) = residues(cx, model, rows, &list)? {
         let own: Vec<usize> = (0..parts.len()).collect();

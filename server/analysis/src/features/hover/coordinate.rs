@@ -67,6 +67,11 @@ pub(super) fn coordinate(w: &mut Writer<'_, '_>, row: &SymbolRow, place: &Place<
     let items: Vec<usize> = (0..checked.items.len()).filter(named).collect();
     super::name::assumptions(w, &row.name, &items);
     moved_by(w, &of);
+    if let ([i], true) = (&of[..], w.checked.complete)
+        && let Some(said) = crate::near::of_cyclic(w.maker, w.checked, w.derived, *i)
+    {
+        w.prose(format!("That it is cyclic {said}."));
+    }
     if let ([i], true) = (&of[..], checked.complete) {
         parity(w, *i);
     }
