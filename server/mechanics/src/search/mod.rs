@@ -1,7 +1,7 @@
 //! What nobody claimed: point symmetries and quadratic first integrals, found by solving the determining equations.
 //!
 //! An unknown generator, polynomial in t and q and trigonometric in angles, or an unknown Killing tensor makes a linear
-//! system for its coefficients; see `relations`. Each item is confirmed by the zero test before it is told. An empty
+//! system for its coefficients; see `kernel`. Each item is confirmed by the zero test before it is told. An empty
 //! answer says only that there is none other in this ansatz.
 
 mod hidden;

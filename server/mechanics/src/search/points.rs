@@ -6,12 +6,12 @@
 //! vanishes. For other L all components are polynomial in t and q and trigonometric in angles.
 
 use super::integrals::{plain, times};
-use super::kernel::{Halt, kernel};
+use super::kernel::{Halt, dependent, kernel};
 use super::killing::{MAX_UNKNOWNS, combination, functions};
 use super::kinetic::{Kinetic, raise};
 use super::{Item, Origin, Scope, Stage};
 use crate::context::{Context, Parts};
-use crate::lagrange::{depends_on_velocities, jet_order, questions, residual, signed_parts};
+use crate::lagrange::{jet_order, questions, residual, signed_parts};
 use crate::model::{Model, time};
 use crate::symmetry::{Generator, Status, variations};
 use crate::verdicts::{answer, answer_generator};
@@ -80,8 +80,14 @@ fn look(
             incomplete.get_or_insert("a gauge term exists, but no closed form was found".into());
             continue;
         }
-        // A constant of no motion, of an L that is degenerate.
-        if depends_on_velocities(cx.arena, answer.charge) && matches!(answer.conserved, Ok(Verdict::Proved)) {
+        if matches!(answer.conserved, Ok(Verdict::Undecided(_)) | Err(_)) {
+            incomplete.get_or_insert("whether the charge of a symmetry of L is conserved is undecided".into());
+        }
+        if matches!(answer.conserved, Ok(Verdict::Proved)) {
+            // A number is constant on every curve: of an L that is degenerate.
+            if is_number(cx, model, answer.charge)? {
+                continue;
+            }
             let used = c.iter().zip(&candidates).filter(|(x, _)| **x != Arena::ZERO);
             let rank = used.clone().map(|(_, c)| c.rank).max().unwrap_or(0);
             let origin = Origin::Symmetry { generator: answer.symmetry.generator, gauge: answer.gauge };
@@ -91,8 +97,50 @@ fn look(
                 .get_or_insert("with constraints or forces only symmetries of L were looked at, one by one".into());
         }
     }
+    if !regular {
+        let why = "L is degenerate: symmetries with arbitrary functions of the time were not looked for";
+        incomplete.get_or_insert(why.into());
+    }
     found.sort_by_key(|f| (f.0, f.1));
-    Ok((found.into_iter().map(|f| f.2).collect(), incomplete))
+    let mut items: Vec<Item> = found.into_iter().map(|f| f.2).collect();
+    if !regular {
+        drop_dependent(cx, &mut items)?;
+    }
+    Ok((items, incomplete))
+}
+
+/// Whether an expression is proved to depend neither on the time nor on positions and velocities.
+fn is_number(cx: &mut Context<'_>, model: &Model, e: Expr) -> Result<bool, Stopped> {
+    let t = time(cx.arena);
+    let mut atoms = vec![cx.arena.sym(t)];
+    for q in &model.coordinates {
+        atoms.extend([q.jet(cx.arena, 0), q.jet(cx.arena, 1)]);
+    }
+    for a in atoms {
+        let slope = cx.arena.partial(e, a, cx.budget)?;
+        if slope != Arena::ZERO && !cx.vanishes(&[(slope, Rational::ONE)]).is_proved() {
+            return Ok(false);
+        }
+    }
+    Ok(true)
+}
+
+/// Takes out what is a combination of earlier charges and of numbers: of a degenerate L different symmetries may have one
+/// charge.
+fn drop_dependent(cx: &mut Context<'_>, items: &mut Vec<Item>) -> Result<(), Stopped> {
+    let mut columns = vec![vec![Arena::ONE]];
+    columns.extend(items.iter().map(|i| vec![i.charge]));
+    let list = match dependent(cx, &columns) {
+        Ok(list) => list,
+        Err(Halt::Stopped(s)) => return Err(s),
+        Err(Halt::Unsolved(_)) => return Ok(()),
+    };
+    let mut k = 0;
+    items.retain(|_| {
+        k += 1;
+        !list.contains(&k)
+    });
+    Ok(())
 }
 
 /// The Euler operator of the variation, for each coordinate.
@@ -205,8 +253,9 @@ fn curved(
         );
         return Ok((out, (degree < scope.degree).then_some(less)));
     }
-    let why = "point symmetries that move coordinates were not looked for: there are too many unknown coefficients";
-    Ok((Vec::new(), Some(why.into())))
+    let why = "of point symmetries that move coordinates only shifts were looked for: for more there are too many unknown coefficients";
+    let shifts = shifts(n).into_iter().map(|c| (c.generator.eta, 0)).take(n);
+    Ok((shifts.collect(), Some(why.into())))
 }
 
 /// Functions of q as components of fields have them in curvilinear coordinates: monomials, of what M depends on also the
@@ -268,7 +317,18 @@ fn polynomial(cx: &mut Context<'_>, model: &Model, scope: &Scope) -> Result<(Vec
         let less = format!("of degree {degree} only: for more there are too many unknown coefficients");
         return Ok((out, (degree < scope.degree).then_some(format!("point symmetries were looked for {less}"))));
     }
-    Ok((Vec::new(), Some("point symmetries were not looked for: there are too many unknown coefficients".into())))
+    let why =
+        "of point symmetries only shifts and delays were looked for: for more there are too many unknown coefficients";
+    Ok((shifts(n), Some(why.into())))
+}
+
+/// Shifts of each coordinate, and the delay.
+fn shifts(n: usize) -> Vec<Candidate> {
+    let moved = |i: usize| (0..n).map(|j| if i == j { Arena::ONE } else { Arena::ZERO }).collect();
+    let mut out: Vec<Candidate> =
+        (0..n).map(|i| Candidate { generator: Generator { tau: Arena::ZERO, eta: moved(i) }, rank: 0 }).collect();
+    out.push(Candidate { generator: Generator { tau: Arena::ONE, eta: vec![Arena::ZERO; n] }, rank: 1 });
+    out
 }
 
 /// Whether L is quadratic in the velocities: then the time is mapped to a function of itself.

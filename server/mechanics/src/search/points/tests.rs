@@ -406,3 +406,43 @@ fn a_pair_in_the_plane() {
         ],
     );
 }
+
+/// L = b x ẏ − ½ k x² is of first order: p_y = b x and ½ k x² are constants, and nothing moves.
+#[test]
+fn a_degenerate_lagrangian() {
+    let mut f = Fixture::new();
+    let ((x, _), (_, vy)) = (f.coordinate("x"), f.coordinate("y"));
+    let (b, k) = (f.parameter("b"), f.parameter("k"));
+    let part = f.arena.product(&[b, x, vy]);
+    f.term(TermKind::Lagrangian, "drift", &[part]);
+    let u = f.half_square(k, x);
+    f.term(TermKind::Potential, "spring", &[u]);
+    let expected = [
+        "t → 1: -1/2 k x²",
+        "t → x: -1/3 k x³",
+        "y → 1: b x",
+        "x → b, y → k t: k b t x - b² y",
+        "t → 2 t, x → -x, y → y: b x y - k t x²",
+    ];
+    let found = check(&mut f, &[], 1, &expected);
+    assert!(found.incomplete.is_some());
+}
+
+/// ½ m (ẋ − ẏ)²: the shifts of x and of y have one charge.
+#[test]
+fn a_difference_alone() {
+    let mut f = Fixture::new();
+    let ((_, vx), (_, vy)) = (f.coordinate("x"), f.coordinate("y"));
+    let m = f.parameter("m");
+    let v = f.arena.sub(vx, vy);
+    let part = f.half_square(m, v);
+    f.term(TermKind::Kinetic, "relative", &[part]);
+    let expected = [
+        "t → 1: -1/2 m (ẋ - ẏ)²",
+        "x → 1: m (ẋ - ẏ)",
+        "x → t: m (t (ẋ - ẏ) - x + y)",
+        "t → 2 t, x → x - y: m (t (ẏ - ẋ) + x - y) (ẋ - ẏ)",
+    ];
+    let found = check(&mut f, &[], 1, &expected);
+    assert!(found.incomplete.is_some());
+}
