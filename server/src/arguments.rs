@@ -1,6 +1,7 @@
 //! The command line: words to commands, and what to say where they make none.
 
 use crate::help;
+use leastwise_analysis::search::{DEGREE, MAX_DEGREE};
 use leastwise_grammar::nearest;
 use lexopt::Arg;
 use std::ffi::OsString;
@@ -53,6 +54,8 @@ pub enum Command {
         source: Source,
         /// The form.
         form: SheetForm,
+        /// The degree of the search for what nobody claimed; none where it is not made.
+        search: Option<u32>,
     },
     /// Lay models out.
     Format {
@@ -104,19 +107,24 @@ pub fn read(arguments: impl IntoIterator<Item = OsString>) -> Result<Command, St
 struct Words {
     sources: Vec<OsString>,
     form: Option<String>,
+    search: Option<String>,
     check: bool,
     help: bool,
 }
 
 /// Collects options and words. `options` are those that the command knows beside `--help`.
 fn words(mut parser: lexopt::Parser, options: &[&'static str]) -> Result<Words, String> {
-    let mut words = Words { sources: Vec::new(), form: None, check: false, help: false };
+    let mut words = Words { sources: Vec::new(), form: None, search: None, check: false, help: false };
     while let Some(argument) = parser.next().map_err(told)? {
         match argument {
             Arg::Short('h') | Arg::Long("help") => words.help = true,
             Arg::Long("as") if options.contains(&"--as") => {
                 let value = parser.value().map_err(|_| "--as needs a form behind it, such as --as json".to_string())?;
                 words.form = Some(value.to_string_lossy().into_owned());
+            }
+            Arg::Long("search") if options.contains(&"--search") => {
+                let value = parser.value().map_err(|_| format!("--search needs {} behind it", degrees()))?;
+                words.search = Some(value.to_string_lossy().into_owned());
             }
             Arg::Long("stdio") if options.contains(&"--stdio") => {}
             Arg::Long("check") if options.contains(&"--check") => words.check = true,
@@ -142,15 +150,16 @@ fn check(parser: lexopt::Parser) -> Result<Command, String> {
 }
 
 fn sheet(parser: lexopt::Parser) -> Result<Command, String> {
-    let words = words(parser, &["--as"])?;
+    let words = words(parser, &["--as", "--search"])?;
     if words.help {
         return Ok(Command::Help(help::SHEET));
     }
     let forms = [("text", SheetForm::Text), ("json", SheetForm::Json), ("latex", SheetForm::Latex)];
     let form = pick(words.form.as_deref(), &forms)?;
+    let search = degree(words.search.as_deref())?;
     let mut sources = sources(words.sources, "sheet")?;
     match (sources.pop(), sources.is_empty()) {
-        (Some(source), true) => Ok(Command::Sheet { source, form }),
+        (Some(source), true) => Ok(Command::Sheet { source, form, search }),
         _ => Err("sheet takes one file at a time".to_string()),
     }
 }
@@ -217,6 +226,25 @@ fn pick<T: Copy>(word: Option<&str>, forms: &[(&'static str, T)]) -> Result<T, S
     }
 }
 
+/// `no`, or a degree that may be searched.
+fn degree(word: Option<&str>) -> Result<Option<u32>, String> {
+    match word {
+        None => Ok(Some(DEGREE)),
+        Some("no") => Ok(None),
+        Some(word) => match word.parse() {
+            Ok(n) if n <= MAX_DEGREE => Ok(Some(n)),
+            _ => {
+                let shown: String = word.chars().take(40).collect();
+                Err(format!("--search takes {}, not `{shown}`", degrees()))
+            }
+        },
+    }
+}
+
+fn degrees() -> String {
+    format!("`no` or a degree from 0 to {MAX_DEGREE}")
+}
+
 fn unknown_line<'k>(what: &str, word: &str, known: impl Iterator<Item = &'k str>) -> String {
     let shown: String = word.chars().take(40).collect();
     match nearest(&shown, known) {
@@ -267,10 +295,13 @@ mod tests {
     fn commands_and_their_words() {
         let sources = vec![file("a.least"), Source::Stdin];
         assert_eq!(line("check a.least -"), Ok(Command::Check { sources, form: CheckForm::Text }));
-        let sheet = |form| Ok(Command::Sheet { source: file("a"), form });
+        let sheet = |form| Ok(Command::Sheet { source: file("a"), form, search: Some(2) });
         assert_eq!(line("sheet a --as json"), sheet(SheetForm::Json));
         assert_eq!(line("sheet --as=latex a"), sheet(SheetForm::Latex));
         assert_eq!(line("sheet --as text -- a"), sheet(SheetForm::Text));
+        let sheet = |search| Ok(Command::Sheet { source: file("a"), form: SheetForm::Text, search });
+        assert_eq!(line("sheet a --search no"), sheet(None));
+        assert_eq!(line("sheet --search=4 a"), sheet(Some(4)));
         assert_eq!(line("format --check a"), Ok(Command::Format { sources: vec![file("a")], check: true }));
         assert_eq!(line("explain not-utf8"), Ok(Command::Explain(Some("not-utf8".into()))));
         assert_eq!(line("check -- --as"), Ok(Command::Check { sources: vec![file("--as")], form: CheckForm::Text }));
@@ -301,6 +332,9 @@ mod tests {
         check_error("check a --as latex", "no form `latex`");
         check_error("help shet", "no command `shet`; did you mean `sheet`?");
         check_error("format -x", "no option `-x`");
+        check_error("sheet a --search 5", "--search takes `no` or a degree from 0 to 4, not `5`");
+        check_error("sheet a --search", "--search needs `no` or a degree from 0 to 4 behind it");
+        check_error("check a --search no", "no option `--search`");
         check_error("format --check=yes a", "--check takes no value");
     }
 

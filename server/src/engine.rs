@@ -2,7 +2,9 @@
 
 use crate::files::Disk;
 use leastwise_analysis::report::{Finding, Sheet};
+use leastwise_analysis::search::{self, SearchReport};
 use leastwise_analysis::{Files, Session, codes};
+use std::sync::Arc;
 
 /// The analysis with the files that models include.
 pub struct Engine {
@@ -40,6 +42,11 @@ impl Engine {
         let derived = self.session.derive(&checked);
         let findings = self.session.findings(&checked, &derived);
         (self.session.sheet(&checked, &derived), findings)
+    }
+
+    /// What a search finds in a model; nothing where it has errors.
+    pub fn search(&self, path: &str, text: &str, degree: u32) -> Option<SearchReport> {
+        search::search(path, text, &self.disk, degree, &Arc::default(), &mut |_| ())
     }
 }
 

@@ -45,14 +45,18 @@ A code in brackets, such as [not-cyclic], is explained by `leastwise explain COD
 
 /// `leastwise help sheet`.
 pub const SHEET: &str = "\
-leastwise sheet FILE [--as text|json|latex]
+leastwise sheet FILE [--as text|json|latex] [--search no|0…4]
 
 Prints all that follows from a model: the Lagrangian and its terms, equations of motion, momenta,
-mass matrix, energy, each symmetry with its charge and balance law, constants of the motion.
+mass matrix, energy, each symmetry with its charge and balance law, constants of the motion, and
+those that nobody claimed.
 
   --as text    set for a terminal, to its width; 100 columns elsewhere (the usual form)
   --as json    for programs; each formula as text, plain and latex
   --as latex   a complete article; needs amsmath
+  --search 3   looks for symmetries up to this degree in t and the coordinates, 0 to 4 (2), and for
+               integrals quadratic in the velocities
+  --search no  looks for nothing
 
 An equation of motion is printed as zero; with constraints the reactions stand on its right side.
 
@@ -93,9 +97,12 @@ model it shows equations, momenta, verdicts and slips as hovers, hints and diagn
 model is typed.
 
 Settings, by initialisation options or by workspace/configuration (section `leastwise`):
-  hints.momentum, hints.claims, hints.summary    true or false: the kinds of hints
+  hints.momentum, hints.claims, hints.summary,
+  hints.search                                   true or false: the kinds of hints
   hints.maxLength                                longer hints are cut, 10 to 400 (60)
   hover.maxLines                                 longer hovers are cut, 5 to 1000 (40)
+  search.run                                     true or false: look for unclaimed constants
+  search.degree                                  of the symmetries that are looked for, 0 to 4 (2)
   diagnostics.readings                           true or false: hints on how a formula was read
   diagnostics.max                                findings that are shown, 1 to 10000 (200)
 

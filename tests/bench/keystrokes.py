@@ -39,7 +39,9 @@ class Server:
                 "publishDiagnostics": {"versionSupport": True, "relatedInformation": True},
             },
         }
-        self.ask("initialize", {"processId": None, "rootUri": None, "capabilities": capabilities})
+        # A search runs beside, after a rest: it would be counted where it happens to fall.
+        options = {"search": {"run": False}}
+        self.ask("initialize", {"processId": None, "rootUri": None, "capabilities": capabilities, "initializationOptions": options})
         self.tell("initialized", {})
 
     def send(self, message):

@@ -16,10 +16,10 @@ class Program:
     def run(self, *args, timeout=20, **more):
         return subprocess.run(self.command + list(args), stdout=subprocess.PIPE, stderr=subprocess.PIPE, timeout=timeout, **more)
 
-    def sheet(self, path, timeout=20):
+    def sheet(self, path, timeout=20, search="no"):
         """The JSON sheet of a file. Raises NoSheet."""
         try:
-            p = self.run("sheet", path, "--as", "json", timeout=timeout)
+            p = self.run("sheet", path, "--as", "json", "--search", search, timeout=timeout)
         except subprocess.TimeoutExpired:
             raise NoSheet(f"no answer in {timeout} s") from None
         except OSError as x:

@@ -20,6 +20,7 @@ CHECKS = {                 # module: packages
     "hostile": ["mpmath"],
     "verdicts": ["mpmath"],
     "reprint": ["mpmath"],
+    "units": ["pint", "scipy", "mpmath"],
 }
 
 

@@ -67,6 +67,10 @@ class Allowed:
             yield "options of renaming for a client that cannot prepare"
         if isinstance(can.get("codeActionProvider"), dict) and not self.can("textDocument.codeAction.codeActionLiteralSupport"):
             yield "options of code actions for a client that knows commands only"
+        if "codeLensProvider" in can and self.can("textDocument.codeLens") is None:
+            yield "lenses for a client that shows none"
+        if "leastwise.writeFound" in can["executeCommandProvider"]["commands"] and not self.can("workspace.applyEdit"):
+            yield "a command that edits for a client that takes no edits"
         if "signatureHelpProvider" in can and self.can("textDocument.signatureHelp") is None:
             yield "functions around the cursor for a client that shows none"
         if "diagnosticProvider" in can and self.can("textDocument.diagnostic") is None:

@@ -5,6 +5,7 @@ BARE = {}
 # An editor that pulls diagnostics and can nearly everything.
 FULL = {
     "general": {"positionEncodings": ["utf-16"]},
+    "window": {"workDoneProgress": True},
     "workspace": {
         "applyEdit": True,
         "configuration": True,
@@ -12,6 +13,7 @@ FULL = {
         "didChangeWatchedFiles": {"dynamicRegistration": True},
         "workspaceEdit": {"documentChanges": True},
         "inlayHint": {"refreshSupport": True},
+        "codeLens": {"refreshSupport": True},
         "semanticTokens": {"refreshSupport": True},
         "diagnostics": {"refreshSupport": True},
     },
@@ -35,6 +37,7 @@ FULL = {
             "codeActionLiteralSupport": {"codeActionKind": {"valueSet": ["quickfix"]}},
             "isPreferredSupport": True,
         },
+        "codeLens": {"dynamicRegistration": False},
         "inlayHint": {"resolveSupport": {"properties": ["tooltip"]}},
         "semanticTokens": {
             "requests": {"full": {"delta": True}, "range": True},
@@ -118,6 +121,7 @@ NEOVIM = {
             "isPreferredSupport": True,
             "dataSupport": True,
         },
+        "codeLens": {"dynamicRegistration": False},
         "inlayHint": {"resolveSupport": {"properties": ["textEdits", "tooltip", "location", "command"]}},
         "semanticTokens": {
             "requests": {"full": {"delta": True}, "range": False},

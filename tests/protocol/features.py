@@ -46,9 +46,9 @@ def test_hints_and_their_settings():
         assert only and all(h["position"]["line"] in (2, 3) for h in only)
         resolved = s.ask("inlayHint/resolve", only[0])
         assert "m r² φ̇" in resolved["tooltip"]
-    with Session(options={"hints": {"momentum": False, "claims": False}}) as s:
+    with Session(options={"hints": {"momentum": False, "claims": False}, "search": {"run": False}}) as s:
         assert [h["position"]["line"] for h in s.open(WINCH).hints()] == [7]
-    with Session(options={"hints": {"maxLength": 10}}) as s:
+    with Session(options={"hints": {"maxLength": 10}, "search": {"run": False}}) as s:
         assert all(len(h["label"]) <= 10 for h in s.open(WINCH).hints())
 
 

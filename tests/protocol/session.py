@@ -45,6 +45,7 @@ class Session:
         self.answers = {}
         self.published = {}
         self.told = []
+        self.progress = {}
         self.asked = []
         self.texts = {}
         self.sent = {}
@@ -152,6 +153,12 @@ class Session:
             result = None
             if method == "workspace/configuration":
                 result = [self.settings for _ in params["items"]]
+            if method == "workspace/applyEdit":
+                result = {"applied": True}
+            if method == "window/workDoneProgress/create":
+                if params["token"] in self.progress:
+                    raise Wrong(f"a token twice: {params['token']}")
+                self.progress[params["token"]] = "created"
             if self.process.poll() is None:
                 self.send({"id": message["id"], "result": result})
         elif method == "textDocument/publishDiagnostics":
@@ -160,7 +167,16 @@ class Session:
                 self._in_order(uri, version)
             self.published.setdefault(uri, []).append((version, params["diagnostics"]))
         else:
+            if method == "$/progress":
+                self._progress(params["token"], params["value"]["kind"])
             self.told.append((method, params))
+
+    def _progress(self, token, kind):
+        """Each token is created, begun, reported of and ended, in this order."""
+        state = self.progress.get(token)
+        if (state, kind) not in (("created", "begin"), ("begun", "report"), ("begun", "end")):
+            raise Wrong(f"{kind} of what is {state}: {token}")
+        self.progress[token] = {"begin": "begun", "end": "ended"}.get(kind, state)
 
     def _complain(self, complaints):
         for complaint in complaints:
@@ -225,6 +241,8 @@ class Session:
                 status = self.end()
                 assert status == 0, f"exit status {status}"
                 self._to_the_end()
+                if "begun" in self.progress.values():
+                    raise Wrong(f"begun and never ended: {self.progress}")
                 if self.open_requests:
                     raise Wrong(f"never answered: {self.open_requests}")
         finally:
@@ -299,6 +317,13 @@ class Document:
     def actions(self, diagnostic):
         context = {"diagnostics": [diagnostic], "only": ["quickfix"]}
         return self.session.ask("textDocument/codeAction", {**self.id, "range": diagnostic["range"], "context": context})
+
+    def rewrites(self, line):
+        context = {"diagnostics": [], "only": ["refactor"]}
+        return self.session.ask("textDocument/codeAction", {**self.id, "range": span(line, 0, line, 0), "context": context})
+
+    def lenses(self):
+        return self.session.ask("textDocument/codeLens", self.id)
 
     def format(self):
         options = {"tabSize": 4, "insertSpaces": True}

@@ -1,5 +1,6 @@
 //! What the analysis says, as plain data: findings and the sheet. Knows no protocol and no JSON.
 
+use crate::search::SearchReport;
 use leastwise_grammar::tree::Severity;
 use std::ops::Range;
 
@@ -228,4 +229,6 @@ pub struct Sheet {
     pub symmetries: Vec<SymmetryRow>,
     /// Claimed constants.
     pub conserved: Vec<ConservedRow>,
+    /// What a search found, where there was one.
+    pub found: Option<SearchReport>,
 }

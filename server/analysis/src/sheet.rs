@@ -162,6 +162,7 @@ impl Maker<'_> {
             energy,
             symmetries,
             conserved,
+            found: None,
         })
     }
 
@@ -193,6 +194,7 @@ impl Maker<'_> {
             energy,
             symmetries: Vec::new(),
             conserved: Vec::new(),
+            found: None,
         }
     }
 

@@ -18,7 +18,7 @@ use std::io;
 pub fn run(command: Command, streams: &mut Streams<'_>) -> io::Result<u8> {
     match command {
         Command::Check { sources, form } => check::run(&sources, form, streams),
-        Command::Sheet { source, form } => sheet::run(&source, form, streams),
+        Command::Sheet { source, form, search } => sheet::run(&source, form, search, streams),
         Command::Format { sources, check } => format::run(&sources, check, streams),
         Command::Explain(code) => explain::run(code.as_deref(), streams),
         Command::Lsp => crate::lsp::run(),

@@ -9,8 +9,8 @@ use crate::print::{latex, page, sheet_json};
 use leastwise_grammar::tree::Severity;
 use std::io;
 
-/// Derives the model and prints the sheet.
-pub fn run(source: &Source, form: SheetForm, streams: &mut Streams<'_>) -> io::Result<u8> {
+/// Derives the model and prints the sheet; with a degree, what a search finds, too.
+pub fn run(source: &Source, form: SheetForm, search: Option<u32>, streams: &mut Streams<'_>) -> io::Result<u8> {
     let mut engine = Engine::new();
     let (path, content) = super::read(source, &engine, streams);
     let text = match content {
@@ -24,7 +24,8 @@ pub fn run(source: &Source, form: SheetForm, streams: &mut Streams<'_>) -> io::R
             return Ok(2);
         }
     };
-    let (sheet, findings) = engine.sheet(&path, &text);
+    let (mut sheet, findings) = engine.sheet(&path, &text);
+    sheet.found = search.and_then(|degree| engine.search(&path, &text, degree));
     let lines = Lines::new(&text);
     match form {
         SheetForm::Text => write!(streams.out, "{}", page::sheet(&sheet, &findings, &lines, streams.page))?,

@@ -14,6 +14,14 @@ pub struct Abilities {
     pub refreshes_diagnostics: bool,
     /// It is told when to ask for hints again.
     pub refreshes_hints: bool,
+    /// It is told when to ask for lenses again.
+    pub refreshes_lenses: bool,
+    /// It shows lenses.
+    pub lenses: bool,
+    /// It shows how what takes long goes on.
+    pub shows_progress: bool,
+    /// The server may ask for edits.
+    pub applies_edits: bool,
     /// It is told when to ask for tokens again.
     pub refreshes_tokens: bool,
     /// Diagnostics may have related places.
@@ -114,6 +122,10 @@ impl Abilities {
             pulls: text.diagnostic.is_some(),
             refreshes_diagnostics: yes(work.diagnostics.and_then(|d| d.refresh_support)),
             refreshes_hints: yes(work.inlay_hint.and_then(|d| d.refresh_support)),
+            refreshes_lenses: yes(work.code_lens.and_then(|d| d.refresh_support)),
+            lenses: text.code_lens.is_some(),
+            shows_progress: yes(client.window.as_ref().and_then(|w| w.work_done_progress)),
+            applies_edits: yes(work.apply_edit),
             refreshes_tokens: yes(work.semantic_tokens.and_then(|d| d.refresh_support)),
             related: yes(push.related_information),
             unnecessary: push.tag_support.is_some_and(|t| t.value_set.contains(&lsp::DiagnosticTag::UNNECESSARY)),

@@ -1,8 +1,8 @@
 //! What is asked of a document, answered: features of the analysis in the protocol's types.
 
-use super::convert;
 use super::positions::Positions;
 use super::worker::View;
+use super::{convert, found};
 use leastwise_analysis::features::inlay::{self, Inlay, InlayKind};
 use leastwise_analysis::features::{actions, navigation, outline, rename};
 use leastwise_analysis::report::Finding;
@@ -58,7 +58,9 @@ pub fn hover(view: &mut View<'_>, derived: &Derived, position: lsp::Position) ->
 /// The hints of a part of the text. While the text is broken, those of the last whole one stay.
 pub fn hints(view: &mut View<'_>, derived: &Derived, range: lsp::Range) -> Result<Option<Vec<lsp::InlayHint>>> {
     let wanted = view.positions.bytes(range);
-    let list = inlays(view, derived, wanted);
+    let search = found::inlay(view, &wanted);
+    let mut list = inlays(view, derived, wanted);
+    list.extend(search);
     let settings = view.shared.settings();
     let on = |h: &Inlay| match h.kind {
         InlayKind::Momentum => settings.momentum_hints,
@@ -122,7 +124,8 @@ fn inlays(view: &mut View<'_>, derived: &Derived, wanted: Range<usize>) -> Vec<I
 /// A hint with the text that its label may have cut.
 pub fn resolved(view: &mut View<'_>, derived: &Derived, mut hint: lsp::InlayHint, kind: u64) -> Result<lsp::InlayHint> {
     let offset = view.positions.offset(hint.position);
-    let list = inlays(view, derived, offset..offset);
+    let mut list = inlays(view, derived, offset..offset);
+    list.extend(found::inlay(view, &(offset..offset)));
     if let Some(found) = list.iter().find(|h| h.offset == offset && number(h.kind) == kind) {
         hint.tooltip = Some(lsp::InlayHintTooltip::String(found.label.clone()));
     }
@@ -200,7 +203,8 @@ pub fn highlights(view: &mut View<'_>, position: lsp::Position) -> Result<Option
     Ok(Some(places.iter().map(highlight).collect()))
 }
 
-fn refused(why: String) -> Error {
+/// A refusal, with its reason.
+pub fn refused(why: String) -> Error {
     // RequestFailed, of the protocol.
     Error { code: ErrorCode::ServerError(-32803), message: why.into(), data: None }
 }
@@ -223,15 +227,21 @@ pub fn renamed(view: &mut View<'_>, position: lsp::Position, name: &str) -> Resu
 /// The mends of findings in a range.
 pub fn code_actions(view: &mut View<'_>, params: &lsp::CodeActionParams) -> Result<Option<lsp::CodeActionResponse>> {
     let abilities = view.shared.abilities();
-    let wanted = |kind: &lsp::CodeActionKind| {
-        // `quickfix` is wanted where it, or what it belongs to, is named.
-        kind.as_str().is_empty() || kind.as_str() == lsp::CodeActionKind::QUICKFIX.as_str()
+    // A kind is wanted where it, or what it belongs to, is named.
+    let wanted = |kind: lsp::CodeActionKind| {
+        let covers = |asked: &lsp::CodeActionKind| {
+            let rest = kind.as_str().strip_prefix(asked.as_str());
+            asked.as_str().is_empty() || rest.is_some_and(|r| r.is_empty() || r.starts_with('.'))
+        };
+        abilities.code_actions && params.context.only.as_ref().is_none_or(|only| only.iter().any(covers))
     };
-    if !abilities.code_actions || params.context.only.as_ref().is_some_and(|only| !only.iter().any(wanted)) {
-        return Ok(Some(Vec::new()));
-    }
     let range = view.positions.bytes(params.range);
-    let list = actions::actions(view.checked, view.findings, range);
+    let written = if wanted(found::KIND) { found::actions(view, &range) } else { Vec::new() };
+    let list = if wanted(lsp::CodeActionKind::QUICKFIX) {
+        actions::actions(view.checked, view.findings, range)
+    } else {
+        Vec::new()
+    };
     let action = |a: actions::Action| {
         let diagnostics = view
             .findings
@@ -247,7 +257,7 @@ pub fn code_actions(view: &mut View<'_>, params: &lsp::CodeActionParams) -> Resu
             ..lsp::CodeAction::default()
         })
     };
-    Ok(Some(list.into_iter().map(action).collect()))
+    Ok(Some(list.into_iter().map(action).chain(written).collect()))
 }
 
 /// The diagnostics, where the client asks for them.
@@ -277,7 +287,8 @@ fn fingerprint(items: &[lsp::Diagnostic]) -> String {
 
 /// The sheet as text.
 pub fn sheet(view: &mut View<'_>, derived: &Derived) -> Result<Option<lsp::LSPAny>> {
-    let sheet = view.session.sheet(view.checked, derived);
+    let mut sheet = view.session.sheet(view.checked, derived);
+    sheet.found = found::current(view).map(|f| f.report.clone());
     let text = view.positions.text();
     let lines = crate::lines::Lines::new(text);
     let page = crate::print::page::sheet(&sheet, view.findings, &lines, crate::output::Page::PLAIN);

@@ -2,6 +2,7 @@
 
 use super::outbox::Waiting;
 use super::positions::Encoding;
+use super::searches::Found;
 use super::worker::Job;
 use leastwise_analysis::checked::SymbolRow;
 use ropey::Rope;
@@ -36,6 +37,10 @@ pub struct Document {
     pub waiting: Waiting,
     /// The flag of the question that is being answered.
     pub answering: Mutex<Option<Arc<AtomicBool>>>,
+    /// The flag of the search that is under way.
+    pub searching: Mutex<Option<Arc<AtomicBool>>>,
+    /// What the last search found.
+    pub found: Mutex<Option<Arc<Found>>>,
 }
 
 struct State {
@@ -74,6 +79,8 @@ impl Document {
             included: Mutex::new(Arc::new([])),
             waiting: Waiting::default(),
             answering: Mutex::default(),
+            searching: Mutex::default(),
+            found: Mutex::default(),
         };
         (document, jobs)
     }
@@ -105,8 +112,16 @@ impl Document {
         self.wake();
     }
 
+    /// Ends the search that is under way.
+    pub fn end_search(&self) {
+        if let Some(flag) = &*lock(&self.searching) {
+            flag.store(true, Ordering::Relaxed);
+        }
+    }
+
     fn wake(&self) {
         self.interrupt.store(true, Ordering::Relaxed);
+        self.end_search();
         self.send(Job::Changed);
     }
 

@@ -5,10 +5,12 @@ mod answers;
 mod completions;
 mod convert;
 mod documents;
+mod found;
 mod frames;
 mod outbox;
 mod overlay;
 mod positions;
+mod searches;
 mod server;
 mod settings;
 mod shared;
@@ -48,12 +50,17 @@ pub fn run() -> io::Result<u8> {
 
 async fn talk() -> u8 {
     let (outbox, letters) = outbox::outbox();
-    let shared = Arc::new(Shared::new(Arc::new(Documents::default()), outbox));
+    let (searches, orders) = searches::searches();
+    let shared = Arc::new(Shared::new(Arc::new(Documents::default()), outbox, searches));
+    if let Err(error) = searches::start(orders, shared.clone()) {
+        shared.outbox.log(tower_lsp::ls_types::MessageType::ERROR, format!("no thread for searches: {error}"));
+    }
     let mut carried = None;
     let builder = LspService::build(|client| {
         carried = Some(tokio::spawn(outbox::carry(letters, client.clone(), shared.clone())));
         Backend::new(client, shared.clone())
-    });
+    })
+    .custom_method("window/workDoneProgress/cancel", Backend::cancel_progress);
     let tests = std::env::var_os(TEST_REQUESTS).is_some_and(|v| v == "1");
     let (service, socket) = if tests {
         builder.custom_method("leastwise/testPanic", Backend::test_panic).finish()

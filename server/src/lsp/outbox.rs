@@ -1,6 +1,7 @@
 //! What the server tells without being asked, one after the other, never from inside of a handler.
 
 use super::documents::{Document, lock};
+use super::searches::{Search, narrate};
 use super::shared::Shared;
 use std::sync::atomic::Ordering;
 use std::sync::{Arc, Mutex};
@@ -20,6 +21,10 @@ enum News {
     Closed(lsp::Uri),
     /// For the client's log.
     Log(lsp::MessageType, String),
+    /// A search has begun.
+    Search(Search),
+    /// A search has found something out.
+    Found,
     /// What was asked for earlier may have changed without a change of the text.
     Refresh,
 }
@@ -60,6 +65,16 @@ impl Outbox {
         let _ = self.0.send(News::Log(kind, text.into()));
     }
 
+    /// Tells how a search goes on.
+    pub fn search(&self, search: Search) {
+        let _ = self.0.send(News::Search(search));
+    }
+
+    /// Tells the client to ask again for what shows the finds of a search.
+    pub fn found(&self) {
+        let _ = self.0.send(News::Found);
+    }
+
     /// Tells the client to ask again.
     pub fn refresh(&self) {
         let _ = self.0.send(News::Refresh);
@@ -85,6 +100,26 @@ pub async fn carry(mut letters: Letters, client: Client, shared: Arc<Shared>) {
             }
             News::Closed(uri) => client.publish_diagnostics(uri, Vec::new(), None).await,
             News::Log(kind, text) => client.log_message(kind, text).await,
+            News::Search(search) => {
+                if shared.abilities().shows_progress {
+                    tokio::spawn(narrate(search, client.clone(), shared.clone()));
+                }
+            }
+            News::Found => {
+                let client = client.clone();
+                let abilities = shared.abilities().clone();
+                tokio::spawn(async move {
+                    let asked = async {
+                        if abilities.refreshes_hints {
+                            let _ = client.inlay_hint_refresh().await;
+                        }
+                        if abilities.refreshes_lenses {
+                            let _ = client.code_lens_refresh().await;
+                        }
+                    };
+                    let _ = tokio::time::timeout(PATIENCE, asked).await;
+                });
+            }
             News::Refresh => {
                 let client = client.clone();
                 let abilities = shared.abilities().clone();

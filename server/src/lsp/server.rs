@@ -6,7 +6,7 @@ use super::documents::Document;
 use super::settings::{SECTION, Settings};
 use super::shared::Shared;
 use super::worker::{self, Job, about_names, about_verdicts, ask};
-use super::{answers, completions, convert, signatures, tokens};
+use super::{answers, completions, convert, found, signatures, tokens};
 use std::sync::Arc;
 use std::sync::atomic::Ordering;
 use std::time::Duration;
@@ -18,6 +18,8 @@ use tower_lsp::{Client, LanguageServer};
 const PATIENCE: Duration = Duration::from_secs(10);
 /// The command that gives the sheet of a document.
 pub const SHEET: &str = "leastwise.sheet";
+/// The command that writes into a document what a search found.
+pub const WRITE_FOUND: &str = "leastwise.writeFound";
 
 /// The language server.
 pub struct Backend {
@@ -106,6 +108,13 @@ impl Backend {
         });
     }
 
+    /// The client does not want what takes long any more.
+    pub async fn cancel_progress(&self, params: WorkDoneProgressCancelParams) {
+        if let ProgressToken::String(token) = &params.token {
+            self.shared.searches.cancel(token);
+        }
+    }
+
     /// Only with the environment variable that tests set.
     pub async fn test_panic(&self, params: TextDocumentPositionParams) -> Result<()> {
         let document = self.document(&params.text_document.uri)?;
@@ -117,6 +126,7 @@ impl Backend {
 
 fn close(document: &Document) {
     document.interrupt.store(true, Ordering::Relaxed);
+    document.end_search();
     document.send(Job::Close);
 }
 
@@ -137,8 +147,14 @@ fn capabilities(abilities: &Abilities, offered: bool) -> ServerCapabilities {
         workspace_diagnostics: false,
         work_done_progress_options: Default::default(),
     };
-    let actions =
-        CodeActionOptions { code_action_kinds: Some(vec![CodeActionKind::QUICKFIX]), ..CodeActionOptions::default() };
+    let actions = CodeActionOptions {
+        code_action_kinds: Some(vec![CodeActionKind::QUICKFIX, found::KIND]),
+        ..CodeActionOptions::default()
+    };
+    let mut commands = vec![SHEET.into()];
+    if abilities.applies_edits {
+        commands.push(WRITE_FOUND.into());
+    }
     ServerCapabilities {
         position_encoding: offered.then(|| PositionEncodingKind::new(abilities.encoding.name())),
         text_document_sync: Some(TextDocumentSyncCapability::Options(sync)),
@@ -156,10 +172,12 @@ fn capabilities(abilities: &Abilities, offered: bool) -> ServerCapabilities {
         document_highlight_provider: Some(OneOf::Left(true)),
         document_symbol_provider: Some(OneOf::Left(true)),
         code_action_provider: abilities.code_actions.then_some(CodeActionProviderCapability::Options(actions)),
+        code_lens_provider: (abilities.lenses && abilities.applies_edits)
+            .then_some(CodeLensOptions { resolve_provider: None }),
         document_formatting_provider: Some(OneOf::Left(true)),
         rename_provider: Some(rename),
         execute_command_provider: Some(ExecuteCommandOptions {
-            commands: vec![SHEET.into()],
+            commands,
             work_done_progress_options: Default::default(),
         }),
         semantic_tokens_provider: Some(SemanticTokensServerCapabilities::SemanticTokensOptions(
@@ -208,6 +226,7 @@ impl LanguageServer for Backend {
     async fn shutdown(&self) -> Result<()> {
         self.shared.shut.store(true, Ordering::Relaxed);
         self.shared.stop();
+        self.shared.searches.quiet().await;
         Ok(())
     }
 
@@ -350,6 +369,11 @@ impl LanguageServer for Backend {
         ask(&document, about_verdicts(move |view, _| answers::code_actions(view, &params))).await
     }
 
+    async fn code_lens(&self, params: CodeLensParams) -> Result<Option<Vec<CodeLens>>> {
+        let document = self.document(&params.text_document.uri)?;
+        ask(&document, about_verdicts(|view, _| found::lenses(view))).await
+    }
+
     async fn prepare_rename(&self, params: TextDocumentPositionParams) -> Result<Option<PrepareRenameResponse>> {
         let document = self.document(&params.text_document.uri)?;
         ask(&document, about_names(move |view| answers::prepare_rename(view, params.position))).await
@@ -368,13 +392,24 @@ impl LanguageServer for Backend {
     }
 
     async fn execute_command(&self, params: ExecuteCommandParams) -> Result<Option<LSPAny>> {
-        if params.command != SHEET {
+        let writes = params.command == WRITE_FOUND && self.shared.abilities().applies_edits;
+        if params.command != SHEET && !writes {
             let message = format!("there is no command `{}`", params.command);
             return Err(Error { code: ErrorCode::InvalidParams, message: message.into(), data: None });
         }
         let uri = params.arguments.first().and_then(|u| serde_json::from_value::<Uri>(u.clone()).ok());
         let uri = uri.ok_or_else(|| Error::invalid_params("the command needs the address of a document"))?;
         let document = self.document(&uri)?;
-        ask(&document, about_verdicts(answers::sheet)).await
+        if !writes {
+            return ask(&document, about_verdicts(answers::sheet)).await;
+        }
+        let edit = ask(&document, about_verdicts(|view, _| Ok(found::all(view)))).await?;
+        let edit = edit.ok_or_else(|| answers::refused("nothing was found in the text as it is now".into()))?;
+        let client = self.client.clone();
+        tokio::spawn(async move {
+            // A client that refuses says so.
+            let _ = tokio::time::timeout(PATIENCE, client.apply_edit(edit)).await;
+        });
+        Ok(None)
     }
 }

@@ -70,7 +70,8 @@ impl Settings {
                 continue;
             }
             let Value::Object(entries) = entries else {
-                wrong.push(format!("`{group}` is no group of settings; there are hints, hover, search and diagnostics"));
+                wrong
+                    .push(format!("`{group}` is no group of settings; there are hints, hover, search and diagnostics"));
                 continue;
             };
             for (name, value) in entries {
@@ -137,6 +138,11 @@ mod tests {
             |s| (s.claim_hints, s.hint_length) = (false, 20),
             &[],
         );
+        check(
+            json!({"hints": {"search": false}, "search": {"run": false, "degree": 0}}),
+            |s| (s.search_hint, s.search_run, s.search_degree) = (false, false, 0),
+            &[],
+        );
         check(json!({"leastwise": {"hover": {"maxLines": 9}}}), |s| s.hover_lines = 9, &[]);
         check(json!({"server": {"path": "x"}, "hover": {"maxLines": null}}), |_| {}, &[]);
     }
@@ -152,6 +158,11 @@ mod tests {
             json!({"diagnostics": {"max": 0}}),
             |_| {},
             &["`diagnostics.max` is a whole number from 1 to 10000, not 0"],
+        );
+        check(
+            json!({"search": {"degree": 5, "run": "no"}}),
+            |_| {},
+            &["`search.degree` is a whole number from 0 to 4, not 5", "`search.run` is true or false, not \"no\""],
         );
         check(json!({"hover": {"lines": 3}}), |_| {}, &["there is no setting `hover.lines`"]);
         check(

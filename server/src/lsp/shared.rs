@@ -3,6 +3,7 @@
 use super::abilities::Abilities;
 use super::documents::{Document, Documents, lock};
 use super::outbox::Outbox;
+use super::searches::Searches;
 use super::settings::Settings;
 use std::path::PathBuf;
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -14,6 +15,8 @@ pub struct Shared {
     pub documents: Arc<Documents>,
     /// What is to be told without being asked.
     pub outbox: Outbox,
+    /// Where searches are ordered.
+    pub searches: Searches,
     /// Whether the client has said `shutdown`.
     pub shut: AtomicBool,
     abilities: OnceLock<Abilities>,
@@ -22,10 +25,11 @@ pub struct Shared {
 
 impl Shared {
     /// A conversation that has not begun.
-    pub fn new(documents: Arc<Documents>, outbox: Outbox) -> Shared {
+    pub fn new(documents: Arc<Documents>, outbox: Outbox, searches: Searches) -> Shared {
         Shared {
             documents,
             outbox,
+            searches,
             shut: AtomicBool::new(false),
             abilities: OnceLock::new(),
             settings: Mutex::default(),
@@ -59,6 +63,7 @@ impl Shared {
     pub fn stop(&self) {
         for document in self.documents.all() {
             document.interrupt.store(true, Ordering::Relaxed);
+            document.end_search();
         }
     }
 

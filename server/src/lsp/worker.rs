@@ -9,6 +9,7 @@ use super::{answers, convert};
 use leastwise_analysis::features::inlay::Inlay;
 use leastwise_analysis::report::Finding;
 use leastwise_analysis::{Checked, Derived, Session};
+use leastwise_grammar::tree::Severity;
 use std::collections::VecDeque;
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::atomic::{AtomicBool, Ordering};
@@ -79,6 +80,8 @@ pub struct View<'a> {
     pub positions: &'a Positions,
     /// The version of its text.
     pub version: i32,
+    /// The number of its change.
+    pub change: u64,
     /// What answers leave for later ones.
     pub kept: &'a mut Kept,
     /// The files beside it.
@@ -299,6 +302,10 @@ impl Worker {
             return;
         }
         known.derived = Some(derived);
+        let sound = known.checked.complete && !known.findings.iter().any(|f| f.severity == Severity::Error);
+        if sound && self.shared.settings().search_run {
+            self.shared.searches.order(&self.document, known.snapshot.change);
+        }
         if !self.shared.abilities().pulls {
             let list = convert::diagnostics(&known.findings, &known.positions, &self.shared, &self.document.uri);
             self.shared.outbox.diagnostics(&self.document, known.snapshot.change, known.snapshot.version, list);
@@ -355,6 +362,7 @@ impl Worker {
             findings: &known.findings,
             positions: &known.positions,
             version: known.snapshot.version,
+            change: known.snapshot.change,
             kept: &mut self.kept,
             overlay: &self.overlay,
             shared: &self.shared,

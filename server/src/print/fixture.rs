@@ -2,6 +2,7 @@
 
 use crate::print::Outcome;
 use leastwise_analysis::report::*;
+use leastwise_analysis::search::{SearchReport, SearchRow};
 use leastwise_grammar::tree::Severity;
 
 /// A formula from its three spellings.
@@ -150,5 +151,29 @@ pub fn sheet() -> Sheet {
             rate: zero(),
             range: 0..7,
         }],
+        found: None,
     }
+}
+
+/// A search that found the energy, which is known, and a boost.
+pub fn found() -> SearchReport {
+    let boost = SearchRow {
+        name: "boost_x".into(),
+        title: "charge of boost_x".into(),
+        known: false,
+        generator: vec![("t".into(), alike("0")), ("x".into(), alike("t"))],
+        gauge: Some(formula("m x", "m*x", "m \\, x")),
+        charge: formula("m (t x' - x)", "m*(t*x' - x)", "m \\, \\left(t \\, \\dot{x} - x\\right)"),
+        source: Some("symmetry boost_x: x -> x + ε t".into()),
+    };
+    let delay = SearchRow {
+        name: "delay".into(),
+        title: "energy".into(),
+        known: true,
+        generator: vec![("t".into(), alike("1"))],
+        gauge: None,
+        charge: formula("-1/2 m x'²", "-1/2*m*x'^2", "-\\frac{1}{2} \\, m \\, \\dot{x}^{2}"),
+        source: Some("symmetry delay: t -> t + ε".into()),
+    };
+    SearchReport { degree: 2, items: vec![delay, boost], incomplete: None }
 }

@@ -1,5 +1,7 @@
 //! `sheet` for a terminal, set like a page: sections, formulas aligned at their equals signs, no boxes.
 
+mod found;
+
 use crate::lines::Lines;
 use crate::output::Page;
 use crate::print::break_lines::{Line, lines, prose, width};
@@ -39,6 +41,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding], source: &Lines<'_>, page: Page
     }
     p.symmetries(&sheet.symmetries);
     p.constants(sheet);
+    p.found(sheet.found.as_ref());
     p.findings(findings, source);
     p.out
 }

@@ -109,18 +109,16 @@ pub fn search(
     interrupt: &Arc<AtomicBool>,
     progress: &mut dyn FnMut(Stage),
 ) -> Option<SearchReport> {
-    search_with(path, text, files, degree, interrupt, progress, &mut look)
-}
-
-/// Nothing is looked for yet.
-fn look(_: &mut Context<'_>, _: &Model, _: &Scope, _: &[Expr], _: &mut dyn FnMut(Stage)) -> Result<Found, Stopped> {
-    Ok(Found { items: Vec::new(), incomplete: Some("nothing was looked for".to_string()) })
+    // What looks for them is being written.
+    let _ = (path, text, files, degree, interrupt, progress);
+    None
 }
 
 /// What looks for the constants: the mechanics, or a test.
 type Finder<'f> =
     dyn FnMut(&mut Context<'_>, &Model, &Scope, &[Expr], &mut dyn FnMut(Stage)) -> Result<Found, Stopped> + 'f;
 
+#[cfg_attr(not(test), expect(dead_code))]
 fn search_with(
     path: &str,
     text: &str,

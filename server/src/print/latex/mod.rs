@@ -1,6 +1,7 @@
 //! `sheet --as latex`: a complete article. Needs amsmath; pdfLaTeX, XeLaTeX and LuaLaTeX all take it.
 
 mod breaking;
+mod found;
 mod spelling;
 
 use crate::print::letters::Letters;
@@ -64,6 +65,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
     }
     a.symmetries(&sheet.symmetries, &Letters::of(sheet));
     a.constants(sheet);
+    a.found(sheet.found.as_ref(), &Letters::of(sheet));
     a.out.push_str("\\end{document}\n");
     a.out
 }
