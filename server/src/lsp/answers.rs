@@ -67,16 +67,17 @@ pub fn hints(view: &mut View<'_>, derived: &Derived, range: lsp::Range) -> Resul
         InlayKind::Claim => settings.claim_hints,
         InlayKind::Summary => settings.summary_hint,
         InlayKind::Search => settings.search_hint,
+        InlayKind::Quantity => settings.quantity_hints,
     };
     let resolves = view.shared.abilities().resolves_hints;
     let hint = |h: &Inlay| {
         lsp::InlayHint {
         position: view.positions.position(h.offset),
         label: lsp::InlayHintLabel::String(cut(&h.label, settings.hint_length)),
-        kind: None,
+        kind: (h.kind == InlayKind::Quantity).then_some(lsp::InlayHintKind::TYPE),
         text_edits: None,
         tooltip: None,
-        padding_left: Some(true),
+        padding_left: Some(h.kind != InlayKind::Quantity),
         padding_right: None,
         data: resolves.then(|| {
             let at = view.positions.position(h.offset);
@@ -93,6 +94,7 @@ fn number(kind: InlayKind) -> u64 {
         InlayKind::Claim => 1,
         InlayKind::Summary => 2,
         InlayKind::Search => 3,
+        InlayKind::Quantity => 4,
     }
 }
 

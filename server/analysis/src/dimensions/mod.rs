@@ -17,8 +17,8 @@ use crate::database::Reading;
 use crate::finding::LocalFinding;
 use crate::scope::{Parsed, SymbolKind};
 use leastwise_grammar::tree::*;
-use leastwise_quantities::Dimension;
 use leastwise_quantities::unify::{Demand, Form, Solution, Unknown, solve};
+use leastwise_quantities::{Dimension, Exponent};
 use size::Size;
 use std::collections::HashMap;
 use std::sync::Arc;
@@ -124,6 +124,8 @@ pub(crate) struct Dimensions {
     /// The unknowns that are free, with their names.
     free: HashMap<Unknown, Key>,
     units: Units,
+    /// The first entry of the model's own file.
+    own: usize,
 }
 
 /// A demand with its reason and its item.
@@ -201,7 +203,8 @@ pub(crate) fn check(
     let (system, places) = system(reading, &asked, &units);
     let solution = solve(system.keys.len(), &system.demands);
     told::tell(reading, &system, &solution, &places, &units);
-    Some(collect(&system, &solution, places, units))
+    let own = reading.entries.iter().position(|e| e.file == 0).unwrap_or(0);
+    Some(Dimensions { own, ..collect(&system, &solution, places, units) })
 }
 
 /// All demands in one numbering.
@@ -271,16 +274,17 @@ fn collect(
     let known = |f: &Form| f.substituted(&solution.values).unwrap_or_else(|| f.clone());
     let places = places.into_iter().map(|(at, list)| (at, list.iter().map(|(s, f)| (*s, known(f))).collect()));
     let free = system.keys.iter().enumerate().map(|(k, (_, key))| (k, key.clone()));
-    Dimensions { names, places: places.collect(), free: free.collect(), units }
+    Dimensions { names, places: places.collect(), free: free.collect(), units, own: 0 }
 }
 
 impl Dimensions {
     /// The dimension of a name, where it is known.
+    #[cfg(test)]
     pub fn of_name(&self, name: &str) -> Option<Dimension> {
         self.names.get(name)?.known()
     }
 
-    /// The dimension of a name with what it depends on: names and exponents.
+    /// The dimension of a name, with what it depends on.
     pub fn form_of_name(&self, name: &str) -> Option<&Form> {
         self.names.get(name)
     }
@@ -290,11 +294,39 @@ impl Dimensions {
         self.free.get(&unknown)
     }
 
-    /// The smallest sub-formula of an item around an offset in it, and its dimension.
-    pub fn at(&self, entry: usize, offset: usize) -> Option<(Span, &Form)> {
-        let list = self.places.get(&entry)?;
+    /// The smallest sub-formula of one of the model's own items around an offset in it, and its dimension.
+    pub fn at(&self, item: usize, offset: usize) -> Option<(Span, &Form)> {
+        let list = self.places.get(&(self.own + item))?;
         let around = list.iter().filter(|(s, _)| s.range().contains(&offset) || s.end as usize == offset);
         around.min_by_key(|(s, _)| s.end - s.start).map(|(s, f)| (*s, f))
+    }
+
+    /// A dimension in words: `a stiffness (N/m)`; where it is not determined, what it depends on.
+    pub fn words(&self, form: &Form, hint: Option<&str>) -> String {
+        let Some(known) = form.known() else {
+            let names: Vec<String> = form.unknowns().iter().filter_map(|(u, _)| self.name_of(*u)).collect();
+            return match names.is_empty() {
+                true => "of a quantity that nothing determines".to_owned(),
+                false => format!("of a quantity that depends on {}", names.join(", ")),
+            };
+        };
+        told::words(self.units.project(known), hint)
+    }
+
+    /// The unit in which a known dimension is usually given; nothing for a number.
+    pub fn unit(&self, form: &Form, hint: Option<&str>) -> Option<String> {
+        let known = self.units.project(form.known()?);
+        let unit = leastwise_quantities::familiar(known, Exponent::ZERO, hint).unit;
+        (!known.is_one()).then(|| unit.to_string())
+    }
+
+    fn name_of(&self, unknown: Unknown) -> Option<String> {
+        match self.key(unknown)? {
+            Key::Name(name, _) => Some(format!("`{name}`")),
+            Key::Argument(function, _) => Some(format!("the argument of `{function}`")),
+            Key::Lagrangian => Some("L".to_owned()),
+            Key::Local(_) => None,
+        }
     }
 }
 

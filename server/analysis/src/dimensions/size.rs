@@ -26,13 +26,6 @@ impl Size {
         form.map_or(Size::Open, Size::Number)
     }
 
-    pub(super) fn form(&self) -> Option<&Form> {
-        match self {
-            Size::Number(f) => Some(f),
-            _ => None,
-        }
-    }
-
     /// All numbers in it, row by row.
     pub(super) fn flat(&self) -> Vec<&Size> {
         match self {

@@ -71,11 +71,6 @@ impl Units {
         let change = self.project(form.factor()).over(form.factor());
         change.and_then(|d| form.times(&d.into())).unwrap_or_else(|| form.clone())
     }
-
-    /// Whether dimensions are taken modulo some.
-    pub fn are_natural(&self) -> bool {
-        !self.ones.is_empty()
-    }
 }
 
 /// The dimensions of the constants that are commonly set to one.

@@ -7,6 +7,7 @@ mod charge;
 mod claim;
 mod coordinate;
 mod name;
+mod quantity;
 mod system;
 mod term;
 mod word;
@@ -49,6 +50,7 @@ impl Session {
         let blocks = self.with_maker(checked, |maker| {
             let mut w = Writer::new(maker, checked, derived);
             describe(&mut w, &place);
+            quantity::quantity(&mut w, offset);
             w.blocks
         });
         (!blocks.is_empty()).then_some(Hover { range, blocks })
