@@ -3,7 +3,8 @@
     motions.py PROGRAM [--only MODEL]
 
 The accelerations come from the sheet's equations and mass matrix, DOP853 integrates them together with every rate on the
-sheet. Checked, relative to the size of the quantity's summands: charges, energy function, momenta and `conserved` claims.
+sheet. Checked, relative to the size of the quantity's summands: charges, energy function, momenta, `conserved` claims, and what a
+search found.
 """
 import argparse
 import math
@@ -58,6 +59,9 @@ RUNS = [
      {"p_ψ": "I₃*(ψ' + φ'*cos(θ))", "p_φ": "(I₁*sin(θ)^2 + I₃*cos(θ)^2)*φ' + I₃*ψ'*cos(θ)"}),
     (MODELS, "two_link_pendulum", "swing", 3, {}, {}, {}, {}),
     (MODELS, "turning_ground", "swing", 60, {("y", 1): 0.1}, {}, {}, {}),
+    (MODELS, "drifting_float", "drift", 10, {}, {}, {}, {}),
+    (MODELS, "comet_in_space", "pass", 10, {}, {}, {}, {}),
+    (MODELS, "gimballed_spring", "swing", 5, {}, {}, {}, {}),
     (MODELS, "rayleigh_drag", "apart", 10, {("y", 1): 0.3}, {}, {}, {}),
 ]
 
@@ -95,6 +99,8 @@ def balances(sheet, claims):
         formula = c.get("formula") or claims.get(c["name"])
         if formula:
             out.append(Balance(f"claim {c['name']}", formula, c.get("rate"), c.get("holds")))
+    for item in (sheet.get("found") or {}).get("items", []):
+        out.append(Balance(f"found {item['name']}", item["charge"], None, True))
     return out
 
 
@@ -166,7 +172,7 @@ def check(prog, entry):
     report = sheets.Report(model)
     path = os.path.join(folder, model + ".least")
     try:
-        sheet = prog.sheet(path)
+        sheet = prog.sheet(path, search="2")
         wrong = program.errors(sheet)
         if not report.check(not wrong, "no error", wrong[:2]):
             return report

@@ -17,6 +17,7 @@ CHECKS = {                 # module: packages
     "random_lagrangians": ["sympy", "mpmath"],
     "motions": ["scipy", "numpy", "mpmath"],
     "textbook": ["mpmath"],
+    "gauges": ["sympy", "mpmath"],
     "hostile": ["mpmath"],
     "verdicts": ["mpmath"],
     "reprint": ["mpmath"],

@@ -13,6 +13,7 @@ import diagnostics
 import editors
 import features
 import lifecycle
+import searches
 import session
 import texts
 
@@ -21,7 +22,7 @@ def main():
     session.PROGRAM, *rest = sys.argv[1:]
     only = rest[1] if rest[:1] == ["--only"] else ""
     passed = failed = 0
-    for module in (lifecycle, texts, diagnostics, features, editors, burst):
+    for module in (lifecycle, texts, diagnostics, features, editors, searches, burst):
         for name, test in list(vars(module).items()):
             if not name.startswith("test_") or only not in f"{module.__name__}.{name}":
                 continue

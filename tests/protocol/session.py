@@ -46,6 +46,7 @@ class Session:
         self.published = {}
         self.told = []
         self.progress = {}
+        self.refuses = set()
         self.asked = []
         self.texts = {}
         self.sent = {}
@@ -158,9 +159,10 @@ class Session:
             if method == "window/workDoneProgress/create":
                 if params["token"] in self.progress:
                     raise Wrong(f"a token twice: {params['token']}")
-                self.progress[params["token"]] = "created"
+                self.progress[params["token"]] = "refused" if method in self.refuses else "created"
             if self.process.poll() is None:
-                self.send({"id": message["id"], "result": result})
+                refusal = {"error": {"code": -32603, "message": "not now"}}
+                self.send({"id": message["id"], **(refusal if method in self.refuses else {"result": result})})
         elif method == "textDocument/publishDiagnostics":
             uri, version = params["uri"], params.get("version")
             if version is not None and uri in self.sent:

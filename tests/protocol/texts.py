@@ -59,7 +59,7 @@ def test_strange_addresses():
 def test_opened_twice_and_versions_that_go_back():
     with Session() as s:
         document = s.open("coordinate x\nkinetic x'^2\n")
-        s.open("coordinate x\nkinetic x'^2 + y\n", version=7)
+        s.open("coordinate x\nkinetic x'^2 + y x^2\n", version=7)
         assert [d["code"] for d in document.diagnostics()] == ["undeclared-name"]
         document.change({"text": "coordinate x\nkinetic x'^2\n"}, version=3)
         assert document.diagnostics() == []

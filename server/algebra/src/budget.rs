@@ -68,6 +68,11 @@ impl Budget {
         Ok(())
     }
 
+    /// A budget of at most `nodes` of what is left, which ends with the same flag. Whoever uses it charges what it spent.
+    pub fn part(&self, nodes: u64) -> Budget {
+        Budget { left: self.left.min(nodes), cancelled: self.cancelled.clone() }
+    }
+
     /// What is left.
     pub fn left(&self) -> u64 {
         self.left

@@ -174,6 +174,11 @@ impl Arena {
                 self.sum(&out)
             }
             Node::Call(f, args) => {
+                // d log|u| = u'/u, for either sign.
+                let args = match self.node(args[0]) {
+                    Node::Call(Function::Abs, inner) if f == Function::Log => inner.clone(),
+                    _ => args,
+                };
                 let mut out = Vec::new();
                 for (k, &a) in args.iter().enumerate() {
                     let da = self.derive_node(a, d, budget)?;

@@ -17,6 +17,6 @@ pub use build::MAX_BITS;
 pub use calculus::Derivation;
 pub use display::{DisplayOptions, Layout, Printed, textbook, verbatim};
 pub use function::Function;
-pub use integrate::antiderivative;
+pub use integrate::{antiderivative, primitive, without_common_factor};
 pub use rational::Rational;
 pub use zero::{Assumptions, Motion, Reason, Relation, Residues, Sign, Verdict, Witness, ZeroTest};

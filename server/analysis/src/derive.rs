@@ -3,6 +3,7 @@
 use crate::checked::Checked;
 use crate::database::Session;
 use crate::formula::Prints;
+use crate::insights::{self, Memo};
 use crate::report::{Finding, Sheet};
 use crate::sheet::Maker;
 use crate::verdicts as told;
@@ -23,6 +24,8 @@ pub struct Derived {
     pub symmetries: Vec<Result<SymmetryAnswer, NoGenerator>>,
     /// One for each claimed constant.
     pub conserved: Vec<Result<Claim, Stopped>>,
+    /// What was derived where somebody looked.
+    pub(crate) insights: Memo,
 }
 
 /// What the derivations of an epoch leave behind for the next edit.
@@ -74,7 +77,10 @@ impl Session {
     /// All findings: of the text and of the mechanics, in the order of the file.
     pub fn findings(&mut self, checked: &Checked, derived: &Derived) -> Vec<Finding> {
         let mut out = checked.findings.clone();
-        self.with_maker(checked, |maker| out.extend(told::findings(maker, checked, derived)));
+        self.with_maker(checked, |maker| {
+            out.extend(told::findings(maker, checked, derived));
+            out.extend(insights::findings(maker, checked));
+        });
         out.sort_by_key(|f| (f.range.start, f.range.end));
         out
     }
@@ -121,7 +127,7 @@ fn derive(cx: &mut Context<'_>, checked: &Checked) -> Derived {
             Err(s) => Err(*s),
         });
     }
-    Derived { answers, symmetries, conserved }
+    Derived { answers, symmetries, conserved, insights: Memo::default() }
 }
 
 /// The sum of unsummed parts.

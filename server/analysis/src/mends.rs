@@ -157,6 +157,14 @@ fn remove(file: &str, offset: usize, item: &Item, length: usize, k: usize) -> Ed
     out
 }
 
+/// The edit that takes an item out, with the comments that describe it.
+pub(crate) fn without_item(checked: &Contents, item: &Range<usize>) -> Edits {
+    let file = &*checked.text;
+    let lines = whole_lines(file, item.clone());
+    let start = block_start(file, item.start).min(lines.start);
+    vec![(start..lines.end, String::new())]
+}
+
 /// One of the names that an item declares.
 struct Part {
     name: Span,

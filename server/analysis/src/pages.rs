@@ -174,6 +174,18 @@ pub(crate) const MENDED: &[(&str, &str, &str, &str)] = &[
         "Call it T_2",
         "coordinate x\nkinetic T = x'^2\npotential T_2 = x\n",
     ),
+    (
+        "idle-term",
+        "coordinate x\nparameter m, b\nkinetic 1/2 m x'^2 + b x x'\n",
+        "Remove it: the equations of motion stay the same",
+        "coordinate x\nparameter m, b\nkinetic 1/2 m x'^2\n",
+    ),
+    (
+        "idle-term",
+        "coordinate x\nparameter m, g, h\nkinetic 1/2 m x'^2\n# The height of the table.\npotential table = m g h\npotential weight = m g x\n",
+        "Remove it: the equations of motion stay the same",
+        "coordinate x\nparameter m, g, h\nkinetic 1/2 m x'^2\npotential weight = m g x\n",
+    ),
     ("unused-name", "parameter m\ncoordinate x\nkinetic x'^2\n", "Remove `m`", "coordinate x\nkinetic x'^2\n"),
     (
         "system-place",

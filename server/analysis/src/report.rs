@@ -1,5 +1,6 @@
 //! What the analysis says, as plain data: findings and the sheet. Knows no protocol and no JSON.
 
+use crate::insights::Insights;
 use crate::search::SearchReport;
 use leastwise_grammar::tree::Severity;
 use std::ops::Range;
@@ -231,4 +232,6 @@ pub struct Sheet {
     pub conserved: Vec<ConservedRow>,
     /// What a search found, where there was one.
     pub found: Option<SearchReport>,
+    /// The algebra of the charges, discrete symmetries, similarity, idle terms.
+    pub insights: Insights,
 }

@@ -3,6 +3,7 @@
 use crate::checked::Checked;
 use crate::derive::{Derived, total};
 use crate::formula::Prints;
+use crate::insights::{Insights, insights};
 use crate::report::{
     Answer, BreakerRow, ConservedRow, CoordinateRow, EnergyRow, Formula, MassEntry, Members, Sheet, Status,
     SymmetryRow, TermRow,
@@ -29,11 +30,11 @@ pub(crate) struct Maker<'a> {
 }
 
 impl Maker<'_> {
-    fn cx(&mut self) -> Context<'_> {
+    pub fn cx(&mut self) -> Context<'_> {
         Context { arena: self.arena, zero: self.zero, budget: self.budget, memory: self.memory }
     }
 
-    fn print(&mut self, e: Expr) -> Formula {
+    pub fn print(&mut self, e: Expr) -> Formula {
         self.prints.formula(self.arena, e)
     }
 
@@ -163,6 +164,7 @@ impl Maker<'_> {
             symmetries,
             conserved,
             found: None,
+            insights: insights(self, checked, derived),
         })
     }
 
@@ -195,6 +197,7 @@ impl Maker<'_> {
             symmetries: Vec::new(),
             conserved: Vec::new(),
             found: None,
+            insights: Insights::default(),
         }
     }
 
@@ -373,7 +376,7 @@ impl Maker<'_> {
     }
 }
 
-fn kind_name(kind: TermKind) -> &'static str {
+pub(crate) fn kind_name(kind: TermKind) -> &'static str {
     match kind {
         TermKind::Kinetic => "kinetic",
         TermKind::Potential => "potential",

@@ -20,6 +20,8 @@ pub struct Memory {
     pub(crate) mass: Option<(u64, MassRows, MassVerdict)>,
     /// Velocity derivatives along motions without acceleration.
     pub(crate) coasting: MemoMap,
+    /// What parts are as regards total time derivatives.
+    pub(crate) shapes: HashMap<Expr, crate::idle::Shape>,
 }
 
 impl Memory {
@@ -29,6 +31,7 @@ impl Memory {
             self.coordinates = coordinates.to_vec();
             self.variations.clear();
             self.flows.clear();
+            self.shapes.clear();
         }
     }
 }

@@ -6,12 +6,14 @@
 //!
 //! Forces beside L must be taken along: 𝒬ᵢ∘σ = ± 𝒬ᵢ with the sign that qⁱ gets; constraints to ± themselves.
 
+use crate::blame::blame;
 use crate::context::{Context, Parts};
+use crate::forms::aligned;
 use crate::gauge::gauge_term;
-use crate::lagrange::{generalised, questions, signed_parts};
+use crate::lagrange::{generalised, questions, residual, signed_parts};
 use crate::model::{Coordinate, Model};
 use crate::symmetry::euler_vanishes;
-use leastwise_algebra::{Expr, Node, Rational, Role, Stopped, Verdict};
+use leastwise_algebra::{Expr, Node, Rational, Reason, Role, Stopped, Verdict};
 
 /// What is done to curves.
 #[derive(Clone, Copy, PartialEq, Eq, Hash, Debug)]
@@ -50,6 +52,11 @@ pub struct DiscreteAnswer {
     pub lagrangian: Holds,
     /// Whether forces and constraints are taken along; `Proved` where there are none.
     pub rest: Verdict,
+    /// Terms, by number, without whose change of L the rest would change by a total time derivative at most; empty where L
+    /// is not broken.
+    pub broken_by: Vec<usize>,
+    /// Forces, by number, that are not taken along by themselves; empty where `rest` is not refuted.
+    pub forces: Vec<usize>,
 }
 
 /// The discrete symmetries of a model: reversal of time, each reflection, all at once, half turns of those `angles` (numbers
@@ -90,17 +97,21 @@ pub fn discrete(cx: &mut Context<'_>, model: &Model, angles: &[usize]) -> Result
 
 /// Decides one.
 pub fn examine(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<DiscreteAnswer, Stopped> {
-    let parts: Parts = signed_parts(model).concat();
-    let mut gap = Parts::new();
+    let mut gaps: Vec<Parts> = Vec::new();
     let mut driven = false;
-    for (part, c) in &parts {
-        let (image, input) = mapped(cx, model, kind, *part)?;
-        driven |= input;
-        if image != *part {
-            gap.push((image, c.clone()));
-            gap.push((*part, c.neg()));
+    for parts in &signed_parts(model) {
+        let mut gap = Parts::new();
+        for (part, c) in parts {
+            let (image, input) = mapped(cx, model, kind, *part)?;
+            driven |= input;
+            if image != *part {
+                gap.push((image, c.clone()));
+                gap.push((*part, c.neg()));
+            }
         }
+        gaps.push(gap);
     }
+    let gap: Parts = gaps.concat();
     let lagrangian = if driven {
         Holds::Undecided("an input drives it, and its own behaviour under t → −t is not known".into())
     } else {
@@ -113,17 +124,58 @@ pub fn examine(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<Di
             },
         }
     };
-    let rest = rest(cx, model, kind)?;
-    Ok(DiscreteAnswer { kind, lagrangian, rest })
+    let broken_by = if lagrangian == Holds::Broken { breakers(cx, model, &gaps)? } else { Vec::new() };
+    let all: Vec<usize> = (0..model.forces.len()).collect();
+    let rest = rest(cx, model, kind, &all)?;
+    let mut forces = Vec::new();
+    if rest.is_refuted() {
+        for k in all {
+            if !self::rest(cx, model, kind, &[k])?.is_proved() {
+                forces.push(k);
+            }
+        }
+    }
+    Ok(DiscreteAnswer { kind, lagrangian, rest, broken_by, forces })
 }
 
-fn rest(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<Verdict, Stopped> {
+/// A smallest set of terms to blame, the latest where there are several [see `blame`].
+fn breakers(cx: &mut Context<'_>, model: &Model, gaps: &[Parts]) -> Result<Vec<usize>, Stopped> {
+    let mut guilty = Vec::new();
+    for (t, gap) in gaps.iter().enumerate() {
+        if !gap.is_empty() && !euler_vanishes(cx, model, gap)?.is_proved() {
+            guilty.push(t);
+        }
+    }
+    if guilty.len() < 2 {
+        return Ok(guilty);
+    }
+    let mut rows: Vec<Vec<Expr>> = vec![Vec::new(); guilty.len()];
+    for q in &model.coordinates {
+        let mut lists = Vec::new();
+        for &t in &guilty {
+            lists.push(residual(cx, &gaps[t], q)?);
+        }
+        for (row, more) in rows.iter_mut().zip(aligned(cx.arena, q, &lists, cx.budget)?.1) {
+            row.extend(more);
+        }
+    }
+    let length = (guilty.len() + 4).div_ceil(rows[0].len().max(1)).max(2);
+    match cx.zero.residue_vectors(cx.arena, &rows, length, cx.budget) {
+        Ok(residues) => Ok(blame(&residues).culprits.into_iter().map(|k| guilty[k]).collect()),
+        Err(Reason::TooLarge) => Err(Stopped::TooLarge),
+        Err(Reason::Cancelled) => Err(Stopped::Cancelled),
+        Err(_) => Ok(guilty),
+    }
+}
+
+/// Whether some forces and all constraints are taken along.
+fn rest(cx: &mut Context<'_>, model: &Model, kind: Discrete, forces: &[usize]) -> Result<Verdict, Stopped> {
     let mut lists: Vec<Parts> = Vec::new();
     for (i, q) in model.coordinates.iter().enumerate() {
         let sign = if flips(kind, i) { Rational::ONE } else { Rational::MINUS_ONE };
         let mut forms = Vec::new();
-        for f in &model.forces {
-            forms.extend(generalised(cx, f, q)?);
+        for &f in forces {
+            forms.extend(generalised(cx, &model.forces[f], q)?);
         }
         for mut parts in questions(cx, q, &forms)? {
             let mut images = Parts::new();
@@ -144,7 +196,7 @@ fn rest(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<Verdict, 
         if !even && !cx.vanishes(&[(image, Rational::ONE), (c.f, Rational::ONE)]).is_proved() {
             // Other functions may have the same zeros.
             if verdict.is_proved() {
-                verdict = Verdict::Undecided(leastwise_algebra::Reason::Constraints);
+                verdict = Verdict::Undecided(Reason::Constraints);
             }
         }
     }
@@ -232,7 +284,17 @@ mod tests {
         let slope = f.arena.mul(k, x);
         f.term(TermKind::Potential, "slope", &[slope]);
         let want = [Holds::Exactly, Holds::Broken, Holds::Exactly, Holds::Broken];
-        check(&mut f, &[], &kinds.into_iter().zip(want).collect::<Vec<_>>());
+        let got = check(&mut f, &[], &kinds.into_iter().zip(want.clone()).collect::<Vec<_>>());
+        assert_eq!(got.iter().map(|a| a.broken_by.len()).collect::<Vec<_>>(), [0, 1, 0, 1]);
+        assert_eq!(got[1].broken_by, [2]);
+        // A second slope that takes the first away: neither breaks anything.
+        let back = f.arena.neg(slope);
+        f.term(TermKind::Potential, "counter", &[back]);
+        check(&mut f, &[], &kinds.map(|k| (k, Holds::Exactly)));
+        // Of three slopes two cancel each other, and the earlier ones are excused.
+        f.term(TermKind::Potential, "third", &[slope]);
+        let got = check(&mut f, &[], &kinds.into_iter().zip(want).collect::<Vec<_>>());
+        assert_eq!(got[1].broken_by, [4]);
     }
 
     #[test]

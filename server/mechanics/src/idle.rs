@@ -6,12 +6,12 @@
 
 use crate::blame::blame;
 use crate::context::{Context, Parts};
-use crate::forms::aligned;
+use crate::forms::{aligned, derivative};
 use crate::gauge::gauge_term;
-use crate::lagrange::{residual, signed_parts};
+use crate::lagrange::{depends_on_velocities, residual, signed_parts};
 use crate::model::Model;
 use crate::symmetry::euler_vanishes;
-use leastwise_algebra::{Arena, Expr, Reason, Stopped, Verdict};
+use leastwise_algebra::{Arena, Expr, Node, Rational, Reason, Role, Stopped, Verdict};
 
 /// Parts that are idle together and not in smaller groups.
 #[derive(Clone, PartialEq, Debug)]
@@ -27,12 +27,35 @@ pub struct Idle {
 /// More parts than this are looked at one by one, not in groups.
 const MAX_COMPARED: usize = 256;
 
-/// The idle parts, each group proved. Costs the residuals of all parts and the elimination of their residues.
+/// What a part is, as far as that decides whether it can be idle.
+#[derive(Clone, Copy, PartialEq, Eq, Debug)]
+pub(crate) enum Shape {
+    /// Free of coordinates and velocities.
+    Mute,
+    /// Free of velocities.
+    Position,
+    /// Linear in the velocities; whether its coefficients depend on time or on inputs.
+    Affine(bool),
+    /// Not linear in the velocities.
+    Busy,
+}
+
+/// The idle parts, each group proved. dF/dt = ∂F/∂t + Σ q̇ ∂F/∂q is linear in the velocities, so most parts are left out for
+/// their form, which is remembered; parts that are not linear in them are told where they cancel each other as they
+/// stand. Costs the residuals of the rest and the elimination of their residues.
 pub fn idle(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Idle>, Stopped> {
     let signed = signed_parts(model);
-    let places: Vec<(usize, usize)> =
+    let mut places: Vec<(usize, usize)> =
         signed.iter().enumerate().flat_map(|(t, p)| (0..p.len()).map(move |k| (t, k))).collect();
-    let flat: Parts = signed.concat();
+    let mut flat: Parts = signed.concat();
+    let chosen = chosen(cx, model, &flat)?;
+    if !chosen.contains(&true) {
+        return Ok(Vec::new());
+    }
+    let mut keep = chosen.iter();
+    places.retain(|_| *keep.next().unwrap_or(&false));
+    let mut keep = chosen.iter();
+    flat.retain(|_| *keep.next().unwrap_or(&false));
     let mut rows: Vec<Vec<Expr>> = vec![Vec::new(); flat.len()];
     for q in &model.coordinates {
         let mut lists = Vec::new();
@@ -49,8 +72,7 @@ pub fn idle(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Idle>, Stopped> {
     let mut groups: Vec<Vec<usize>> = Vec::new();
     let mut busy = Vec::new();
     for (k, row) in rows.iter().enumerate() {
-        let lists: Vec<Parts> =
-            row.iter().filter(|&&e| e != Arena::ZERO).map(|&e| vec![(e, leastwise_algebra::Rational::ONE)]).collect();
+        let lists: Vec<Parts> = row.iter().filter(|&&e| e != Arena::ZERO).map(|&e| vec![(e, Rational::ONE)]).collect();
         if cx.all_vanish(&lists).is_proved() { groups.push(vec![k]) } else { busy.push(k) }
     }
     if busy.len() <= MAX_COMPARED && busy.len() > 1 {
@@ -86,6 +108,73 @@ pub fn idle(cx: &mut Context<'_>, model: &Model) -> Result<Vec<Idle>, Stopped> {
     }
     out.sort_by(|a, b| a.parts.cmp(&b.parts));
     Ok(out)
+}
+
+/// Which parts may be idle, alone or with others.
+fn chosen(cx: &mut Context<'_>, model: &Model, flat: &Parts) -> Result<Vec<bool>, Stopped> {
+    let mut shapes = Vec::with_capacity(flat.len());
+    let mut alike: hashbrown::HashMap<Expr, Vec<(usize, Rational)>> = hashbrown::HashMap::new();
+    for (k, (e, c)) in flat.iter().enumerate() {
+        shapes.push(shape(cx, model, *e)?);
+        let (number, base) = cx.arena.split_coefficient(*e);
+        alike.entry(base).or_default().push((k, number.mul(c)));
+    }
+    // Without a clock in what is linear in the velocities F = U(q) + G(t), and forces from positions stay alone.
+    let driven = shapes.contains(&Shape::Affine(true));
+    let mut out: Vec<bool> = shapes
+        .iter()
+        .map(|s| match s {
+            Shape::Mute | Shape::Affine(_) => true,
+            Shape::Position => driven,
+            Shape::Busy => false,
+        })
+        .collect();
+    for group in alike.into_values().filter(|g| g.len() > 1) {
+        let sum = group.iter().fold(Rational::ZERO, |s, (_, c)| s.add(c));
+        if sum.is_zero() {
+            for (k, _) in group {
+                out[k] = true;
+            }
+        }
+    }
+    Ok(out)
+}
+
+fn shape(cx: &mut Context<'_>, model: &Model, e: Expr) -> Result<Shape, Stopped> {
+    if let Some(&known) = cx.memory.shapes.get(&e) {
+        return Ok(known);
+    }
+    let (mut placed, mut timely) = (false, false);
+    for a in cx.arena.atoms(e) {
+        let symbol = match *cx.arena.node(a) {
+            Node::Symbol(s) | Node::Jet(s, _) => s,
+            Node::Member { family, .. } => family,
+            _ => continue,
+        };
+        match cx.arena.info(symbol).role {
+            Role::Coordinate => placed = true,
+            Role::Time | Role::Input => timely = true,
+            _ => {}
+        }
+    }
+    let mut found = if !placed {
+        Shape::Mute
+    } else if depends_on_velocities(cx.arena, e) {
+        Shape::Affine(timely)
+    } else {
+        Shape::Position
+    };
+    if matches!(found, Shape::Affine(_)) {
+        for q in &model.coordinates {
+            let momentum = derivative(cx.arena, e, q, 1, cx.budget)?;
+            if momentum.iter().any(|f| depends_on_velocities(cx.arena, f.expr)) {
+                found = Shape::Busy;
+                break;
+            }
+        }
+    }
+    cx.memory.shapes.insert(e, found);
+    Ok(found)
 }
 
 #[cfg(test)]
@@ -144,6 +233,32 @@ mod tests {
         let want = f.arena.mul(a, s);
         let want = f.arena.neg(want);
         check(&mut f, &[(&[(2, 0)], Some(want))]);
+    }
+
+    #[test]
+    fn a_force_from_a_clock_is_seen_with_its_counterpart() {
+        // a x ẋ t is no derivative, ½ a x² beside it makes it d(½ a x² t)/dt; the other way round it does not.
+        let mut f = kepler();
+        let x = f.model.coordinates[0].clone();
+        let (x, v) = (x.jet(&mut f.arena, 0), x.jet(&mut f.arena, 1));
+        let (t, a) = (f.time(), f.parameter("a"));
+        let moving = f.arena.product(&[a, x, v, t]);
+        let at = f.half_square(a, x);
+        f.term(TermKind::Lagrangian, "moving", &[moving]);
+        f.term(TermKind::Lagrangian, "at", &[at]);
+        let want = f.arena.mul(at, t);
+        check(&mut f, &[(&[(2, 0), (3, 0)], Some(want))]);
+        f.model.terms[3].kind = TermKind::Potential;
+        check(&mut f, &[]);
+    }
+
+    #[test]
+    fn kinetic_parts_are_told_only_where_they_cancel() {
+        let mut f = kepler();
+        let part = f.model.terms[0].parts[0];
+        let less = f.arena.neg(part);
+        f.term(TermKind::Lagrangian, "less", &[less]);
+        check(&mut f, &[(&[(0, 0), (2, 0)], Some(Arena::ZERO))]);
     }
 
     #[test]

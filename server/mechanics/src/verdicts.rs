@@ -170,15 +170,10 @@ fn culprits(cx: &mut Context<'_>, model: &Model, rows: Vec<Vec<Expr>>) -> Result
         blamed.culprits.iter().flat_map(|&t| (0..spans[t].len()).map(move |p| (t, p))).collect();
     let vectors: Vec<Vec<Expr>> = pool.iter().map(|&(t, p)| rows[spans[t].start + p].clone()).collect();
     let inner = blamed_parts(cx, &vectors)?;
-    let out = blamed
-        .culprits
-        .iter()
-        .map(|&term| Culprit {
-            term,
-            parts: inner.iter().map(|&k| pool[k]).filter(|x| x.0 == term).map(|x| x.1).collect(),
-        })
-        .collect();
-    Ok((out, blamed.smallest))
+    // A term whose parts are cancelled by parts of others is not to blame.
+    let own = |term: usize| inner.culprits.iter().map(|&k| pool[k]).filter(|x| x.0 == term).map(|x| x.1).collect();
+    let out = blamed.culprits.iter().map(|&term| Culprit { term, parts: own(term) });
+    Ok((out.filter(|c| !c.parts.is_empty()).collect(), blamed.smallest && inner.smallest))
 }
 
 /// More summands than this are not compared with each other: all that do not vanish are blamed.
@@ -206,8 +201,9 @@ fn blamed(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Option<Blamed>
     }
 }
 
-fn blamed_parts(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Vec<usize>, Stopped> {
-    Ok(blamed(cx, summands)?.map_or_else(|| (0..summands.len()).collect(), |b| b.culprits))
+fn blamed_parts(cx: &mut Context<'_>, summands: &[Vec<Expr>]) -> Result<Blamed, Stopped> {
+    let all = || Blamed { culprits: (0..summands.len()).collect(), smallest: false };
+    Ok(blamed(cx, summands)?.unwrap_or_else(all))
 }
 
 /// Answers a symmetry claim.
@@ -247,7 +243,7 @@ pub fn answer_generator(
         }
         (culprit_list, smallest) = culprits(cx, model, rows)?;
     }
-    // V without the terms to blame is exact or a total derivative.
+    // V without the parts to blame is exact or a total derivative.
     // A term's variation that vanishes without looking so would only be in the way.
     let mut kept = Parts::new();
     let mut varied = Parts::new();
@@ -256,9 +252,10 @@ pub fn answer_generator(
         if v.is_empty() || symmetry.status != Status::Exact && cx.vanishes(&v).is_proved() {
             continue;
         }
-        if !culprit_list.iter().any(|c| c.term == t) {
-            kept.extend(v.iter().cloned());
-        }
+        let blamed = culprit_list.iter().find(|c| c.term == t);
+        let innocent = |p: usize| blamed.is_none_or(|c| !c.parts.contains(&p));
+        let whole = symmetry.variations[t].iter().enumerate();
+        kept.extend(whole.filter(|(p, v)| v.0 != Arena::ZERO && innocent(*p)).map(|(_, v)| v.clone()));
         varied.extend(v);
     }
     let mut gauge = None;

@@ -1,9 +1,10 @@
 //! Prints what this crate makes of units, for comparisons with other programs.
 //!
 //! Reads lines of units, and prints for each `p n k exponents`: a factor ± p^(1/n) · π^k and the exponents of m, kg, s, A,
-//! K, mol, cd; or `error: …`. `units constants` prints the constants, `units prefixes` the prefixes.
+//! K, mol, cd; or `error: …`. `units constants` prints the constants, `units prefixes` the prefixes,
+//! `units symbols` all symbols without prefixes.
 
-use leastwise_quantities::{Compound, Exact, constants, prefixes};
+use leastwise_quantities::{Compound, Exact, constants, prefixes, units};
 use std::io::{self, BufRead, Write};
 
 fn main() -> io::Result<()> {
@@ -14,6 +15,11 @@ fn main() -> io::Result<()> {
                 let uncertainty = c.uncertainty.as_ref().map_or("0".to_owned(), |u| u.to_string());
                 let fields = [c.symbol, c.codata, &parts(&c.value), &uncertainty, &c.unit.plain()];
                 writeln!(out, "{}", fields.join("\t"))?;
+            }
+        }
+        Some("symbols") => {
+            for u in units() {
+                writeln!(out, "{}", u.symbol)?;
             }
         }
         Some("prefixes") => {

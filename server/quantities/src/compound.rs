@@ -4,14 +4,16 @@ use crate::units::{Mark, Symbol, unit};
 use crate::{Dimension, Exact, Exponent};
 use leastwise_algebra::Rational;
 use std::fmt;
+use std::sync::OnceLock;
 
 /// A product of powers of units as it was written, with what it comes to.
 #[derive(Clone, Debug)]
 pub struct Compound {
     factors: Vec<(Symbol, Exponent)>,
     dimension: Dimension,
-    factor: Exact,
     angle: Exponent,
+    /// Told when it is asked for: a dimension is wanted at every keystroke, a factor only to be shown.
+    factor: OnceLock<Option<Exact>>,
 }
 
 /// Why a unit or a conversion cannot be told.
@@ -53,7 +55,12 @@ impl std::error::Error for UnitError {}
 impl Compound {
     /// From symbols and their exponents, as the grammar delivers them.
     pub fn new<S: AsRef<str>>(factors: &[(S, Exponent)]) -> Result<Compound, UnitError> {
-        Compound::build(factors, unit)
+        let known = factors.iter().enumerate().map(|(at, (symbol, exponent))| {
+            let symbol = symbol.as_ref();
+            let found = unit(symbol).ok_or_else(|| UnitError::Unknown { at, symbol: symbol.to_owned() })?;
+            Ok((found, *exponent))
+        });
+        Compound::of(known.collect::<Result<_, _>>()?).ok_or(UnitError::TooLarge)
     }
 
     /// From text, as it is printed: `N·m/s²`, `kg m^2`, `W/(m^2 K^4)`.
@@ -61,24 +68,11 @@ impl Compound {
         Compound::new(&crate::spelling::read(text).map_err(UnitError::Spelling)?)
     }
 
-    pub(crate) fn build<S: AsRef<str>>(
-        factors: &[(S, Exponent)],
-        lookup: impl Fn(&str) -> Option<Symbol>,
-    ) -> Result<Compound, UnitError> {
-        let known = factors.iter().enumerate().map(|(at, (symbol, exponent))| {
-            let symbol = symbol.as_ref();
-            let found = lookup(symbol).ok_or_else(|| UnitError::Unknown { at, symbol: symbol.to_owned() })?;
-            Ok((found, *exponent))
-        });
-        Compound::of(known.collect::<Result<_, _>>()?).ok_or(UnitError::TooLarge)
-    }
-
     fn of(factors: Vec<(Symbol, Exponent)>) -> Option<Compound> {
         let mut out = Compound::one();
         for (symbol, exponent) in &factors {
             out.dimension = out.dimension.times(symbol.unit.dimension.pow(*exponent)?)?;
             out.angle = out.angle.plus(symbol.unit.angle.times(*exponent)?)?;
-            out.factor = out.factor.times(&symbol.factor().pow(*exponent)?)?;
         }
         out.factors = factors;
         Some(out)
@@ -86,7 +80,7 @@ impl Compound {
 
     /// The unit one.
     pub fn one() -> Compound {
-        Compound { factors: Vec::new(), dimension: Dimension::ONE, factor: Exact::ONE, angle: Exponent::ZERO }
+        Compound { factors: Vec::new(), dimension: Dimension::ONE, angle: Exponent::ZERO, factor: OnceLock::new() }
     }
 
     /// The units and their exponents as written.
@@ -104,9 +98,15 @@ impl Compound {
         self.angle
     }
 
-    /// How many coherent SI units it is; an error for a level.
+    /// How many coherent SI units it is; an error for a level, or where it has too many digits.
     pub fn factor(&self) -> Result<&Exact, UnitError> {
-        if self.has(Mark::Level) { Err(UnitError::Level) } else { Ok(&self.factor) }
+        if self.has(Mark::Level) {
+            return Err(UnitError::Level);
+        }
+        let factor = self.factor.get_or_init(|| {
+            self.factors.iter().try_fold(Exact::ONE, |product, (s, e)| product.times(&s.factor().pow(*e)?))
+        });
+        factor.as_ref().ok_or(UnitError::TooLarge)
     }
 
     /// Whether one of its units has this mark.
@@ -130,18 +130,18 @@ impl Compound {
 
     /// Whether one of its units is measured: the dalton.
     pub fn is_measured(&self) -> bool {
-        self.factors.iter().any(|(s, e)| s.unit.uncertainty.is_some() && !e.is_zero())
+        self.factors.iter().any(|(s, e)| s.unit.uncertainty().is_some() && !e.is_zero())
     }
 
     /// The standard uncertainty of the factor, to first order; `None` where it is exact or irrational. All measured units
     /// are multiples of the dalton, so that their uncertainties add up with their signs.
     pub fn uncertainty(&self) -> Option<Rational> {
         let mut relative = Rational::ZERO;
-        for (s, e) in self.factors.iter().filter(|(s, _)| s.unit.uncertainty.is_some()) {
-            let own = s.unit.uncertainty.as_ref()?.div(s.unit.factor.to_rational()?)?;
+        for (s, e) in self.factors.iter().filter(|(s, _)| s.unit.uncertainty().is_some()) {
+            let own = s.unit.uncertainty()?.div(s.unit.factor().to_rational()?)?;
             relative = relative.add(&own.mul(&e.to_rational()));
         }
-        (!relative.is_zero()).then(|| Some(relative.abs().mul(self.factor.to_rational()?)))?
+        (!relative.is_zero()).then(|| Some(relative.abs().mul(self.factor().ok()?.to_rational()?)))?
     }
 
     /// The product.
@@ -223,8 +223,9 @@ mod tests {
             assert_eq!(Compound::read(text).map_err(|e| e.to_string()).err().as_deref(), Some(message));
         };
         check("N/ft", "`ft` is not known as a unit");
-        check("km^2147483647", "the unit's exponents or digits are too large");
         check("m^2147483647 m", "the unit's exponents or digits are too large");
+        let large = Compound::read("km^2147483647").expect("its dimension is known");
+        assert_eq!(large.factor(), Err(UnitError::TooLarge));
         let unknown = Compound::new(&[("m", Exponent::ONE), ("foo", Exponent::ONE)]).map(|_| ());
         assert_eq!(unknown, Err(UnitError::Unknown { at: 1, symbol: "foo".to_owned() }));
     }
@@ -251,7 +252,7 @@ mod tests {
         let factor = (0..units().len(), 0..prefixes().len() + 1, -4i64..5, 1i64..3);
         proptest::collection::vec(factor, 0..4).prop_filter_map("levels are not converted", |list| {
             let factors = list.into_iter().filter_map(|(u, p, n, d)| {
-                let (unit, prefix) = (units()[u], prefixes().get(p));
+                let (unit, prefix) = (&units()[u], prefixes().get(p));
                 let prefix = prefix.filter(|p| unit.prefixes.take(p)).map_or("", |p| p.symbol);
                 Some((format!("{prefix}{}", unit.symbol), Exponent::new(n, d)?)).filter(|f| !f.1.is_zero())
             });

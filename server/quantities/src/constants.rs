@@ -33,6 +33,22 @@ impl Constant {
     pub fn is_exact(&self) -> bool {
         self.uncertainty.is_none()
     }
+
+    /// The value with its unit as a parameter of a model takes it, `6.67430e-11 m^3/(kg s^2)`, and whether it is rounded:
+    /// no value of a model has a π or endless digits.
+    pub fn written(&self) -> (String, bool) {
+        let digits = match (self.given.split_once('('), self.value.decimal()) {
+            // The last zero of a measured value says how well it is known.
+            (Some((head, tail)), _) => Some(format!("{head}{}", tail.split_once(')').map_or("", |(_, e)| e))),
+            (None, decimal) => decimal.filter(|d| d.len() <= 24),
+        };
+        let rounded = digits.is_none();
+        let number = digits.unwrap_or_else(|| self.value.rounded(10));
+        let unit = self.unit.plain();
+        // Behind a number a quotient begins with its sign.
+        let unit = unit.strip_prefix("1/").map_or(unit.clone(), |below| format!("/{below}"));
+        (if self.unit.factors().is_empty() { number } else { format!("{number} {unit}") }, rounded)
+    }
 }
 
 struct Constants {
@@ -55,7 +71,7 @@ fn read(text: &'static str) -> Result<Constants, String> {
             "" => None,
             kind => Some(quantity(kind).ok_or_else(|| about(&format!("quantity `{kind}`")))?),
         };
-        if quantity.is_some_and(|q| q.dimension() != unit.dimension()) {
+        if quantity.is_some_and(|q| q.dimension != unit.dimension()) {
             return Err(about(&format!("{unit} is no unit of {kind}")));
         }
         if out.symbols.insert(symbol, out.list.len()).is_some() {
@@ -104,6 +120,21 @@ mod tests {
             ħ.value.times(&Exact::PI).and_then(|x| x.times(&Exact::integer(2))),
             Some(constant("h").expect("in the table").value.clone())
         );
+    }
+
+    #[test]
+    fn written_as_a_value() {
+        let check = |symbol: &str, text: &str, rounded: bool| {
+            assert_eq!(constant(symbol).map(Constant::written), Some((text.to_owned(), rounded)));
+        };
+        check("G", "6.67430e-11 m^3/(kg s^2)", false);
+        check("c", "299792458 m/s", false);
+        check("ħ", "1.054571818e-34 J s", true);
+        check("R", "8.31446261815324 J/(mol K)", false);
+        check("α", "7.2973525643e-3", false);
+        check("R_inf", "10973731.568157 /m", false);
+        check("g_e", "-2.00231930436092", false);
+        check("N_A", "6.02214076e23 /mol", false);
     }
 
     #[test]

@@ -140,6 +140,16 @@ impl Exact {
         self.signum() as f64 * size * pi
     }
 
+    /// Rounded to so many significant digits, at most 15: `0.0698132`, `1.05457182e-34`.
+    pub fn rounded(&self, digits: usize) -> String {
+        let text = format!("{:.*e}", digits.clamp(1, 15) - 1, self.to_f64());
+        let Some((mantissa, exponent)) = text.split_once('e') else { return text };
+        let (sign, mantissa) = mantissa.strip_prefix('-').map_or(("", mantissa), |m| ("-", m));
+        let digits = mantissa.replacen('.', "", 1);
+        let exponent: i64 = exponent.parse().unwrap_or(0);
+        format!("{sign}{}", decimal_text(&digits, exponent))
+    }
+
     /// The same as an expression, with π as itself.
     pub fn expr(&self, arena: &mut Arena) -> Expr {
         let mut out = arena.number(self.power.abs());
@@ -170,18 +180,18 @@ impl Exact {
             places += 1;
         }
         let sign = if num.starts_with('-') { "-" } else { "" };
-        Some(format!("{sign}{}", decimal_text(&numerator.to_string(), places)))
+        let digits = numerator.to_string();
+        let first = digits.len() as i64 - 1 - places as i64;
+        Some(format!("{sign}{}", decimal_text(&digits, first)))
     }
 }
 
-/// Digits with so many places behind the point, as a person writes it.
-fn decimal_text(digits: &str, places: usize) -> String {
+/// Digits as a person writes the number, `first` being the exponent of ten of the first digit.
+fn decimal_text(digits: &str, first: i64) -> String {
     let kept = digits.trim_end_matches('0');
     if kept.is_empty() {
         return "0".to_owned();
     }
-    // The exponent of the first digit.
-    let first = digits.len() as i64 - 1 - places as i64;
     match first {
         0..16 => {
             let whole = first as usize + 1;
@@ -312,6 +322,18 @@ mod tests {
         check(1, 640_000_000, Some("1.5625e-9"));
         check(10_000_000_000_000_000, 1, Some("1e16"));
         assert_eq!(Exact::PI.decimal(), None);
+    }
+
+    #[test]
+    fn rounded_to_digits() {
+        let check = |x: Exact, digits, shown: &str| assert_eq!(x.rounded(digits), shown);
+        check(Exact::PI.over(&r(45, 1)).expect("not zero"), 6, "0.0698132");
+        check(Exact::PI, 3, "3.14");
+        check(r(-2, 3), 4, "-0.6667");
+        check(r(1_999_999, 1), 3, "2000000");
+        check(r(1, 3_000_000_000), 2, "3.3e-10");
+        check(Exact::ZERO, 5, "0");
+        check(Exact::PI, 99, "3.14159265358979");
     }
 
     #[test]

@@ -22,13 +22,13 @@ const NAMES: &[&str] = &["force", "energy", "power", "charge", "voltage"];
 ///
 /// Without a hint the reciprocal of a time is `1/s`, not Hz, unless it is known to be an angle's rate (`rad/s`).
 pub fn familiar(dimension: Dimension, angle: Exponent, hint: Option<&str>) -> Familiar {
-    let hinted = hint.and_then(quantity).filter(|q| q.dimension() == dimension);
+    let hinted = hint.and_then(quantity).filter(|q| q.dimension == dimension);
     let first =
-        |angle: Exponent| quantities().iter().find(|q| q.first && q.dimension() == dimension && q.angle() == angle);
+        |angle: Exponent| quantities().iter().find(|q| q.first && q.dimension == dimension && q.angle() == angle);
     // An angle is of dimension one: where no quantity has it, it is left out.
     let found = hinted.or_else(|| first(angle)).or_else(|| first(Exponent::ZERO));
     let unit = match found {
-        Some(q) => q.usual.clone(),
+        Some(q) => q.usual().clone(),
         None => compose_unit(dimension),
     };
     Familiar { quantity: found, unit }
@@ -39,7 +39,7 @@ pub fn in_words(dimension: Dimension, angle: Exponent, hint: Option<&str>) -> St
     match familiar(dimension, angle, hint).quantity {
         Some(q) => q.words(),
         None => {
-            let parts = NAMES.iter().filter_map(|n| Some((*n, quantity(n)?.dimension())));
+            let parts = NAMES.iter().filter_map(|n| Some((*n, quantity(n)?.dimension)));
             let product = shortest(dimension, parts, Base::name);
             spell(&product, |name| name.replace('_', " "))
         }

@@ -1,8 +1,7 @@
 //! The prefixes of the SI.
 
-use crate::{Exact, table};
+use crate::Exact;
 use leastwise_algebra::Rational;
-use std::sync::LazyLock;
 
 /// A prefix: a power of ten before a unit.
 #[derive(PartialEq, Eq, Debug)]
@@ -23,15 +22,8 @@ impl Prefix {
     }
 }
 
-static PREFIXES: LazyLock<Vec<Prefix>> = LazyLock::new(|| {
-    let rows = table::rows(include_str!("../tables/prefixes.tsv")).unwrap_or_else(|e| panic!("prefixes.tsv: {e}"));
-    let read = |[symbol, name, exponent]: [&'static str; 3]| Prefix {
-        symbol,
-        name,
-        exponent: exponent.parse().unwrap_or_else(|_| panic!("prefixes.tsv: {name}: `{exponent}` is no number")),
-    };
-    rows.into_iter().map(read).collect()
-});
+// `PREFIXES`, from `tables/prefixes.tsv`.
+include!(concat!(env!("OUT_DIR"), "/prefixes.rs"));
 
 /// All prefixes, from the largest to the smallest.
 pub fn prefixes() -> &'static [Prefix] {

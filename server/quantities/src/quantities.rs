@@ -1,8 +1,7 @@
 //! Quantities with their names, units and items in ISO 80000 (the table is `tables/quantities.tsv`).
 
-use crate::{Compound, Dimension, Exponent, table};
-use std::collections::HashMap;
-use std::sync::LazyLock;
+use crate::{Compound, Dimension, Exponent};
+use std::sync::OnceLock;
 
 /// A kind of quantity that a declaration may name.
 #[derive(Debug)]
@@ -11,25 +10,41 @@ pub struct Quantity {
     pub name: &'static str,
     /// Its item in ISO 80000, or in IEC 80000 for part 6: `4-7`. Empty where it has none.
     pub item: &'static str,
-    /// The coherent unit that the standard gives.
-    pub unit: Compound,
-    /// The unit in which it is usually given.
-    pub usual: Compound,
+    /// Its dimension.
+    pub dimension: Dimension,
     /// Whether a bare dimension is taken for this one.
     pub first: bool,
+    /// Whether it is in everyday use, and offered where names are listed.
+    pub everyday: bool,
     /// What it is, in a few words.
     pub description: &'static str,
+    /// The two units as the table spells them.
+    spelled: [&'static str; 2],
+    unit: OnceLock<Compound>,
+    usual: OnceLock<Compound>,
 }
 
+// `QUANTITIES` and `NAMES`, their names with their places, from `tables/quantities.tsv`.
+include!(concat!(env!("OUT_DIR"), "/quantities.rs"));
+
 impl Quantity {
-    /// Its dimension.
-    pub fn dimension(&self) -> Dimension {
-        self.unit.dimension()
+    /// The coherent unit that the standard gives.
+    pub fn unit(&self) -> &Compound {
+        self.unit.get_or_init(|| self.read(self.spelled[0]))
+    }
+
+    /// The unit in which it is usually given.
+    pub fn usual(&self) -> &Compound {
+        self.usual.get_or_init(|| self.read(self.spelled[1]))
+    }
+
+    fn read(&self, text: &str) -> Compound {
+        Compound::read(text).unwrap_or_else(|e| panic!("quantities.tsv: {}: {e}", self.name))
     }
 
     /// The power of the radian in it: 1 for an angle or angular velocity.
     pub fn angle(&self) -> Exponent {
-        self.unit.angle()
+        self.unit().angle()
     }
 
     /// The name in words: `moment of inertia`.
@@ -38,40 +53,15 @@ impl Quantity {
     }
 }
 
-struct Quantities {
-    list: Vec<Quantity>,
-    names: HashMap<&'static str, usize>,
-}
-
-static QUANTITIES: LazyLock<Quantities> =
-    LazyLock::new(|| read(include_str!("../tables/quantities.tsv")).unwrap_or_else(|e| panic!("quantities.tsv: {e}")));
-
-fn read(text: &'static str) -> Result<Quantities, String> {
-    let mut out = Quantities { list: Vec::new(), names: HashMap::new() };
-    for [name, item, unit, usual, dimension, first, description] in table::rows(text)? {
-        let about = |e: &dyn std::fmt::Display| format!("{name}: {e}");
-        let unit = Compound::read(unit).map_err(|e| about(&e))?;
-        let usual = if usual.is_empty() { Ok(unit.clone()) } else { Compound::read(usual) }.map_err(|e| about(&e))?;
-        if unit.dimension().to_string() != dimension || usual.dimension() != unit.dimension() {
-            return Err(about(&format!("{unit}, {usual} and {dimension} are not the same dimension")));
-        }
-        if out.names.insert(name, out.list.len()).is_some() {
-            return Err(about(&"stands twice"));
-        }
-        out.list.push(Quantity { name, item, unit, usual, first: first == "*", description });
-    }
-    Ok(out)
-}
-
 /// The quantity of a name.
 pub fn quantity(name: &str) -> Option<&'static Quantity> {
-    let table = &*QUANTITIES;
-    table.list.get(*table.names.get(name)?)
+    let at = NAMES.binary_search_by(|(n, _)| (*n).cmp(name)).ok()?;
+    Some(&QUANTITIES[NAMES[at].1])
 }
 
 /// All quantities: those of ISO 80000-3, then mechanics, heat, electromagnetism, and others.
 pub fn quantities() -> &'static [Quantity] {
-    &QUANTITIES.list
+    &QUANTITIES
 }
 
 #[cfg(test)]
@@ -81,14 +71,15 @@ mod tests {
     #[test]
     fn found_by_name() {
         let q = quantity("moment_of_inertia").expect("in the table");
-        assert_eq!((q.item, q.unit.to_string().as_str(), q.words().as_str()), ("4-7", "kg·m²", "moment of inertia"));
+        assert_eq!((q.item, q.unit().to_string().as_str(), q.words().as_str()), ("4-7", "kg·m²", "moment of inertia"));
         assert!(quantity("lenght").is_none());
     }
 
     #[test]
     fn units_of_the_standard_are_coherent() {
         for q in quantities() {
-            assert!(q.unit.factor().is_ok_and(|f| f.is_one()), "{} in {}", q.name, q.unit);
+            assert!(q.unit().factor().is_ok_and(|f| f.is_one()), "{} in {}", q.name, q.unit());
+            assert_eq!((q.unit().dimension(), q.usual().dimension()), (q.dimension, q.dimension), "{}", q.name);
         }
     }
 
@@ -108,7 +99,7 @@ mod tests {
     fn one_name_is_the_first_of_its_dimension_and_angle() {
         let first: Vec<&Quantity> = quantities().iter().filter(|q| q.first).collect();
         for (k, q) in first.iter().enumerate() {
-            let same = first[..k].iter().find(|p| (p.dimension(), p.angle()) == (q.dimension(), q.angle()));
+            let same = first[..k].iter().find(|p| (p.dimension, p.angle()) == (q.dimension, q.angle()));
             assert!(same.is_none(), "{} and {}", q.name, same.map_or("", |p| p.name));
         }
     }

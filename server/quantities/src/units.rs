@@ -1,10 +1,9 @@
 //! Units with their symbols, prefixes and exact factors (SI Brochure, 9th ed.; the table is `tables/units.tsv`).
 
-use crate::{Base, Compound, Dimension, Exact, Exponent, Prefix, prefixes, spelling, table};
+use crate::{Compound, Dimension, Exact, Exponent, Prefix, prefixes, table};
 use leastwise_algebra::Rational;
-use std::collections::HashMap;
 use std::fmt;
-use std::sync::LazyLock;
+use std::sync::OnceLock;
 
 /// Where a unit belongs in the SI Brochure, 9th ed.
 #[derive(Clone, Copy, PartialEq, Eq, Debug)]
@@ -38,7 +37,7 @@ pub enum Prefixes {
     /// All.
     All,
     /// Those with these symbols; none where there are none.
-    Only(Vec<&'static str>),
+    Only(&'static [&'static str]),
 }
 
 impl Prefixes {
@@ -52,12 +51,12 @@ impl Prefixes {
 }
 
 /// A unit without prefix.
-#[derive(PartialEq, Eq, Debug)]
+#[derive(Debug)]
 pub struct Unit {
     /// As the SI Brochure writes it: `Ω`.
     pub symbol: &'static str,
     /// Other spellings of the symbol.
-    pub aliases: Vec<&'static str>,
+    pub aliases: &'static [&'static str],
     /// `ohm`.
     pub name: &'static str,
     /// Where it belongs.
@@ -66,18 +65,16 @@ pub struct Unit {
     pub dimension: Dimension,
     /// The power of the radian in it. An angle is of dimension one, and yet told apart.
     pub angle: Exponent,
-    /// How many coherent SI units it is.
-    pub factor: Exact,
-    /// The standard uncertainty of the factor, where it is measured.
-    pub uncertainty: Option<Rational>,
     /// The prefixes that it takes.
     pub prefixes: Prefixes,
     /// What has to be minded.
     pub mark: Mark,
-    /// How it is defined, `60 min`; empty for base units.
-    pub definition: String,
     /// Where the factor comes from, or another remark; may be empty.
     pub remark: &'static str,
+    /// The number of the table, and what it is multiplied with.
+    given: &'static str,
+    of: &'static str,
+    value: OnceLock<Value>,
 }
 
 /// A unit with its prefix, or without one: `kg`, `mm`, `Hz`.
@@ -118,123 +115,93 @@ impl Symbol {
     pub fn factor(&self) -> Exact {
         match self.prefix {
             // A prefix and a factor of the table are far from the bounds.
-            Some(p) => p.factor().times(&self.unit.factor).unwrap_or(Exact::ONE),
-            None => self.unit.factor.clone(),
+            Some(p) => p.factor().times(self.unit.factor()).unwrap_or(Exact::ONE),
+            None => self.unit.factor().clone(),
         }
     }
 }
 
-struct Units {
-    list: Vec<&'static Unit>,
-    /// Symbols and aliases with what they stand for.
-    symbols: HashMap<&'static str, (&'static Unit, &'static str)>,
-}
+// `UNITS` and `SYMBOLS`, their symbols and aliases with their places, from `tables/units.tsv`.
+include!(concat!(env!("OUT_DIR"), "/units.rs"));
 
-static UNITS: LazyLock<Units> =
-    LazyLock::new(|| read(include_str!("../tables/units.tsv")).unwrap_or_else(|e| panic!("units.tsv: {e}")));
-
-fn read(text: &'static str) -> Result<Units, String> {
-    let mut units = Units { list: Vec::new(), symbols: HashMap::new() };
-    for [symbol, aliases, name, group, factor, of, taken, mark, remark] in table::rows(text)? {
-        let about = |e: String| format!("{symbol}: {e}");
-        let (factor, uncertainty) = table::value(factor, |_| None).map_err(about)?;
-        let definition = Definition::read(&units, &factor, uncertainty, of).map_err(about)?;
-        let unit: &'static Unit = Box::leak(Box::new(Unit {
-            symbol,
-            aliases: aliases.split_whitespace().collect(),
-            name,
-            group: match group {
-                "base" => Group::Base,
-                "derived" => Group::Derived,
-                "accepted" => Group::Accepted,
-                "other" => Group::Other,
-                _ => return Err(about(format!("group `{group}`"))),
-            },
-            dimension: definition.dimension,
-            angle: if symbol == "rad" { Exponent::ONE } else { definition.angle },
-            factor: definition.factor,
-            uncertainty: definition.uncertainty,
-            prefixes: match taken {
-                "all" => Prefixes::All,
-                "none" => Prefixes::Only(Vec::new()),
-                list => Prefixes::Only(list.split_whitespace().collect()),
-            },
-            mark: match mark {
-                "" => Mark::None,
-                "cycle" => Mark::Cycle,
-                "level" => Mark::Level,
-                "difference" => Mark::Difference,
-                _ => return Err(about(format!("mark `{mark}`"))),
-            },
-            definition: definition.text,
-            remark,
-        }));
-        units.list.push(unit);
-        for spelled in std::iter::once(symbol).chain(unit.aliases.iter().copied()) {
-            if units.symbols.insert(spelled, (unit, spelled)).is_some() {
-                return Err(about("stands twice".to_owned()));
-            }
-        }
-    }
-    Ok(units)
-}
-
-/// What a row says of factor and dimension.
-struct Definition {
-    dimension: Dimension,
-    angle: Exponent,
+/// What a row says of the factor.
+#[derive(Debug)]
+struct Value {
     factor: Exact,
     uncertainty: Option<Rational>,
-    text: String,
+    definition: String,
 }
 
-impl Definition {
-    fn read(units: &Units, number: &Exact, uncertainty: Option<Rational>, of: &str) -> Result<Definition, String> {
-        if let Some(base) = Base::ALL.into_iter().find(|b| format!("[{}]", b.symbol()) == of) {
-            let (dimension, factor) = (Dimension::of(base), number.clone());
-            return Ok(Definition { dimension, angle: Exponent::ZERO, factor, uncertainty, text: String::new() });
+impl Unit {
+    /// How many coherent SI units it is.
+    pub fn factor(&self) -> &Exact {
+        &self.value().factor
+    }
+
+    /// The standard uncertainty of the factor, where it is measured.
+    pub fn uncertainty(&self) -> Option<&Rational> {
+        self.value().uncertainty.as_ref()
+    }
+
+    /// How it is defined, `60 min`; empty for base units.
+    pub fn definition(&self) -> &str {
+        &self.value().definition
+    }
+
+    fn value(&self) -> &Value {
+        self.value.get_or_init(|| self.read().unwrap_or_else(|e| panic!("units.tsv: {}: {e}", self.symbol)))
+    }
+
+    fn read(&self) -> Result<Value, String> {
+        let (number, uncertainty) = table::value(self.given, |_| None)?;
+        if self.of.starts_with('[') {
+            return Ok(Value { factor: number, uncertainty, definition: String::new() });
         }
-        let factors = spelling::read(of)?;
-        let compound = Compound::build(&factors, |s| units.lookup(s)).map_err(|e| e.to_string())?;
-        let scale = compound.factor().map_err(|e| e.to_string())?;
+        let of = Compound::read(self.of).map_err(|e| e.to_string())?;
+        if of.dimension() != self.dimension {
+            return Err(format!("{of} is not of dimension {}", self.dimension));
+        }
+        let scale = of.factor().map_err(|e| e.to_string())?;
         let uncertainty = match (uncertainty, scale.to_rational()) {
             (Some(u), Some(scale)) => Some(u.mul(scale)),
             (Some(_), None) => return Err("a measured multiple of an irrational unit".to_owned()),
             // A multiple of a measured unit is as uncertain.
-            (None, _) => compound.uncertainty().zip(number.to_rational()).map(|(u, n)| u.mul(n)),
+            (None, _) => of.uncertainty().zip(number.to_rational()).map(|(u, n)| u.mul(n)),
         };
         let shown = number.decimal().unwrap_or_else(|| number.to_string());
-        let text = match (number.is_one(), compound.factors().is_empty()) {
+        let definition = match (number.is_one(), of.factors().is_empty()) {
             (_, true) => shown,
-            (true, _) => compound.to_string(),
-            _ => format!("{shown} {compound}"),
+            (true, _) => of.to_string(),
+            _ => format!("{shown} {of}"),
         };
-        let factor = scale.times(number).ok_or("too large")?;
-        Ok(Definition { dimension: compound.dimension(), angle: compound.angle(), factor, uncertainty, text })
+        Ok(Value { factor: scale.times(&number).ok_or("too large")?, uncertainty, definition })
     }
 }
 
-impl Units {
-    fn lookup(&self, symbol: &str) -> Option<Symbol> {
-        let plain = |s: &str| self.symbols.get(s).copied();
-        if let Some((unit, written)) = plain(symbol) {
-            return Some(Symbol { prefix: None, unit, written });
-        }
-        prefixes().iter().find_map(|prefix| {
-            let (unit, written) = plain(symbol.strip_prefix(prefix.symbol)?)?;
-            unit.prefixes.take(prefix).then_some(Symbol { prefix: Some(prefix), unit, written })
-        })
+fn plain(symbol: &str) -> Option<(&'static Unit, &'static str)> {
+    let at = SYMBOLS.binary_search_by(|(s, _)| (*s).cmp(symbol)).ok()?;
+    let (written, row) = SYMBOLS[at];
+    Some((&UNITS[row], written))
+}
+
+fn lookup(symbol: &str) -> Option<Symbol> {
+    if let Some((unit, written)) = plain(symbol) {
+        return Some(Symbol { prefix: None, unit, written });
     }
+    prefixes().iter().find_map(|prefix| {
+        let (unit, written) = plain(symbol.strip_prefix(prefix.symbol)?)?;
+        unit.prefixes.take(prefix).then_some(Symbol { prefix: Some(prefix), unit, written })
+    })
 }
 
 /// The unit that a symbol stands for, with or without a prefix. Look-alikes are the same letter: the ohm sign and Ω, the
 /// micro sign and μ, the kelvin sign and K.
 pub fn unit(symbol: &str) -> Option<Symbol> {
     if symbol.is_ascii() {
-        return UNITS.lookup(symbol);
+        return lookup(symbol);
     }
     let folded: String = symbol.chars().map(fold).collect();
-    UNITS.lookup(&folded)
+    lookup(&folded)
 }
 
 fn fold(c: char) -> char {
@@ -247,13 +214,14 @@ fn fold(c: char) -> char {
 }
 
 /// All units without prefixes, in the order of the table.
-pub fn units() -> &'static [&'static Unit] {
-    &UNITS.list
+pub fn units() -> &'static [Unit] {
+    &UNITS
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use std::collections::HashMap;
 
     #[track_caller]
     fn check(symbol: &str, name: &str, factor: &str, dimension: &str) {
@@ -323,16 +291,26 @@ mod tests {
 
     #[test]
     fn measured_and_marked() {
-        let measured: Vec<&str> = units().iter().filter(|u| u.uncertainty.is_some()).map(|u| u.symbol).collect();
+        let measured: Vec<&str> = units().iter().filter(|u| u.uncertainty().is_some()).map(|u| u.symbol).collect();
         assert_eq!(measured, ["Da", "u"]);
         let marked = |mark| units().iter().filter(|u| u.mark == mark).map(|u| u.symbol).collect::<Vec<_>>();
         assert_eq!(marked(Mark::Cycle), ["Hz", "Bq"]);
         assert_eq!(marked(Mark::Level), ["Np", "B"]);
         let angles: Vec<&str> = units().iter().filter(|u| u.angle == Exponent::ONE).map(|u| u.symbol).collect();
         assert_eq!(angles, ["rad", "°", "′", "″", "r"]);
-        assert_eq!(unit("h").map(|s| s.unit.definition.as_str()), Some("60 min"));
-        assert_eq!(unit("W").map(|s| s.unit.definition.as_str()), Some("J/s"));
-        assert_eq!(unit("%").map(|s| s.unit.definition.as_str()), Some("0.01"));
+        assert_eq!(unit("h").map(|s| s.unit.definition()), Some("60 min"));
+        assert_eq!(unit("W").map(|s| s.unit.definition()), Some("J/s"));
+        assert_eq!(unit("%").map(|s| s.unit.definition()), Some("0.01"));
+    }
+
+    #[test]
+    fn dimensions_and_angles_are_those_of_the_definitions() {
+        for u in units().iter().filter(|u| !u.of.starts_with('[')) {
+            let of = Compound::read(u.of).unwrap_or_else(|e| panic!("{}: {e}", u.symbol));
+            let angle = if u.symbol == "rad" { Exponent::ONE } else { of.angle() };
+            assert_eq!((u.dimension, u.angle), (of.dimension(), angle), "{}", u.symbol);
+            assert!(u.factor().signum() > 0, "{}", u.symbol);
+        }
     }
 
     #[test]

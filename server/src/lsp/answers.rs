@@ -46,12 +46,13 @@ fn file_name(view: &View<'_>) -> String {
 /// A hover.
 pub fn hover(view: &mut View<'_>, derived: &Derived, position: lsp::Position) -> Result<Option<lsp::Hover>> {
     let offset = view.positions.offset(position);
-    let Some(found) = view.session.hover(view.checked, derived, offset) else { return Ok(None) };
+    let Some(mut said) = view.session.hover(view.checked, derived, offset) else { return Ok(None) };
+    said.blocks.extend(found::hover(view, offset));
     let lines = view.shared.settings().hover_lines;
-    let content = convert::hover(&found, view.shared.abilities().markdown_hover, lines, &file_name(view));
+    let content = convert::hover(&said, view.shared.abilities().markdown_hover, lines, &file_name(view));
     Ok(Some(lsp::Hover {
         contents: lsp::HoverContents::Markup(content),
-        range: Some(view.positions.range(&found.range)),
+        range: Some(view.positions.range(&said.range)),
     }))
 }
 

@@ -67,7 +67,7 @@ pub fn diagnostic(f: &Finding, positions: &Positions, abilities: &Abilities, uri
             message: r.message.clone(),
         })
         .collect();
-    let unnecessary = abilities.unnecessary && f.code == "unused-name";
+    let unnecessary = abilities.unnecessary && matches!(f.code, "unused-name" | "idle-term");
     lsp::Diagnostic {
         range: positions.range(&f.range),
         severity: Some(severity),

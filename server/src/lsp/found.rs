@@ -4,6 +4,7 @@ use super::convert;
 use super::searches::{Found, more};
 use super::server::WRITE_FOUND;
 use super::worker::View;
+use leastwise_analysis::features::hover::Block;
 use leastwise_analysis::features::inlay::Inlay;
 use leastwise_analysis::search::{SearchRow, insertion};
 use std::ops::Range;
@@ -20,6 +21,21 @@ const SINGLE: usize = 12;
 pub fn current(view: &View<'_>) -> Option<Arc<Found>> {
     let found = super::documents::lock(&view.document.found).clone()?;
     (found.change == view.change && view.shared.settings().search_run && view.checked.complete).then_some(found)
+}
+
+/// What a hover on the system's name says of it.
+pub fn hover(view: &View<'_>, offset: usize) -> Vec<Block> {
+    let place = view.checked.system_range();
+    let Some(found) = current(view).filter(|_| place.start <= offset && offset <= place.end) else { return Vec::new() };
+    let rows: Vec<&SearchRow> = found.report.news().collect();
+    if rows.is_empty() {
+        return Vec::new();
+    }
+    let line = |row: &&SearchRow| format!("{} = {}", row.name, row.charge.text);
+    vec![
+        Block::Prose(format!("A search found {}, which nobody claimed:", more(rows.len()))),
+        Block::Formulas(rows.iter().map(line).collect()),
+    ]
 }
 
 /// The hint behind the last term.

@@ -27,7 +27,7 @@ use std::sync::Arc;
 use std::sync::atomic::Ordering;
 use tower_lsp::LspService;
 
-/// Where this environment variable is `1`, tests can have the server panic.
+/// Where this environment variable is `1`, tests can have the server panic, and searches take as long as they like.
 const TEST_REQUESTS: &str = "LEASTWISE_TEST_REQUESTS";
 
 /// Talks until the client ends the conversation. The exit status: 0 after `shutdown` and `exit`, else 1.
@@ -63,7 +63,8 @@ async fn talk() -> u8 {
     .custom_method("window/workDoneProgress/cancel", Backend::cancel_progress);
     let tests = std::env::var_os(TEST_REQUESTS).is_some_and(|v| v == "1");
     let (service, socket) = if tests {
-        builder.custom_method("leastwise/testPanic", Backend::test_panic).finish()
+        let builder = builder.custom_method("leastwise/testPanic", Backend::test_panic);
+        builder.custom_method("leastwise/testHold", Backend::test_hold).finish()
     } else {
         builder.finish()
     };

@@ -44,6 +44,8 @@ pub struct Searches {
     /// The searches that the client is told of, by their tokens, with what ends them.
     told: Mutex<HashMap<String, Arc<AtomicBool>>>,
     tokens: AtomicU64,
+    /// Raised by tests, it keeps searches from going on.
+    pub hold: AtomicBool,
 }
 
 /// Where orders are taken from.
@@ -52,7 +54,10 @@ pub struct Orders(mpsc::Receiver<Order>);
 /// A new desk for orders.
 pub fn searches() -> (Searches, Orders) {
     let (orders, receiver) = mpsc::channel();
-    (Searches { orders, told: Mutex::default(), tokens: AtomicU64::new(0) }, Orders(receiver))
+    (
+        Searches { orders, told: Mutex::default(), tokens: AtomicU64::new(0), hold: AtomicBool::new(false) },
+        Orders(receiver),
+    )
 }
 
 /// How a search goes on.
@@ -147,6 +152,9 @@ fn look(order: &Order, shared: &Arc<Shared>) {
         let overlay = Overlay::new(shared.documents.clone());
         let mut tell = |stage| drop(teller.send(Told::Stage(stage)));
         let done = catch_unwind(AssertUnwindSafe(|| {
+            while shared.searches.hold.load(Ordering::Relaxed) && !flag.load(Ordering::Relaxed) {
+                thread::sleep(Duration::from_millis(1));
+            }
             search(&document.path, &snapshot.text, &overlay, degree, &flag, &mut tell)
         }));
         settle(done, &flag, &teller, order, shared);

@@ -115,6 +115,12 @@ impl Backend {
         }
     }
 
+    /// Only with the environment variable that tests set: searches wait for the next `false`.
+    pub async fn test_hold(&self, params: [bool; 1]) -> Result<()> {
+        self.shared.searches.hold.store(params[0], Ordering::Relaxed);
+        Ok(())
+    }
+
     /// Only with the environment variable that tests set.
     pub async fn test_panic(&self, params: TextDocumentPositionParams) -> Result<()> {
         let document = self.document(&params.text_document.uri)?;

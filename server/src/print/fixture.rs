@@ -152,6 +152,7 @@ pub fn sheet() -> Sheet {
             range: 0..7,
         }],
         found: None,
+        insights: Default::default(),
     }
 }
 

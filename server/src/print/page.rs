@@ -1,6 +1,7 @@
 //! `sheet` for a terminal, set like a page: sections, formulas aligned at their equals signs, no boxes.
 
 mod found;
+pub mod insights;
 
 use crate::lines::Lines;
 use crate::output::Page;
@@ -42,6 +43,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding], source: &Lines<'_>, page: Page
     p.symmetries(&sheet.symmetries);
     p.constants(sheet);
     p.found(sheet.found.as_ref());
+    p.insights(&sheet.insights);
     p.findings(findings, source);
     p.out
 }

@@ -1,6 +1,7 @@
 //! `sheet --as json`: everything derived, for programs. The fields are documented with the model language.
 
 mod found;
+mod insights;
 
 use crate::lines::Lines;
 use crate::print::findings_json;
@@ -25,6 +26,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding], lines: &Lines<'_>) -> Value {
     object.insert("symmetries".into(), sheet.symmetries.iter().map(|s| symmetry(s, lines)).collect());
     object.insert("conserved".into(), sheet.conserved.iter().map(|c| conserved(c, lines)).collect());
     object.insert("found".into(), found::found(sheet.found.as_ref()));
+    insights::insights(&mut object, &sheet.insights, lines);
     object.insert("findings".into(), findings_json::list(findings, lines));
     Value::Object(object)
 }

@@ -226,6 +226,13 @@ impl Residues {
         Some(out)
     }
 
+    /// The parts that are, at these points, combinations of those before them with numbers as coefficients. There must be
+    /// more points than parts.
+    pub fn dependent(&self) -> Vec<usize> {
+        let (_, pivots) = self.columns_reduced();
+        (0..self.len()).filter(|k| !pivots.contains(k)).collect()
+    }
+
     /// The parts as columns, in reduced echelon form, with the pivots.
     fn columns_reduced(&self) -> (Vec<Vec<Element>>, Vec<usize>) {
         let columns = self.rows.first().map_or(0, Vec::len);

@@ -21,6 +21,7 @@ pub struct Action {
 /// Mends of these drop what the writer has said or claimed: they are offered, and never taken without a choice.
 const CHOICES: &[&str] = &[
     "declared-twice",
+    "idle-term",
     "include-circle",
     "missing-operand",
     "named-twice",

@@ -58,7 +58,12 @@ pub(super) fn named(
     derived: &Derived,
     item: &Item,
 ) -> (String, Option<String>) {
-    let Origin::Symmetry { generator, gauge } = &item.origin else { return (INTEGRAL.to_string(), None) };
+    let Origin::Symmetry { generator, gauge } = &item.origin else {
+        return match super::hidden::named(maker, checked, item.charge) {
+            Some((word, title)) => (word, Some(title)),
+            None => (INTEGRAL.to_string(), None),
+        };
+    };
     let word = word(maker, checked, generator);
     let answer = SymmetryAnswer {
         symmetry: Symmetry { generator: generator.clone(), variations: Vec::new(), status: Status::Exact },
@@ -154,13 +159,14 @@ fn word(maker: &mut Maker<'_>, checked: &Checked, g: &Generator) -> String {
 }
 
 /// `translation_x`, `rotation_xy`, `boost_x_3`.
-fn suffixed(kind: &str, labels: &[String]) -> String {
+pub(super) fn suffixed(kind: &str, labels: &[String]) -> String {
     let clean = |label: &String| label.replace(['[', ']', ','], "_").trim_matches('_').to_string();
     let labels: Vec<String> = labels.iter().map(clean).collect();
     let short = labels.iter().all(|l| l.chars().count() == 1);
     format!("{kind}_{}", labels.join(if short { "" } else { "_" }))
 }
 
+/// Whether an expression is made from parameters and numbers.
 fn is_constant(maker: &Maker<'_>, e: Expr) -> bool {
     maker.arena.atoms(e).into_iter().all(|a| match maker.arena.node(a) {
         Node::Symbol(s) => maker.arena.info(*s).role == Role::Parameter,

@@ -1,5 +1,6 @@
 //! Every rule about names and formulas, once.
 
+mod blame;
 mod formulas;
 mod history;
 mod incremental;

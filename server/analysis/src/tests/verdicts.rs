@@ -207,6 +207,21 @@ symmetry shift: x -> x + ε
 }
 
 #[test]
+fn a_gauge_term_that_winds_around_an_axis() {
+    // The flux line of strength b z along the third axis: F is the polar angle, in Cartesian coordinates.
+    judge(
+        "
+coordinate x, y, z
+parameter m, b
+kinetic    body = 1/2 m (x'^2 + y'^2 + z'^2)
+lagrangian flux = b z (x y' - y x')/(x^2 + y^2)
+symmetry lift: z -> z + ε
+^^^^^^^^^^^^^^^^^^^^^^^^^ gauge-multivalued: `lift` holds up to d/dt of b atan2(y, x), which changes on a way around the axis x = 0, y = 0
+",
+    );
+}
+
+#[test]
 fn a_disc_that_rolls_upright_keeps_its_two_rates() {
     // [GPS §1.3 for the constraints]: spin and steering rates are constant, though steering leaves the constraints.
     judge(

@@ -166,7 +166,7 @@ fn apply(cx: &mut Context<'_>, m: &[Vec<Expr>], v: &[Expr]) -> Result<Vec<Expr>,
 }
 
 /// The inverse by elimination on the shared graph, unexpanded; `None` where no pivot is proved not to vanish.
-fn invert(cx: &mut Context<'_>, m: Vec<Vec<Expr>>) -> Result<Option<Vec<Vec<Expr>>>, Stopped> {
+pub(crate) fn invert(cx: &mut Context<'_>, m: Vec<Vec<Expr>>) -> Result<Option<Vec<Vec<Expr>>>, Stopped> {
     let n = m.len();
     if let [a, b] = m.as_slice() {
         // The adjugate prints better.

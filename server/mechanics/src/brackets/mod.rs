@@ -23,9 +23,10 @@ pub use naming::{Condition, Named, Sign};
 use crate::context::Context;
 use crate::lagrange::jet_order;
 use crate::mass::mass_rows;
-use crate::model::Model;
+use crate::model::{Model, time};
 use crate::regularity::{MassVerdict, mass_verdict};
 use closure::{Found, Values, coefficients, search, value};
+pub(crate) use flow::invert;
 use flow::{Flow, Phase};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 
@@ -189,7 +190,17 @@ pub fn charge_algebra(
             }
         }
     }
-    let named = naming::named(cx, &table.basis, &table.central, &brackets)?;
+    let mut named = naming::named(cx, &table.basis, &table.central, &brackets)?;
+    // Charges with explicit time do not commute with the energy: time translation, dilation and expansion form what is
+    // called sl(2,ℝ), the same algebra as so(2,1) [de Alfaro, Fubini, Furlan 1976].
+    let clock = time(cx.arena);
+    let clock = cx.arena.sym(clock);
+    if table.basis.iter().any(|&k| cx.arena.atoms(table.values[k]).contains(&clock)) {
+        for n in &mut named {
+            n.name = n.name.take().map(|name| name.replace("so(2,1)", "sl(2,ℝ)"));
+            n.kind = n.kind.replace("so(2,1)", "sl(2,ℝ)");
+        }
+    }
     let forced = !model.forces.is_empty();
     let Table { basis, central, .. } = table;
     Ok(Ok(ChargeAlgebra { basis, dependent, brackets, central, central_constants, named, forced }))

@@ -179,7 +179,10 @@ fn dilation_and_expansion_of_the_plane() {
     check(&mut f, &list, &got, (4, 7), d);
     assert!(got.closed());
     assert_eq!(got.named[0].name, None);
-    assert_eq!(got.named[0].kind, "semidirect sum of so(2,1) and a solvable radical of dimension 6");
+    assert_eq!(got.named[0].kind, "semidirect sum of sl(2,ℝ) and a solvable radical of dimension 6");
+    // Energy, dilation and expansion alone: the conformal algebra of the clock, not called so(2,1) as that of orbits is.
+    let alone = examine(&mut f, &[list[4], ("dilation", d), ("expansion", k)]);
+    assert_eq!(names(&alone), [Some("sl(2,ℝ)")]);
 }
 
 #[test]

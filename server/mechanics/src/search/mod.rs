@@ -4,8 +4,20 @@
 //! system for its coefficients; see `relations`. Each item is confirmed by the zero test before it is told. An empty
 //! answer says only that there is none other in this ansatz.
 
+mod hidden;
+mod integrals;
+mod kernel;
+mod killing;
+mod kinetic;
+mod points;
+mod primitive;
+
+pub use hidden::{Hidden, hidden};
+
+use crate::context::Context;
+use crate::model::Model;
 use crate::symmetry::Generator;
-use leastwise_algebra::Expr;
+use leastwise_algebra::{Expr, Stopped};
 
 /// How far the search goes.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -61,4 +73,26 @@ pub enum Stage {
     Integrals,
     /// Items are confirmed: this many of that many.
     Confirming(usize, usize),
+}
+
+/// Searches for constants of the motion. `known` are charges that need no search: what is a combination of them is marked.
+/// Costs a few linear systems in the unknown coefficients of the ansatz, each at most 240; their number grows with the
+/// degree and the coordinates. Errors: [`Stopped`] where the budget is spent or the search is cancelled.
+pub fn search(
+    cx: &mut Context<'_>,
+    model: &Model,
+    scope: &Scope,
+    known: &[Expr],
+    report: &mut dyn FnMut(Stage),
+) -> Result<Found, Stopped> {
+    report(Stage::Symmetries);
+    let (mut items, mut incomplete) = points::points(cx, model, scope, report)?;
+    if scope.quadratic {
+        report(Stage::Integrals);
+        let (more, why) = integrals::integrals(cx, model, scope, &items)?;
+        items.extend(more);
+        incomplete = incomplete.or(why);
+    }
+    points::mark_known(cx, &mut items, known)?;
+    Ok(Found { items, incomplete })
 }

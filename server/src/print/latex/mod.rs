@@ -2,6 +2,7 @@
 
 mod breaking;
 mod found;
+mod insights;
 mod spelling;
 
 use crate::print::letters::Letters;
@@ -66,6 +67,7 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding]) -> String {
     a.symmetries(&sheet.symmetries, &Letters::of(sheet));
     a.constants(sheet);
     a.found(sheet.found.as_ref(), &Letters::of(sheet));
+    a.insights(&sheet.insights);
     a.out.push_str("\\end{document}\n");
     a.out
 }

@@ -18,6 +18,11 @@ pub fn escape(text: &str) -> String {
             let _ = write!(out, "\\ensuremath{{{accent}{{{base}}}}}");
             continue;
         }
+        // The decomposed sign of what is not equal.
+        if c == '=' && chars.next_if_eq(&'\u{338}').is_some() {
+            out.push_str("\\ensuremath{\\ne}");
+            continue;
+        }
         match c {
             '`' if code || quotes > 1 => {
                 out.push_str(if code { "}" } else { "\\texttt{" });
@@ -187,7 +192,19 @@ fn sign(c: char) -> Option<&'static str> {
         '₇' => "_7",
         '₈' => "_8",
         '₉' => "_9",
+        '⁰' => "^0",
+        '⁴' => "^4",
+        '⁵' => "^5",
+        '⁶' => "^6",
+        '⁷' => "^7",
+        '⁸' => "^8",
+        '⁹' => "^9",
+        '⁻' => "^-",
         'ħ' => "\\hbar",
+        'ℝ' => "\\mathbf{R}",
+        '⊕' => "\\oplus",
+        '⟨' => "\\langle",
+        '⟩' => "\\rangle",
         'ℱ' => "\\mathcal{F}",
         _ => return None,
     })
@@ -219,6 +236,7 @@ mod tests {
         assert_eq!(escape("a_b & 50 % of $θ$"), "a\\_b \\& 50 \\% of \\$\\ensuremath{\\theta}\\$");
         assert_eq!(escape("ẋ₁, θ̈, ä"), "\\ensuremath{\\dot{x}}\\ensuremath{_1}, \\ensuremath{\\ddot{\\theta}}, ä");
         assert_eq!(escape("`a_b` and `"), "\\texttt{a\\_b} and \\textquoteleft{}");
+        assert_eq!(escape("q ≠ 0"), "q \\ensuremath{\\ne} 0");
         assert_eq!(escape("\\input{x}"), "\\textbackslash{}input\\{x\\}");
     }
 }

@@ -2,6 +2,7 @@
 
 use super::charge::{Charge, charge, energy_name};
 use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, with_kind, witness};
+use crate::insights::{self, BracketRow, BracketStatus};
 use crate::report::Answer;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
 use leastwise_mechanics::context::Parts;
@@ -104,6 +105,9 @@ pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
     if !a.smallest {
         w.prose("The set of terms to blame is minimal, perhaps not a smallest one.");
     }
+    if checked.complete && answer == Answer::Yes {
+        brackets(w, name);
+    }
     match a.respects_constraints {
         Some(true) => w.prose("The flow preserves the constraints."),
         Some(false) => w.prose("The flow leaves the surface of the constraints."),
@@ -112,6 +116,36 @@ pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
         }
         None => {}
     }
+}
+
+/// The brackets of a claim's charge with the others.
+fn brackets(w: &mut Writer<'_, '_>, claim: &str) {
+    const SHOWN: usize = 4;
+    let Some(report) = insights::algebra(w.maker, w.checked, w.derived) else { return };
+    let (Some(own), Ok(algebra)) = (report.of_symmetry(claim), &report.algebra) else { return };
+    if report.basis().count() < 2 {
+        return;
+    }
+    let rows: Vec<&BracketRow> =
+        algebra.brackets.iter().filter(|b| b.left == own.name || b.right == own.name).collect();
+    if rows.is_empty() {
+        return w.prose("Its Poisson brackets with the other charges vanish.");
+    }
+    let closed = |b: &&&BracketRow| b.status == BracketStatus::Closed && short(&b.value.text).is_some();
+    let mut lines: Vec<String> = rows
+        .iter()
+        .filter(closed)
+        .take(SHOWN)
+        .map(|b| format!("{{{}, {}}} = {}", b.left, b.right, b.value.text))
+        .collect();
+    if lines.is_empty() {
+        return;
+    }
+    if rows.len() > lines.len() {
+        lines.push(format!("and {} more", rows.len() - lines.len()));
+    }
+    w.prose("Poisson brackets that do not vanish:");
+    w.formulas(lines);
 }
 
 /// The witness of the presented charge's rate has its own sign only where the sign is +.

@@ -3,6 +3,7 @@
 use super::writer::{FormRow, List, SHOWN, Writer, counted, forms, labelled, quoted, short};
 use crate::checked::SymbolRow;
 use crate::features::place::{Place, formulas_at};
+use crate::insights::{self, Holds};
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 use leastwise_grammar::tree::*;
 use leastwise_mechanics::lagrange::{self, signed_parts};
@@ -66,7 +67,25 @@ pub(super) fn coordinate(w: &mut Writer<'_, '_>, row: &SymbolRow, place: &Place<
     let items: Vec<usize> = (0..checked.items.len()).filter(named).collect();
     super::name::assumptions(w, &row.name, &items);
     moved_by(w, &of);
+    if let ([i], true) = (&of[..], checked.complete) {
+        parity(w, *i);
+    }
     w.missing();
+}
+
+/// Says whether the coordinate can be reflected.
+fn parity(w: &mut Writer<'_, '_>, i: usize) {
+    if w.checked.model.coordinates[i].members.is_some() {
+        return;
+    }
+    let Some(row) = insights::even(w.maker, w.checked, i) else { return };
+    match row.holds {
+        Holds::Exactly => w.prose(format!("L is even under {}.", row.map.words())),
+        Holds::UpToDerivative(_) => {
+            w.prose(format!("L is even under {}, up to a total time derivative.", row.map.words()));
+        }
+        Holds::Broken(_) | Holds::BrokenByForces(_) | Holds::Undecided(_) => {}
+    }
 }
 
 /// The number of the member that stands at the place.

@@ -2,6 +2,7 @@
 
 use super::charge::energy_name;
 use super::writer::{SHOWN, Writer, counted, labelled, plural, quoted};
+use crate::insights;
 use leastwise_algebra::{Arena, Expr, Verdict};
 use leastwise_mechanics::energy::is_total_energy;
 use leastwise_mechanics::lagrange;
@@ -59,9 +60,21 @@ pub(super) fn system(w: &mut Writer<'_, '_>) {
     w.formulas(lines);
     if checked.complete {
         conserved(w, name);
+        nature(w);
     }
     if checked.complete && matches!(answers.mass, MassVerdict::Singular(_)) {
         w.prose("The mass matrix is singular: the kinetic terms do not determine all accelerations.");
+    }
+}
+
+/// What the charges form, and whether time can be reversed.
+fn nature(w: &mut Writer<'_, '_>) {
+    let report = insights::algebra(w.maker, w.checked, w.derived).filter(|a| a.basis().count() > 1);
+    if let Some(sentence) = report.and_then(|a| a.algebra.as_ref().ok()?.sentence()) {
+        w.prose(sentence);
+    }
+    if let Some(row) = insights::reversal(w.maker, w.checked) {
+        w.prose(format!("Time reversal: {}.", row.words()));
     }
 }
 
