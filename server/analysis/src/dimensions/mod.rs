@@ -3,6 +3,7 @@
 //! Each item asks something of its formulas, in unknowns of its own numbering; that is kept as long as neither it nor
 //! what it names changes. All that is asked makes one system: see `leastwise_quantities::unify`.
 
+mod derived;
 mod items;
 mod size;
 #[cfg(test)]
@@ -15,7 +16,9 @@ mod walk;
 
 use crate::database::Reading;
 use crate::finding::LocalFinding;
+use crate::report::Measured;
 use crate::scope::{Parsed, SymbolKind};
+use leastwise_algebra::{Arena, Expr};
 use leastwise_grammar::tree::*;
 use leastwise_quantities::unify::{Demand, Form, Solution, Unknown, solve};
 use leastwise_quantities::{Dimension, Exponent};
@@ -318,6 +321,14 @@ impl Dimensions {
         let known = self.units.project(form.known()?);
         let unit = leastwise_quantities::familiar(known, Exponent::ZERO, hint).unit;
         (!known.is_one()).then(|| unit.to_string())
+    }
+
+    /// The quantity and unit of a derived expression: `energy` and `J`. Nothing where they are not known.
+    pub fn measured(&self, arena: &Arena, e: Expr, hint: Option<&str>) -> Option<Measured> {
+        let known = derived::dimension(self, arena, e)?;
+        let familiar = leastwise_quantities::familiar(known, Exponent::ZERO, hint);
+        let unit = if known.is_one() { "1".to_owned() } else { familiar.unit.to_string() };
+        Some(Measured { quantity: familiar.quantity.map(|q| q.name.to_owned()), unit })
     }
 
     fn name_of(&self, unknown: Unknown) -> Option<String> {
