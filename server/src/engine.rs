@@ -45,7 +45,9 @@ impl Engine {
     }
 
     /// What a search finds in a model; nothing where it has errors.
-    pub fn search(&self, path: &str, text: &str, degree: u32) -> Option<SearchReport> {
+    pub fn search(&mut self, path: &str, text: &str, degree: u32) -> Option<SearchReport> {
+        // The search has a session of its own: two would take twice the memory.
+        self.session = Session::new();
         search::search(path, text, &self.disk, degree, &Arc::default(), &mut |_| ())
     }
 }

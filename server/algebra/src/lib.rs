@@ -19,4 +19,4 @@ pub use display::{DisplayOptions, Layout, Printed, textbook, verbatim};
 pub use function::Function;
 pub use integrate::{antiderivative, primitive, without_common_factor};
 pub use rational::Rational;
-pub use zero::{Assumptions, Motion, Reason, Relation, Residues, Sign, Verdict, Witness, ZeroTest};
+pub use zero::{Assumptions, Motion, Rate, Reason, Relation, Residues, Sign, Verdict, Witness, ZeroTest};

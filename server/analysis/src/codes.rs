@@ -74,7 +74,7 @@ codes! {
     SYMMETRY_BROKEN = "symmetry-broken", "an expected symmetry that a term breaks";
     BROKEN_SYMMETRY_HOLDS = "broken-symmetry-holds", "a symmetry declared broken whose charge is conserved";
     GAUGE_NOT_FOUND = "gauge-not-found", "a symmetry up to a total time derivative of which no closed form was found";
-    GAUGE_MULTIVALUED = "gauge-multivalued", "a symmetry whose gauge term, and so its charge, changes when an angle makes a full turn";
+    GAUGE_MULTIVALUED = "gauge-multivalued", "a symmetry whose gauge term, and so its charge, changes when an angle makes a full turn, or on a way around an axis";
     CHARGE_TAKEN = "charge-taken", "a symmetry of the Lagrangian whose charge a force or damping changes";
     NOT_THE_IDENTITY = "not-the-identity", "a transformation that is not the identity at ε = 0";
     TRANSFORMATION_OF_VELOCITIES = "transformation-of-velocities", "a transformation whose image contains velocities";

@@ -1,5 +1,6 @@
 //! From syntax trees to a model of mechanics, and findings about names and formulas.
 
+mod amends;
 mod assemble;
 pub mod checked;
 pub mod codes;

@@ -353,6 +353,12 @@ pub(crate) const MENDED: &[(&str, &str, &str, &str)] = &[
         "Declare θ as `twist`: it counts its turns",
         "coordinate θ: twist\nkinetic θ'^2\npotential θ^2\n",
     ),
+    (
+        "not-conserved",
+        "coordinate z\nparameter m, g\nkinetic 1/2 m z'^2\npotential m g z\nconserved fall = z' - g t\n",
+        "Change the sign of `g t`",
+        "coordinate z\nparameter m, g\nkinetic 1/2 m z'^2\npotential m g z\nconserved fall = z' + g t\n",
+    ),
 ];
 
 /// Codes without a mend: why there is none, a text with such a finding, and what to do.
@@ -496,9 +502,6 @@ pub(crate) const WITHOUT: &[(&str, &str, &str, &str)] = &[
     ("single-member", "the whole family, or another model, is the writer's to say",
         "",
         "transform the whole family: `x[i] -> x[i] + ε`"),
-    ("not-conserved", "the claim or the model may be wrong",
-        "coordinate x\nparameter m, k\nkinetic 1/2 m x'^2\npotential 1/2 k x^2\nconserved p = m x'\n",
-        "look at the rate: it shows what is missing from the claim, or the sign that is wrong"),
     ("undecided", "it tells a limit of the program",
         "",
         "nothing was guessed: the reason says what stood in the way"),

@@ -203,6 +203,8 @@ pub struct ConservedRow {
     pub holds: Answer,
     /// Its rate, accelerations as they stand; 0 where it is conserved.
     pub rate: Formula,
+    /// What symmetry a conserved one comes from, in words; empty where that is not told.
+    pub origin: String,
     /// Where the claim stands: byte range in the file.
     pub range: Range<usize>,
 }

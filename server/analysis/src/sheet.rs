@@ -139,7 +139,7 @@ impl Maker<'_> {
             }
         }
         let mut conserved = Vec::new();
-        for (claim, answer) in checked.conserved().iter().zip(&derived.conserved) {
+        for (k, (claim, answer)) in checked.conserved().iter().zip(&derived.conserved).enumerate() {
             let formula = self.print(claim.expr);
             let (holds, rate) = match answer {
                 Ok(c) => {
@@ -159,7 +159,9 @@ impl Maker<'_> {
                 }
                 Err(s) => (Answer::Undecided(s.to_string()), self.print(Arena::UNDEFINED)),
             };
-            conserved.push(ConservedRow { name: claim.name.clone(), formula, holds, rate, range: claim.range.clone() });
+            let origin = crate::amends::origin(self, checked, derived, k);
+            let (name, range) = (claim.name.clone(), claim.range.clone());
+            conserved.push(ConservedRow { name, formula, holds, rate, origin, range });
         }
         Ok(Sheet {
             system: checked.system_name(),

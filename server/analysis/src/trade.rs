@@ -1,10 +1,14 @@
 //! What transformations do, and what breaks them, in the words of the trade: each word only where it is proved to fit.
 
 use crate::checked::Checked;
+use crate::derive::total;
 use crate::sheet::Maker;
 use crate::verdicts::one_line;
 use leastwise_algebra::{Arena, Expr};
+use leastwise_mechanics::context::Parts;
+use leastwise_mechanics::gauge::{Winding, multivalued};
 use leastwise_mechanics::symmetry::Generator;
+use leastwise_mechanics::verdicts::SymmetryAnswer;
 
 /// What a flow does.
 #[derive(Clone, PartialEq, Eq, Debug)]
@@ -17,8 +21,9 @@ pub(crate) enum Flow {
     Together(Vec<usize>),
     /// A shift of one angle.
     About(usize),
-    /// Lengths turned pair by pair, (x, y) by (−y, x): the name of the axis, where it has its usual one.
-    Turn(Option<char>),
+    /// Lengths turned pair by pair, (x, y) by (−y, x): the name of the axis, where it has its usual one, and whether the
+    /// turn is left-handed about it.
+    Turn(Option<(char, bool)>),
     /// A shift of one coordinate of another quantity.
     Coordinate(usize),
     /// Anything else.
@@ -53,7 +58,13 @@ pub(crate) fn flow(arena: &mut Arena, checked: &Checked, g: &Generator) -> Flow 
     let mut axes = Vec::new();
     for &i in &moved {
         let Some(j) = partner(arena, checked, g, &moved, i) else { return Flow::Other };
-        axes.push(axis(&name(arena, checked, i), &name(arena, checked, j)));
+        // ηⁱ = −qʲ turns from i to j.
+        let from_i = {
+            let minus_y = checked.model().coordinates[j].jet(arena, 0);
+            arena.neg(minus_y) == g.eta[i]
+        };
+        let (a, b) = if from_i { (i, j) } else { (j, i) };
+        axes.push(axis(&name(arena, checked, a), &name(arena, checked, b)));
     }
     let first = axes[0];
     Flow::Turn(if axes.iter().all(|a| *a == first) { first } else { None })
@@ -71,19 +82,33 @@ fn partner(arena: &mut Arena, checked: &Checked, g: &Generator, moved: &[usize],
     })
 }
 
-/// The name of a coordinate without its number.
-fn name(arena: &Arena, checked: &Checked, i: usize) -> String {
+/// The name of a coordinate and its number.
+fn name(arena: &Arena, checked: &Checked, i: usize) -> (String, String) {
     let label = checked.model().coordinates[i].label(arena);
-    label.chars().take_while(|c| *c != '[' && !('₀'..='₉').contains(c)).collect()
+    let letters = label.find(|c: char| c == '[' || ('₀'..='₉').contains(&c)).unwrap_or(label.len());
+    (label[..letters].to_string(), label[letters..].to_string())
 }
 
-/// The third axis of space.
-fn axis(a: &str, b: &str) -> Option<char> {
-    ["x", "y", "z"].iter().find(|c| {
-        let others: Vec<&&str> = ["x", "y", "z"].iter().filter(|o| o != c).collect();
-        others.contains(&&a) && others.contains(&&b) && a != b
-    })?;
-    ['x', 'y', 'z'].into_iter().find(|c| a != c.to_string() && b != c.to_string())
+/// The third axis of space for a turn from one axis to another, and whether it is left-handed; the numbers of both
+/// coordinates must be the same, else they belong to two bodies.
+fn axis(from: &(String, String), to: &(String, String)) -> Option<(char, bool)> {
+    const AXES: [char; 3] = ['x', 'y', 'z'];
+    let place = |name: &str| AXES.iter().position(|c| c.to_string() == name);
+    let (a, b) = (place(&from.0)?, place(&to.0)?);
+    (a != b && from.1 == to.1).then(|| (AXES[3 - a - b], (a + 1) % 3 != b))
+}
+
+/// The variation of the parts to blame for a broken symmetry.
+pub(crate) fn blamed_share(maker: &mut Maker<'_>, a: &SymmetryAnswer) -> Expr {
+    let mut parts = Parts::new();
+    for c in &a.culprits {
+        let of = &a.symmetry.variations[c.term];
+        match c.parts.is_empty() {
+            true => parts.extend(of.iter().cloned()),
+            false => parts.extend(c.parts.iter().filter_map(|&p| of.get(p).cloned())),
+        }
+    }
+    total(maker.arena, &parts)
 }
 
 /// What a variation of L is: `torque -k a sin φ about the axis of φ`.
@@ -96,6 +121,9 @@ pub(crate) fn effect(maker: &mut Maker<'_>, checked: &Checked, g: &Generator, va
         let power = maker.arena.neg(variation);
         return format!("power {}", shown(maker, power));
     }
+    // The torque about an axis is told in the right-handed sense.
+    let left_handed = matches!(flow, Flow::Turn(Some((_, true))));
+    let variation = if left_handed { maker.arena.neg(variation) } else { variation };
     let share = shown(maker, variation);
     match flow {
         Flow::Along(i) => format!("force {share} along {}", label(maker, i)),
@@ -104,9 +132,27 @@ pub(crate) fn effect(maker: &mut Maker<'_>, checked: &Checked, g: &Generator, va
             format!("force {share} along {}", names.join(" + "))
         }
         Flow::About(i) => format!("torque {share} about the axis of {}", label(maker, i)),
-        Flow::Turn(Some(axis)) => format!("torque {share} about the {axis} axis"),
+        Flow::Turn(Some((axis, _))) => format!("torque {share} about the {axis} axis"),
         Flow::Turn(None) => format!("torque {share} about the origin"),
         Flow::Coordinate(i) => format!("generalised force {share} along {}", label(maker, i)),
         Flow::Delay | Flow::Other => format!("L changes at the rate {share}"),
     }
+}
+
+/// Where a gauge term is not single-valued: `when φ turns by 2π`, `on a way around the axis x = 0, y = 0`.
+pub(crate) fn windings(maker: &mut Maker<'_>, checked: &Checked, gauge: Expr) -> Vec<String> {
+    let model = checked.model();
+    let angles: Vec<usize> = checked.angles().collect();
+    let Ok(list) = multivalued(&mut maker.cx(), model, gauge, &angles) else { return Vec::new() };
+    let mut out = Vec::new();
+    for winding in list {
+        out.push(match winding {
+            Winding::Turn(i) => format!("when {} turns by 2π", model.coordinates[i].label(maker.arena)),
+            Winding::Axis(y, x) => {
+                let (x, y) = (maker.prints.text(maker.arena, x), maker.prints.text(maker.arena, y));
+                format!("on a way around the axis {} = 0, {} = 0", one_line(&x), one_line(&y))
+            }
+        });
+    }
+    out
 }

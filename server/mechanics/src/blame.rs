@@ -2,8 +2,9 @@
 //!
 //! Each summand is a vector of residues of what should vanish, at points of a finite field. The summands are split into
 //! the components of linear dependence of these vectors: the total splits along them, so a smallest set is the union of
-//! the components' smallest sets. Within a component subsets are tried up to size four, latest first; beyond that a set
-//! that is minimal by inclusion is found, and it is said.
+//! the components' smallest sets. Within a component subsets are tried by size, latest first, as long as their number
+//! allows: all sizes in components of up to 14, size four in components of up to 27. Beyond that groups of up to four that
+//! cancel are taken out of the set, and it is said that a smaller one may exist.
 
 use leastwise_algebra::Residues;
 
@@ -12,11 +13,11 @@ use leastwise_algebra::Residues;
 pub struct Blamed {
     /// Positions of the summands to blame, ascending.
     pub culprits: Vec<usize>,
-    /// Whether no smaller set does; otherwise it is minimal by inclusion.
+    /// Whether no smaller set does, proved; otherwise no group of up to four of it cancels, as far as was looked.
     pub smallest: bool,
 }
 
-/// The largest size of a component's set that is searched through.
+/// The largest group that is looked for in what is too large to be searched wholly.
 const SEARCHED: usize = 4;
 /// More subsets than this are not tried in one component.
 const MAX_SUBSETS: usize = 20_000;
@@ -62,42 +63,53 @@ fn in_component(summands: &dyn Summands, component: &[usize]) -> (Vec<usize>, bo
         return (component.to_vec(), true);
     }
     let latest: Vec<usize> = component.iter().rev().copied().collect();
-    let mut tried = 0;
-    for size in 1..=SEARCHED.min(latest.len()) {
-        let mut found: Option<Vec<usize>> = None;
-        subsets(latest.len(), size, &mut |set| {
-            tried += 1;
-            if tried > MAX_SUBSETS {
-                return true;
-            }
-            let rest: Vec<usize> = (0..latest.len()).filter(|i| !set.contains(i)).map(|i| latest[i]).collect();
-            if summands.sum_vanishes(&rest) {
-                found = Some(set.iter().map(|&i| latest[i]).collect());
-                return true;
-            }
-            false
-        });
-        if let Some(set) = found {
-            return (set, true);
-        }
-        if tried > MAX_SUBSETS {
-            break;
+    let without =
+        |set: &[usize]| -> Vec<usize> { (0..latest.len()).filter(|i| !set.contains(i)).map(|i| latest[i]).collect() };
+    let mut tries = MAX_SUBSETS;
+    let mut excluded = 0;
+    for size in 1..=latest.len() {
+        match first_subset(latest.len(), size, &mut tries, &mut |set| summands.sum_vanishes(&without(set))) {
+            Some(set) => return (set.into_iter().map(|i| latest[i]).collect(), true),
+            None if tries == 0 => break,
+            None => excluded = size,
         }
     }
-    // Minimal by inclusion: take back from the front what need not be blamed.
-    let mut set: Vec<usize> = component.to_vec();
-    let mut k = 0;
-    while k < set.len() {
-        let rest: Vec<usize> = component.iter().copied().filter(|c| !set.contains(c) || *c == set[k]).collect();
-        if summands.sum_vanishes(&rest) {
-            set.remove(k);
-        } else {
-            k += 1;
-        }
-    }
-    // A component that fits into the searched sizes was searched wholly.
-    let least = component.len() <= SEARCHED && tried <= MAX_SUBSETS;
+    let set = reduced(summands, component);
+    // All smaller sets were tried.
+    let least = set.len() <= excluded + 1;
     (set, least)
+}
+
+/// What is left of a set when groups that cancel are taken out, the earliest first. A set is minimal by inclusion
+/// where no group of it cancels; groups of up to four are looked for.
+fn reduced(summands: &dyn Summands, component: &[usize]) -> Vec<usize> {
+    let mut set = component.to_vec();
+    let mut tries = MAX_SUBSETS;
+    let mut size = 1;
+    while size <= SEARCHED.min(set.len()) && tries > 0 {
+        let cancels = |group: &[usize]| summands.sum_vanishes(&group.iter().map(|&i| set[i]).collect::<Vec<_>>());
+        match first_subset(set.len(), size, &mut tries, &mut |group| cancels(group)) {
+            Some(group) => set = (0..set.len()).filter(|i| !group.contains(i)).map(|i| set[i]).collect(),
+            None => size += 1,
+        }
+    }
+    set
+}
+
+/// The first subset of size `k` of 0..n that fits; `tries` is what may be tried, 0 where it was not enough.
+fn first_subset(n: usize, k: usize, tries: &mut usize, fits: &mut dyn FnMut(&[usize]) -> bool) -> Option<Vec<usize>> {
+    let mut found = None;
+    subsets(n, k, &mut |set| {
+        if *tries == 0 {
+            return true;
+        }
+        *tries -= 1;
+        if fits(set) {
+            found = Some(set.to_vec());
+        }
+        found.is_some()
+    });
+    found
 }
 
 /// Calls `f` with the subsets of size `k` of 0..n in lexical order until it returns true.
@@ -153,12 +165,25 @@ mod tests {
         check(&[&[1], &[1], &[-2], &[1]], &[3], true);
     }
 
+    /// Vectors that are all independent of each other.
+    fn units(n: usize) -> Vec<Vec<i64>> {
+        (0..n).map(|k| (0..n).map(|i| (i == k) as i64).collect()).collect()
+    }
+
     #[test]
-    fn beyond_four_a_minimal_set_is_found_and_said() {
-        let unit = |k: usize| (0..6).map(|i| (i == k) as i64).collect::<Vec<_>>();
-        let vectors: Vec<Vec<i64>> = (0..6).map(unit).collect();
-        let b = blame(&Vectors(vectors));
-        assert_eq!(b, Blamed { culprits: vec![0, 1, 2, 3, 4, 5], smallest: false });
+    fn sets_of_more_than_four_are_smallest_where_all_were_tried() {
+        let b = blame(&Vectors(units(6)));
+        assert_eq!(b, Blamed { culprits: vec![0, 1, 2, 3, 4, 5], smallest: true });
+        // Five of seven: the first and the third cancel.
+        check(&[&[9], &[1], &[-9], &[2], &[4], &[16], &[32]], &[1, 3, 4, 5, 6], true);
+    }
+
+    #[test]
+    fn what_was_not_searched_wholly_is_said() {
+        let mut vectors = units(20);
+        vectors[3] = vectors[7].iter().map(|x| -x).collect();
+        let culprits = (0..20).filter(|k| ![3, 7].contains(k)).collect();
+        assert_eq!(blame(&Vectors(vectors)), Blamed { culprits, smallest: false });
     }
 
     proptest! {

@@ -44,7 +44,7 @@ impl std::fmt::Display for Unanswered {
 }
 
 /// The accelerations' linear system, of the coordinates whose accelerations are asked for and of those coupled to them.
-fn motion(
+pub(crate) fn motion(
     cx: &mut Context<'_>,
     model: &Model,
     rows: &MassRows,

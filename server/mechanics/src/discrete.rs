@@ -138,6 +138,29 @@ pub fn examine(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<Di
     Ok(DiscreteAnswer { kind, lagrangian, rest, broken_by, forces })
 }
 
+/// Whether L itself, the forces and the constraints are kept: one zero test and no blame, for where only that is told.
+pub fn keeps(cx: &mut Context<'_>, model: &Model, kind: Discrete) -> Result<bool, Stopped> {
+    let mut gap = Parts::new();
+    for (part, c) in signed_parts(model).concat() {
+        let (image, driven) = mapped(cx, model, kind, part)?;
+        if driven {
+            return Ok(false);
+        }
+        if image != part {
+            gap.push((image, c.clone()));
+            gap.push((part, c.neg()));
+        }
+    }
+    if !cx.vanishes(&gap).is_proved() {
+        return Ok(false);
+    }
+    if model.forces.is_empty() && model.constraints.is_empty() {
+        return Ok(true);
+    }
+    let all: Vec<usize> = (0..model.forces.len()).collect();
+    Ok(rest(cx, model, kind, &all)?.is_proved())
+}
+
 /// A smallest set of terms to blame, the latest where there are several [see `blame`].
 fn breakers(cx: &mut Context<'_>, model: &Model, gaps: &[Parts]) -> Result<Vec<usize>, Stopped> {
     let mut guilty = Vec::new();

@@ -49,7 +49,33 @@ pub fn gauge_term(cx: &mut Context<'_>, model: &Model, variation: &Parts) -> Res
     let Some(f) = potential(cx, rest, &pairs)? else { return Ok(None) };
     out.push((f, Rational::ONE));
     let f = cx.build(&out)?;
-    Ok(is_primitive(cx, f, variation)?.then_some(f))
+    if !is_primitive(cx, f, variation)? {
+        return Ok(None);
+    }
+    without_bars(cx, f).map(Some)
+}
+
+/// log r for log|r| where r is known to be positive.
+fn without_bars(cx: &mut Context<'_>, f: Expr) -> Result<Expr, Stopped> {
+    let mut logs = Vec::new();
+    cx.arena.visit(f, &mut |e, node| {
+        if let Node::Call(Function::Log, args) = node {
+            logs.push((e, args[0]));
+        }
+    });
+    let mut plain = hashbrown::HashMap::new();
+    for (log, inside) in logs {
+        let Node::Call(Function::Abs, args) = cx.arena.node(inside) else { continue };
+        let u = args[0];
+        let sign = cx.zero.sign_of(cx.arena, u, cx.budget);
+        if sign.is_nonnegative() {
+            plain.insert(log, cx.arena.call(Function::Log, &[u]));
+        } else if sign.is_nonpositive() {
+            let minus = cx.arena.neg(u);
+            plain.insert(log, cx.arena.call(Function::Log, &[minus]));
+        }
+    }
+    if plain.is_empty() { Ok(f) } else { cx.arena.substitute(f, &plain, cx.budget) }
 }
 
 fn is_primitive(cx: &mut Context<'_>, f: Expr, variation: &Parts) -> Result<bool, Stopped> {

@@ -1,6 +1,7 @@
 //! Lagrangian mechanics over exact expressions: momenta, forces, equations of motion, energy, symmetries and their
 //! charges, and which term breaks what. This crate knows no text.
 
+pub mod amends;
 pub mod blame;
 pub mod brackets;
 pub mod claims;

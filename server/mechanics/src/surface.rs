@@ -13,7 +13,7 @@ use crate::context::Context;
 use crate::lagrange::depends_on_velocities;
 use crate::mass::{coasting, dense, mass_rows, right_sides};
 use crate::model::Model;
-use leastwise_algebra::{Arena, Expr, Motion, Node, Rational, Sign, Stopped, Verdict};
+use leastwise_algebra::{Arena, Expr, Motion, Node, Rate, Rational, Residues, Sign, Stopped, Verdict};
 
 /// What is put in for atoms, each expression free of all the atoms.
 type Solved = Vec<(Expr, Expr)>;
@@ -59,6 +59,37 @@ pub fn rate_is_zero(
         }
     }
     Ok(Some(result))
+}
+
+/// The residues of rates c₀ + Σ cᵢ aᵢ at points of the surface, on one branch of it; `None` where there are none. What is
+/// found there is to be confirmed.
+pub fn rate_residues(
+    cx: &mut Context<'_>,
+    model: &Model,
+    rates: &[Rate],
+    length: usize,
+) -> Result<Option<Residues>, Stopped> {
+    let (n, m) = (model.coordinates.len(), model.constraints.len());
+    if n + m > MAX_UNKNOWNS || model.coordinates.iter().any(|q| q.members.is_some()) {
+        return Ok(None);
+    }
+    let Some(solved) = branches(cx, model)?.and_then(|b| b.into_iter().next()) else { return Ok(None) };
+    let map: hashbrown::HashMap<Expr, Expr> = solved.into_iter().collect();
+    let everywhere = motion(cx, model)?;
+    let mut put = |e: Expr| cx.arena.substitute(e, &map, cx.budget);
+    let mut here = Motion::default();
+    for row in &everywhere.mass {
+        here.mass.push(row.iter().map(|&e| put(e)).collect::<Result<_, _>>()?);
+    }
+    here.rhs = everywhere.rhs.iter().map(|&e| put(e)).collect::<Result<_, _>>()?;
+    let mut on_it = Vec::with_capacity(rates.len());
+    for (still, slopes) in rates {
+        let mut slopes = slopes.iter().map(|&e| put(e)).collect::<Result<Vec<_>, _>>()?;
+        // Multipliers take no part in a rate.
+        slopes.resize(n + m, Arena::ZERO);
+        on_it.push((put(*still)?, slopes));
+    }
+    Ok(cx.zero.rate_residues(cx.arena, &on_it, &here, length, cx.budget).ok())
 }
 
 /// The system for accelerations and multipliers, anywhere.

@@ -149,6 +149,7 @@ pub fn sheet() -> Sheet {
             formula: spin,
             holds: Answer::Yes,
             rate: zero(),
+            origin: "from the symmetry φ → φ + ε".into(),
             range: 0..7,
         }],
         found: None,

@@ -338,7 +338,11 @@ impl Setter {
         self.section("Constants of the motion");
         let mut rows = Vec::new();
         for c in &sheet.conserved {
-            rows.push(Row::new(c.name.clone(), &c.formula).remark(kept(&c.holds)));
+            let mut remark = kept(&c.holds);
+            if !c.origin.is_empty() {
+                remark = format!("{remark}, {}", c.origin);
+            }
+            rows.push(Row::new(c.name.clone(), &c.formula).remark(remark));
             if let Answer::No(witness) = &c.holds {
                 let at = witness.as_ref().map(|w| format!("so {w}")).unwrap_or_default();
                 rows.push(Row::new(format!("d{}/dt", c.name), &c.rate).remark(at));

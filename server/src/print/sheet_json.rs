@@ -139,6 +139,9 @@ fn conserved(c: &ConservedRow, lines: &Lines<'_>) -> Value {
     object.insert("formula".into(), formula(&c.formula));
     answer(&mut object, "holds", &c.holds);
     object.insert("rate".into(), formula(&c.rate));
+    if !c.origin.is_empty() {
+        object.insert("origin".into(), json!(c.origin));
+    }
     object.insert("range".into(), findings_json::range(&c.range, lines));
     Value::Object(object)
 }

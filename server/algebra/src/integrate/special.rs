@@ -67,10 +67,10 @@ impl Tower<'_, '_> {
         }
         for g in 0..self.generators.len() {
             if self.generators[g].kind == Kind::Root && !self.is_constant(g) && v.num.has(g) {
-                self.of_root(g, &low, &present, &mut out)?;
                 for &k in &present {
                     self.of_root_below(g, k, &mut out)?;
                 }
+                self.of_root(g, &low, &present, &mut out)?;
             }
         }
         Ok(out)

@@ -2,7 +2,7 @@
 
 use super::polynomial::{Monomial, Poly, exponent};
 use super::tower::{Frac, Kind, Res, Tower};
-use crate::arena::Expr;
+use crate::arena::{Expr, Node};
 use crate::function::Function;
 use crate::rational::Rational;
 
@@ -20,6 +20,17 @@ impl Tower<'_, '_> {
                     used[pair.second] += n;
                     factors.push((self.arena.call(f, &[pair.argument]), Rational::integer(n.into())));
                 }
+            }
+        }
+        // x x^k is x^(k + 1).
+        for k in 0..used.len() {
+            let Node::Power(b, x) = *self.arena.node(self.generators[k].expr) else { continue };
+            let base = self.atoms.get(&b).copied().filter(|&j| used.get(j).is_some_and(|&e| e != 0));
+            if let (1, Some(j)) = (used[k], base) {
+                let n = self.arena.integer(used[j].into());
+                let x = self.arena.add(x, n);
+                factors.push((self.arena.power(b, x), Rational::ONE));
+                (used[k], used[j]) = (0, 0);
             }
         }
         for (k, &e) in used.iter().enumerate() {

@@ -175,6 +175,18 @@ impl Residues {
         (0..columns).all(|c| parts.iter().fold(Element::ZERO, |s, &k| self.field.add2(s, self.rows[k][c])).is_zero())
     }
 
+    /// The number c with Σ a = c Σ b at all points, lifted to a rational with small numerator and denominator; `None`
+    /// where there is none, or Σ b vanishes. To be confirmed by the zero test.
+    pub fn ratio(&self, a: &[usize], b: &[usize]) -> Option<Rational> {
+        let f = &self.field;
+        let sum = |list: &[usize], c: usize| list.iter().fold(Element::ZERO, |s, &k| f.add2(s, self.rows[k][c]));
+        let columns = self.rows.first().map_or(0, Vec::len);
+        let first = (0..columns).find(|&c| !sum(b, c).is_zero())?;
+        let ratio = f.mul2(sum(a, first), f.inv2(sum(b, first)));
+        let same = (0..columns).all(|c| f.sub2(sum(a, c), f.mul2(ratio, sum(b, c))).is_zero());
+        if same && ratio.is_real() { lift(f, ratio.re) } else { None }
+    }
+
     /// The components of linear dependence: parts in different components take part in no common relation.
     /// A part that depends on no other is a component of its own.
     pub fn components(&self) -> Vec<Vec<usize>> {

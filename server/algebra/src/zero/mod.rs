@@ -13,6 +13,7 @@ mod notes;
 mod plan;
 mod points;
 mod ranges;
+mod rates;
 mod refute;
 mod roots;
 mod sample;
@@ -27,6 +28,7 @@ mod witness;
 
 pub use assumptions::{Assumptions, Relation};
 pub use linear::Residues;
+pub use rates::Rate;
 pub use signs::Sign;
 pub use target::Motion;
 pub use test::ZeroTest;

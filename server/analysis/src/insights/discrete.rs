@@ -81,7 +81,7 @@ impl DiscreteRow {
             Holds::UpToDerivative(Some(f)) if !f.text.contains('\n') => format!("yes, L changes by d/dt({})", f.text),
             Holds::UpToDerivative(_) => "yes, L changes by a total time derivative".into(),
             Holds::Broken(terms) => format!("broken by {}", named(terms)),
-            Holds::BrokenByForces(forces) => format!("of L, broken by {}", named(forces)),
+            Holds::BrokenByForces(forces) => format!("holds for L, broken by {}", named(forces)),
             Holds::Undecided(why) => format!("undecided: {why}"),
         }
     }
@@ -112,12 +112,14 @@ pub(crate) fn reversal(maker: &mut Maker<'_>, checked: &Checked) -> Option<Discr
     one(maker, checked, Discrete::TimeReversal).ok()
 }
 
-/// Whether a coordinate can be reflected; nothing where it is assumed to have a sign.
-pub(crate) fn even(maker: &mut Maker<'_>, checked: &Checked, coordinate: usize) -> Option<DiscreteRow> {
+/// Whether L, forces and constraints are even in a coordinate, not only up to a derivative; never where it is assumed to
+/// have a sign.
+pub(crate) fn even(maker: &mut Maker<'_>, checked: &Checked, coordinate: usize) -> Option<Map> {
     if has_sign(maker, checked, coordinate) {
         return None;
     }
-    one(maker, checked, Discrete::Reflection(coordinate)).ok()
+    let kept = asked(maker, |cx| mechanics::keeps(cx, checked.model(), Discrete::Reflection(coordinate))).ok()?;
+    kept.then(|| Map::Reflection(checked.model().coordinates[coordinate].label(maker.arena)))
 }
 
 fn one(maker: &mut Maker<'_>, checked: &Checked, kind: Discrete) -> Result<DiscreteRow, Stopped> {

@@ -101,7 +101,7 @@ impl SearchReport {
 }
 
 /// Searches a model for constants of the motion. `None` where the flag was raised meanwhile, or where the model has errors,
-/// so that what it might still say is not known, or no coordinates or terms.
+/// so that what it might still say is not known, no coordinates or terms, or more than a mebibyte of text.
 pub fn search(
     path: &str,
     text: &str,
@@ -112,6 +112,9 @@ pub fn search(
 ) -> Option<SearchReport> {
     search_with(path, text, files, degree, interrupt, progress, &mut leastwise_mechanics::search::search)
 }
+
+/// Longer texts are not searched, in bytes: reading one a second time costs more than it finds.
+const MAX_TEXT: usize = 1 << 20;
 
 /// What looks for the constants: the mechanics, or a test.
 type Finder<'f> =
@@ -126,6 +129,9 @@ fn search_with(
     progress: &mut dyn FnMut(Stage),
     finder: &mut Finder<'_>,
 ) -> Option<SearchReport> {
+    if text.len() > MAX_TEXT {
+        return None;
+    }
     let mut session = Session::new();
     session.set_interrupt(interrupt.clone());
     let checked = session.check(path, text, files);

@@ -41,7 +41,7 @@ coordinate x, y, z: length
 parameter m: mass, k: stiffness, g: acceleration
 kinetic motion = 1/2 m (x'^2 + y'^2 + z'^2)
 potential bowl = 1/2 k (x^2 + y^2) + m g z
-#                       ^^^ symmetry-broken: potential `bowl` breaks the symmetry `tilt`: torque k x z - m g x about the y axis
+#                       ^^^ symmetry-broken: potential `bowl` breaks the symmetry `tilt`: torque m g x - k x z about the y axis
 #                             ^^^ symmetry-broken: potential `bowl` breaks the symmetry `roll`: torque k y z - m g y about the x axis
 symmetry about_z: (x, y) -> (x cos ε - y sin ε, x sin ε + y cos ε)
 symmetry tilt: z -> z + ε x, x -> x - ε z
@@ -146,6 +146,50 @@ kinetic motion = 1/2 m (x'^2 + y'^2)
 symmetry along: x -> x + ε
 broken symmetry across: y -> y + ε
 ^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^ broken-symmetry-holds: is declared broken, but its charge m ẏ is conserved
+",
+    );
+}
+
+#[test]
+fn members_of_a_family_at_their_ends() {
+    judge(
+        "
+index i: 1..3
+coordinate x[i]: length
+parameter m: mass, k: stiffness
+kinetic motion = sum(i: 1/2 m x[i]'^2)
+potential chain = sum(i in 1..2: 1/2 k (x[i+1] - x[i])^2)
+potential wall = 1/2 k x[1]^2
+#                ^^^^^^^^^^^^ symmetry-broken: potential `wall` breaks the symmetry `all`: force -k x[1] along x[1] + x[2] + x[3]
+symmetry all: x[i] -> x[i] + ε
+",
+    );
+}
+
+#[test]
+fn a_gauge_term_breaks_nothing_though_declared_broken() {
+    judge(
+        "
+coordinate z: length
+parameter m: mass, g: acceleration
+kinetic motion = 1/2 m z'^2
+potential weight = m g z
+broken symmetry drop: z -> z + ε
+^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^^ broken-symmetry-holds: `drop` is declared broken
+",
+    );
+}
+
+#[test]
+fn turns_of_two_bodies_are_not_about_one_axis() {
+    judge(
+        "
+coordinate x₁, y₂: length
+parameter m: mass, k: stiffness
+kinetic motion = 1/2 m (x₁'^2 + y₂'^2)
+potential spring = 1/2 k x₁^2
+#                  ^^^^^^^^^^ symmetry-broken: torque k x₁ y₂ about the origin
+symmetry turn: (x₁, y₂) -> (x₁ cos ε - y₂ sin ε, x₁ sin ε + y₂ cos ε)
 ",
     );
 }

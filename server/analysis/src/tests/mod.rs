@@ -4,6 +4,7 @@ mod blame;
 mod formulas;
 mod history;
 mod incremental;
+mod lies;
 mod lowering;
 mod mends;
 mod names;

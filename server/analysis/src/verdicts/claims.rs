@@ -6,11 +6,9 @@ use crate::derive::total;
 use crate::mends;
 use crate::report::{Fix, Related};
 use crate::sheet::Maker;
-use crate::trade::effect;
+use crate::trade::{blamed_share, effect, windings};
 use leastwise_algebra::{Arena, Expr, Verdict};
 use leastwise_grammar::tree::Severity;
-use leastwise_mechanics::context::{Context, Parts};
-use leastwise_mechanics::gauge::{self, Winding};
 use leastwise_mechanics::symmetry::{NoGenerator, Status};
 use leastwise_mechanics::verdicts::{Culprit, SymmetryAnswer};
 
@@ -37,15 +35,7 @@ pub(super) fn symmetry(
         Status::Broken => {
             let places = places(checked, &a.culprits);
             let names = culprit_names(checked, &a.culprits);
-            let mut parts = Parts::new();
-            for c in &a.culprits {
-                let of = &a.symmetry.variations[c.term];
-                match c.parts.is_empty() {
-                    true => parts.extend(of.iter().cloned()),
-                    false => parts.extend(c.parts.iter().filter_map(|&p| of.get(p).cloned())),
-                }
-            }
-            let share = total(maker.arena, &parts);
+            let share = blamed_share(maker, a);
             let verb = if names.len() == 1 { "breaks" } else { "break" };
             let effect = effect(maker, checked, &a.symmetry.generator, share);
             let at = places.first().map_or_else(|| claim.range.clone(), |p| p.1.clone());
@@ -56,7 +46,7 @@ pub(super) fn symmetry(
                 format!("{} {verb} the symmetry `{name}`: {effect}", breakers(checked, &a.culprits, &names)),
             );
             if !a.smallest {
-                f.message.push_str(" (a minimal set of terms to blame, perhaps not a smallest one)");
+                f.message.push_str(" (of many sets of terms to blame, perhaps not a smallest one)");
             }
             f.help = Some(format!("write `broken symmetry {name}` if this is meant"));
             f.related = related_parts(checked, places.get(1..).unwrap_or_default());
@@ -119,20 +109,9 @@ fn multivalued(
     a: &SymmetryAnswer,
     out: &mut Vec<Finding>,
 ) {
-    let Some(gauge) = a.gauge else { return };
-    let model = checked.model();
-    let angles: Vec<usize> = checked.angles().collect();
-    let mut cx = Context { arena: maker.arena, zero: maker.zero, budget: maker.budget, memory: maker.memory };
-    let Ok(windings) = gauge::multivalued(&mut cx, model, gauge, &angles) else { return };
-    let gauge = one_line(&maker.prints.text(maker.arena, gauge));
-    for winding in windings {
-        let when = match winding {
-            Winding::Turn(i) => format!("when {} turns by 2π", model.coordinates[i].label(maker.arena)),
-            Winding::Axis(y, x) => {
-                let (x, y) = (maker.prints.text(maker.arena, x), maker.prints.text(maker.arena, y));
-                format!("on a way around the axis {} = 0, {} = 0", one_line(&x), one_line(&y))
-            }
-        };
+    let Some(f) = a.gauge else { return };
+    let gauge = one_line(&maker.prints.text(maker.arena, f));
+    for when in windings(maker, checked, f) {
         out.push(finding(
             "gauge-multivalued",
             Severity::Information,

@@ -129,7 +129,7 @@ pub(super) fn periodicity(maker: &mut Maker<'_>, checked: &Checked, out: &mut Ve
 }
 
 /// What a full turn of `atom` adds to `e`, as parts; `None` where it stands in sines and cosines only, with integers.
-pub(crate) fn turned_once(maker: &mut Maker<'_>, e: Expr, atom: Expr, pi: Expr) -> Option<Parts> {
+fn turned_once(maker: &mut Maker<'_>, e: Expr, atom: Expr, pi: Expr) -> Option<Parts> {
     if !maker.arena.atoms(e).contains(&atom) {
         return None;
     }

@@ -4,8 +4,6 @@ mod claims;
 mod coordinates;
 mod system;
 
-pub(crate) use coordinates::turned_once;
-
 use crate::checked::Checked;
 use crate::derive::Derived;
 use crate::mends;
@@ -56,19 +54,21 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
             Err(why) => no_generator(maker, checked, claim, why, &mut out),
         }
     }
-    for (claim, answer) in checked.conserved().iter().zip(&derived.conserved) {
+    for (k, (claim, answer)) in checked.conserved().iter().zip(&derived.conserved).enumerate() {
         let name = &claim.name;
         match answer {
             Ok(c) => match &c.verdict {
                 Ok(Verdict::Proved) => {}
                 Ok(Verdict::Refuted(_)) => {
                     let rate = maker.prints.text(maker.arena, c.rate);
-                    out.push(finding(
+                    let mut f = finding(
                         "not-conserved",
                         Severity::Warning,
                         claim.range.clone(),
                         format!("`{name}` is not conserved: its rate {} does not vanish on motions", one_line(&rate)),
-                    ));
+                    );
+                    crate::amends::mend(maker, checked, derived, k, &mut f);
+                    out.push(f);
                 }
                 Ok(Verdict::Undecided(reason)) => out.push(undecided(claim.range.clone(), name, &reason.to_string())),
                 Err(reason) => out.push(undecided(claim.range.clone(), name, &reason.to_string())),

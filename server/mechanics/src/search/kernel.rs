@@ -4,6 +4,7 @@
 //! monomials in the parameters. These are compared at other primes; where they differ the coefficients are quotients of
 //! determinants, of the columns' values at numeric states (Cramer's rule). What comes out is to be confirmed.
 
+use super::sums::sum_of_two;
 use crate::context::{Context, Parts};
 use leastwise_algebra::{
     Arena, Expr, Function, Node, Rational, Reason, Residues, Role, Stopped, without_common_factor,
@@ -26,6 +27,8 @@ impl From<Stopped> for Halt {
 /// Values of parameters, and others.
 const PRIMES: [[i64; 12]; 2] =
     [[11, 13, 17, 19, 23, 29, 31, 37, 41, 43, 47, 53], [101, 67, 97, 71, 89, 103, 83, 79, 107, 73, 61, 59]];
+/// Half-angle tangents of constant angles, small, so that what comes out can be read.
+const TANGENTS: [[i64; 4]; 2] = [[2, 3, 5, 7], [4, 6, 8, 9]];
 /// Determinants of more rows are not expanded.
 const MAX_ROWS: usize = 12;
 /// States that are tried for the rows of a determinant.
@@ -40,10 +43,10 @@ pub(super) fn kernel(cx: &mut Context<'_>, columns: &[Vec<Expr>]) -> Result<Vec<
     if columns.is_empty() {
         return Ok(Vec::new());
     }
-    let (parameters, state) = atoms(cx, columns)?;
-    let [first, second] = values(cx, &parameters);
+    let (constants, state) = atoms(cx, columns)?;
+    let [first, second] = [0, 1].map(|k| constants.values(cx, k));
     let numbers = relations(cx, columns, &first)?;
-    if parameters.is_empty() {
+    if first.is_empty() {
         return Ok(numbers.iter().map(|r| r.iter().map(|c| cx.arena.number(c.clone())).collect()).collect());
     }
     let others = relations(cx, columns, &second)?;
@@ -52,11 +55,23 @@ pub(super) fn kernel(cx: &mut Context<'_>, columns: &[Vec<Expr>]) -> Result<Vec<
     }
     let mut out = Vec::new();
     for (r, other) in numbers.iter().zip(&others) {
-        let guess: Vec<Expr> = r.iter().map(|c| decode(cx, &parameters, c)).collect();
+        let mut guess: Vec<Expr> = r.iter().map(|c| decode(cx, &constants, c)).collect();
         let mut fits = true;
-        for (&g, c) in guess.iter().zip(other) {
-            let there = cx.arena.substitute(g, &second, cx.budget)?;
-            fits &= cx.arena.as_number(there) == Some(c);
+        for (g, (here, c)) in guess.iter_mut().zip(r.iter().zip(other)) {
+            let there = cx.arena.substitute(*g, &second, cx.budget)?;
+            if cx.arena.as_number(there) == Some(c) {
+                continue;
+            }
+            let n = constants.list.len();
+            let primes = PRIMES.each_ref().map(|p| &p[..n]);
+            let sum = if constants.roots { None } else { sum_of_two(cx, &constants.list, primes, [here, c]) };
+            match sum {
+                Some(sum) => *g = sum,
+                None => {
+                    fits = false;
+                    break;
+                }
+            }
         }
         out.push(if fits { guess } else { quotients(cx, columns, r, &state, &first)? });
     }
@@ -68,8 +83,8 @@ pub(super) fn dependent(cx: &mut Context<'_>, columns: &[Vec<Expr>]) -> Result<V
     if columns.is_empty() {
         return Ok(Vec::new());
     }
-    let (parameters, _) = atoms(cx, columns)?;
-    let [first, _] = values(cx, &parameters);
+    let (constants, _) = atoms(cx, columns)?;
+    let first = constants.values(cx, 0);
     // What does not depend at some values does not depend at all.
     Ok(residues(cx, columns, &first)?.dependent())
 }
@@ -85,6 +100,9 @@ fn residues(cx: &mut Context<'_>, columns: &[Vec<Expr>], values: &Values) -> Res
     for c in columns {
         parts.push(c.iter().map(|&e| cx.arena.substitute(e, values, cx.budget)).collect::<Result<Vec<_>, _>>()?);
     }
+    if parts.iter().flatten().any(|&e| hides_a_constant(cx, e)) {
+        return Err(Halt::Unsolved("a function has a constant within its argument".into()));
+    }
     let (n, rows) = (columns.len(), columns[0].len().max(1));
     cx.budget.charge(n * n * n / 4 + n)?;
     match cx.zero.residue_vectors(cx.arena, &parts, n / rows + 6, cx.budget) {
@@ -95,37 +113,132 @@ fn residues(cx: &mut Context<'_>, columns: &[Vec<Expr>], values: &Values) -> Res
     }
 }
 
-/// The parameters in some columns, and the atoms of the state.
-fn atoms(cx: &Context<'_>, columns: &[Vec<Expr>]) -> Result<(Vec<Expr>, Vec<Expr>), Halt> {
+/// What is constant in some columns, and the atoms of the state.
+fn atoms(cx: &mut Context<'_>, columns: &[Vec<Expr>]) -> Result<(Constants, Vec<Expr>), Halt> {
     let mut atoms: Vec<Expr> = columns.iter().flatten().flat_map(|&e| cx.arena.atoms(e)).collect();
     atoms.sort_by_key(|a| (cx.arena.key(*a), a.index()));
     atoms.dedup();
-    let (mut parameters, mut state) = (Vec::new(), Vec::new());
+    let mut out = Constants::default();
+    let mut state = Vec::new();
     for a in atoms {
         match cx.arena.node(a) {
             Node::Symbol(s) | Node::Jet(s, _) => match cx.arena.info(*s).role {
-                Role::Parameter => parameters.push(a),
+                Role::Parameter => out.list.push(a),
                 Role::Coordinate | Role::Time => state.push(a),
                 _ => {}
             },
             _ => {}
         }
     }
-    if parameters.len() > PRIMES[0].len() {
+    // Functions of constants, such as the cosine of a slope, are constants, too; and so is π.
+    let mut nodes = Vec::new();
+    for &e in columns.iter().flatten() {
+        cx.arena.visit(e, &mut |e, node| match node {
+            Node::Call(f, args) => nodes.push((e, Some(*f), args[0])),
+            Node::Unspecified { .. } | Node::Pi => nodes.push((e, None, e)),
+            Node::Product(factors) => {
+                let root = |(base, n): &(Expr, Rational)| !n.is_integer() && out.list.contains(base);
+                out.roots |= factors.iter().any(root);
+            }
+            _ => {}
+        });
+    }
+    nodes.sort_by_key(|n| (cx.arena.key(n.0), n.0.index()));
+    nodes.dedup();
+    for (e, f, argument) in nodes {
+        if cx.arena.atoms(e).iter().any(|a| state.contains(a)) {
+            continue;
+        }
+        match f {
+            Some(Function::Sin | Function::Cos | Function::Tan) => {
+                if !out.angles.contains(&argument) {
+                    out.angles.push(argument);
+                }
+            }
+            _ => out.list.push(e),
+        }
+    }
+    // Values are told apart as if functions of different arguments had nothing to do with each other.
+    let mut arguments: Vec<Expr> = out.angles.clone();
+    for &e in &out.list {
+        if let Node::Call(_, args) = cx.arena.node(e) {
+            arguments.extend(args.iter().copied());
+        }
+    }
+    arguments.sort_by_key(|a| a.index());
+    arguments.dedup();
+    let mut within: Vec<Expr> = arguments.iter().flat_map(|&a| cx.arena.atoms(a)).collect();
+    within.sort_by_key(|a| a.index());
+    if within.windows(2).any(|w| w[0] == w[1]) {
+        return Err(Halt::Unsolved("there are several functions of one parameter".into()));
+    }
+    if out.list.len() > PRIMES[0].len() || out.angles.len() > TANGENTS[0].len() {
         return Err(Halt::Unsolved("there are too many parameters".into()));
     }
-    Ok((parameters, state))
+    Ok((out, state))
 }
 
-fn values(cx: &mut Context<'_>, parameters: &[Expr]) -> [Values; 2] {
-    PRIMES.map(|primes| parameters.iter().zip(primes).map(|(&a, p)| (a, cx.arena.integer(p))).collect())
+/// Constants, which take values of primes.
+#[derive(Default)]
+struct Constants {
+    /// Parameters, and functions of parameters.
+    list: Vec<Expr>,
+    /// Whether there are square roots of them: then the values are squares.
+    roots: bool,
+    /// Constants whose sine and cosine occur.
+    angles: Vec<Expr>,
+}
+
+impl Constants {
+    fn values(&self, cx: &mut Context<'_>, k: usize) -> Values {
+        let mut out = Values::new();
+        for (&a, p) in self.list.iter().zip(PRIMES[k]) {
+            out.insert(a, cx.arena.integer(if self.roots { p * p } else { p }));
+        }
+        // (1 − p²)/(1 + p²) and 2 p/(1 + p²) are the cosine and the sine of an angle.
+        for (&a, p) in self.angles.iter().zip(TANGENTS[k]) {
+            let pairs = [
+                (2 * p, 1 + p * p, Function::Sin),
+                (1 - p * p, 1 + p * p, Function::Cos),
+                (2 * p, 1 - p * p, Function::Tan),
+            ];
+            for (n, d, f) in pairs {
+                let value = cx.arena.number(Rational::new(n, d).unwrap_or(Rational::ZERO));
+                let call = cx.arena.call(f, &[a]);
+                out.insert(call, value);
+            }
+        }
+        out
+    }
+}
+
+/// Whether a function has a constant within its argument that stands for an unknown number: cos(φ + 11). Such numbers are
+/// different at each point.
+fn hides_a_constant(cx: &Context<'_>, e: Expr) -> bool {
+    let mut hidden = false;
+    cx.arena.visit(e, &mut |_, node| {
+        let Node::Call(f, args) = node else { return };
+        let periodic = matches!(
+            f,
+            Function::Sin
+                | Function::Cos
+                | Function::Tan
+                | Function::Exp
+                | Function::Sinh
+                | Function::Cosh
+                | Function::Tanh
+        );
+        hidden |= args.iter().all(|&a| cx.arena.as_number(a).is_some());
+        hidden |= periodic && matches!(cx.arena.node(args[0]), Node::Sum(c, _) if !c.is_zero());
+    });
+    hidden
 }
 
 /// The monomial that a value stands for.
-fn decode(cx: &mut Context<'_>, parameters: &[Expr], value: &Rational) -> Expr {
+fn decode(cx: &mut Context<'_>, constants: &Constants, value: &Rational) -> Expr {
     let (Some((mut n, mut d)), false) = (value.small(), value.is_zero()) else { return Arena::ZERO };
     let mut factors = Vec::new();
-    for (&a, p) in parameters.iter().zip(PRIMES[0]) {
+    for (&a, p) in constants.list.iter().zip(PRIMES[0]) {
         let mut e = 0;
         while n % p == 0 {
             n /= p;
@@ -135,7 +248,7 @@ fn decode(cx: &mut Context<'_>, parameters: &[Expr], value: &Rational) -> Expr {
             d /= p;
             e -= 1;
         }
-        factors.push((a, Rational::integer(e)));
+        factors.push((a, Rational::new(e, if constants.roots { 2 } else { 1 }).unwrap_or(Rational::ZERO)));
     }
     let product = cx.arena.monomial(&factors);
     cx.arena.scale(product, &Rational::new(n, d).unwrap_or(Rational::ZERO))
@@ -230,7 +343,8 @@ fn split_by_roots(
         for (term, c) in cx.arena.summands(e) {
             let (mut root, mut rest) = (Vec::new(), Vec::new());
             for (base, n) in cx.arena.factors(term) {
-                let number = cx.arena.as_number(base).is_some();
+                // π comes from the states only, or what is found will not be confirmed.
+                let number = cx.arena.as_number(base).is_some() || matches!(cx.arena.node(base), Node::Pi);
                 if number { root.push((base, n)) } else { rest.push((base, n)) }
             }
             let (root, rest) = (cx.arena.monomial(&root), cx.arena.monomial(&rest));
@@ -286,4 +400,70 @@ fn determinant(
     let d = cx.arena.expand(sum, cx.budget)?;
     known.insert(columns, d);
     Ok(d)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::fixture::Fixture;
+
+    /// The only relation of some columns of one row, with its last coefficient divided out.
+    fn check(f: &mut Fixture, columns: &[Expr], expected: &[Expr]) {
+        let columns: Vec<Vec<Expr>> = columns.iter().map(|&e| vec![e]).collect();
+        let mut cx = f.cx();
+        let Ok(found) = kernel(&mut cx, &columns) else { panic!("unsolved") };
+        assert_eq!(found.len(), 1);
+        let last = *found[0].last().unwrap();
+        for (&c, &e) in found[0].iter().zip(expected) {
+            let product = cx.arena.mul(e, last);
+            let gap = cx.arena.sub(c, product);
+            assert!(cx.vanishes(&[(gap, Rational::ONE)]).is_proved());
+        }
+        let dependent = dependent(&mut cx, &columns);
+        assert!(matches!(dependent, Ok(list) if list == [columns.len() - 1]));
+    }
+
+    #[test]
+    fn coefficients_are_functions_of_the_parameters() {
+        let mut f = Fixture::new();
+        let (x, v) = f.coordinate("x");
+        let [a, b] = ["a", "b"].map(|p| f.parameter(p));
+        // a² x/b, with x: a monomial.
+        let c = f.arena.monomial(&[(a, Rational::integer(2)), (b, Rational::MINUS_ONE)]);
+        let (first, minus) = (f.arena.mul(c, x), f.arena.pow(c, -1));
+        let minus = f.arena.neg(minus);
+        check(&mut f, &[first, x], &[minus, Arena::ONE]);
+        // (a + b) x + v sin x and both: quotients.
+        let sine = f.arena.call(Function::Sin, &[x]);
+        let (sum, turned) = (f.arena.add(a, b), f.arena.mul(v, sine));
+        let first = f.arena.mul(sum, x);
+        let first = f.arena.add(first, turned);
+        let one = Arena::ONE;
+        let inverse = f.arena.pow(sum, -1);
+        let negative = f.arena.neg(inverse);
+        check(&mut f, &[first, turned, x], &[negative, inverse, one]);
+        // Roots and sines of parameters.
+        let root = f.arena.sqrt(a);
+        let first = f.arena.mul(root, x);
+        let negative = f.arena.neg(root);
+        check(&mut f, &[x, first], &[negative, one]);
+        let s = f.arena.call(Function::Sin, &[b]);
+        let first = f.arena.mul(s, x);
+        let negative = f.arena.neg(s);
+        check(&mut f, &[x, first], &[negative, one]);
+    }
+
+    #[test]
+    fn constants_within_functions_are_not_guessed() {
+        let mut f = Fixture::new();
+        let (x, _) = f.coordinate("x");
+        let a = f.parameter("a");
+        let sum = f.arena.add(x, a);
+        // cos(x + a) = cos a cos x − sin a sin x.
+        let columns = [sum, x].map(|e| vec![f.arena.call(Function::Cos, &[e])]);
+        assert!(matches!(kernel(&mut f.cx(), &columns), Err(Halt::Unsolved(_))));
+        let double = f.arena.scale(a, &Rational::integer(2));
+        let columns = [a, double].map(|e| vec![f.arena.call(Function::Cos, &[e])]);
+        assert!(matches!(kernel(&mut f.cx(), &columns), Err(Halt::Unsolved(_))));
+    }
 }

@@ -11,6 +11,7 @@ mod killing;
 mod kinetic;
 mod points;
 mod primitive;
+mod sums;
 
 pub use hidden::{Hidden, hidden};
 

@@ -265,7 +265,8 @@ impl Article {
                 rows.push(Row::new(&format!("\\frac{{d}}{{dt}} {name}"), &c.rate));
             }
             self.align(&rows);
-            let _ = writeln!(self.out, "It is {}.\n", kept(&c.holds));
+            let origin = if c.origin.is_empty() { String::new() } else { format!(", {}", escape(&c.origin)) };
+            let _ = writeln!(self.out, "It is {}{origin}.\n", kept(&c.holds));
         }
     }
 }

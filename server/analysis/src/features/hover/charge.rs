@@ -2,7 +2,6 @@
 
 use super::writer::Writer;
 use crate::derive::total;
-use crate::verdicts::turned_once;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Role};
 use leastwise_mechanics::context::Parts;
 use leastwise_mechanics::energy::is_total_energy;
@@ -119,23 +118,4 @@ fn mass_of(w: &mut Writer<'_, '_>, i: usize) -> Option<Expr> {
     });
     let rest = [(p, Rational::ONE), (maker.arena.mul(mass, velocity), Rational::MINUS_ONE)];
     (constant && w.cx().vanishes(&rest).is_proved()).then_some(mass)
-}
-
-/// The angle at whose full turn a gauge term changes.
-pub(super) fn turning(w: &mut Writer<'_, '_>, gauge: Expr) -> Option<String> {
-    let checked = w.checked;
-    let pi = w.maker.arena.pi();
-    for i in checked.angles() {
-        let q = &checked.model.coordinates[i];
-        if q.members.is_some() {
-            continue;
-        }
-        let atom = q.jet(w.maker.arena, 0);
-        if let Some(change) = turned_once(w.maker, gauge, atom, pi)
-            && w.cx().vanishes(&change).is_refuted()
-        {
-            return Some(q.label(w.maker.arena));
-        }
-    }
-    None
 }

@@ -4,6 +4,7 @@ use super::charge::{Charge, charge, energy_name};
 use super::writer::{List, SHOWN, Writer, labelled, plural, quoted, short, with_kind, witness};
 use crate::insights::{self, BracketRow, BracketStatus};
 use crate::report::Answer;
+use crate::trade::windings;
 use leastwise_algebra::{Arena, Expr, Node, Rational, Verdict};
 use leastwise_mechanics::context::Parts;
 use leastwise_mechanics::lagrange::multiplier;
@@ -94,8 +95,8 @@ pub(super) fn symmetry(w: &mut Writer<'_, '_>, k: usize) {
     {
         w.prose(format!("Refuted: d{}/dt is {}.", charge.symbol, witness(at)));
     }
-    if let Some(q) = a.gauge.and_then(|f| super::charge::turning(w, f)) {
-        w.prose(format!("F changes when `{q}` turns by 2π: the charge is not single-valued."));
+    for when in a.gauge.map_or_else(Vec::new, |f| windings(w.maker, w.checked, f)) {
+        w.prose(format!("F changes {when}: the charge is not single-valued."));
     }
     if a.gauge_unknown {
         w.prose(
@@ -387,6 +388,23 @@ fn constant(w: &mut Writer<'_, '_>, k: usize) {
         }
     }
     w.formulas(lines);
+    if checked.complete {
+        let more = match &answer {
+            Answer::Yes => match crate::amends::origin(w.maker, checked, w.derived, k) {
+                origin if origin.is_empty() => None,
+                origin => Some(format!("It comes {origin}.").replace("comes a ", "is a ")),
+            },
+            Answer::No(_) => crate::amends::fixes(w.maker, checked, w.derived, k).into_iter().next().map(|f| {
+                let said = f.0;
+                let mut letters = said.chars();
+                letters.next().map_or(String::new(), |c| format!("{}{}.", c.to_uppercase(), letters.as_str()))
+            }),
+            Answer::Undecided(_) => None,
+        };
+        if let Some(more) = more {
+            w.prose(more);
+        }
+    }
     // A verdict that was taken from a known charge has that one's witness.
     let own = checked.model.constraints.is_empty() && w.derived.answers.as_ref().is_ok_and(|a| a.rows.is_some());
     if checked.complete

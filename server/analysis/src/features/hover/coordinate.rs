@@ -3,7 +3,7 @@
 use super::writer::{FormRow, List, SHOWN, Writer, counted, forms, labelled, quoted, short};
 use crate::checked::SymbolRow;
 use crate::features::place::{Place, formulas_at};
-use crate::insights::{self, Holds};
+use crate::insights;
 use leastwise_algebra::{Arena, Expr, Rational, Stopped, Verdict};
 use leastwise_grammar::tree::*;
 use leastwise_mechanics::lagrange::{self, signed_parts};
@@ -78,13 +78,8 @@ fn parity(w: &mut Writer<'_, '_>, i: usize) {
     if w.checked.model.coordinates[i].members.is_some() {
         return;
     }
-    let Some(row) = insights::even(w.maker, w.checked, i) else { return };
-    match row.holds {
-        Holds::Exactly => w.prose(format!("L is even under {}.", row.map.words())),
-        Holds::UpToDerivative(_) => {
-            w.prose(format!("L is even under {}, up to a total time derivative.", row.map.words()));
-        }
-        Holds::Broken(_) | Holds::BrokenByForces(_) | Holds::Undecided(_) => {}
+    if let Some(map) = insights::even(w.maker, w.checked, i) {
+        w.prose(format!("L is even under {}.", map.words()));
     }
 }
 

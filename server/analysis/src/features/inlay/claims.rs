@@ -3,7 +3,8 @@
 use super::{Desk, InlayKind, list, verb};
 use crate::checked::Contents;
 use crate::derive::{Derived, total};
-use crate::verdicts::turned_once;
+use crate::trade::windings;
+use crate::trade::{blamed_share, effect};
 use leastwise_algebra::{Arena, Expr, Node, Rational, Role, Stopped, Verdict};
 use leastwise_mechanics::claims::Claim;
 use leastwise_mechanics::context::Parts;
@@ -11,6 +12,9 @@ use leastwise_mechanics::lagrange::{self, FormParts, multiplier, signed_parts};
 use leastwise_mechanics::symmetry::{Generator, NoGenerator, Status};
 use leastwise_mechanics::verdicts::{Answers, Culprit, SymmetryAnswer};
 use std::ops::Range;
+
+/// What breaks a claim is told where the label stays within this many characters.
+const LONGEST: usize = 60;
 
 pub(super) fn hints(desk: &mut Desk<'_, '_, '_>, derived: &Derived) {
     let checked = desk.checked;
@@ -151,18 +155,9 @@ fn sum(desk: &mut Desk<'_, '_, '_>, parts: &FormParts) -> Expr {
     total(desk.maker.arena, &parts)
 }
 
-/// Whether a gauge term changes when an angle makes a full turn.
+/// Whether a gauge term changes on a way that comes back.
 fn is_multivalued(desk: &mut Desk<'_, '_, '_>, gauge: Expr) -> bool {
-    let checked = desk.checked;
-    let pi = desk.maker.arena.pi();
-    checked.angles().any(|i| {
-        let q = &checked.model().coordinates[i];
-        if q.members.is_some() {
-            return false;
-        }
-        let atom = q.jet(desk.maker.arena, 0);
-        turned_once(desk.maker, gauge, atom, pi).is_some_and(|change| desk.cx().vanishes(&change).is_refuted())
-    })
+    !windings(desk.maker, desk.checked, gauge).is_empty()
 }
 
 fn charge_text(desk: &mut Desk<'_, '_, '_>, a: &SymmetryAnswer) -> String {
@@ -185,7 +180,13 @@ fn symmetry(desk: &mut Desk<'_, '_, '_>, expected_broken: bool, a: &SymmetryAnsw
                     (format!("broken{by}, yet conserved: {charge}"), target)
                 }
                 (true, false) => (format!("broken{by}, as declared"), target),
-                (false, false) => (format!("broken{by}"), target),
+                (false, false) => {
+                    let label = format!("broken{by}");
+                    let share = blamed_share(desk.maker, a);
+                    let effect = effect(desk.maker, desk.checked, &a.symmetry.generator, share);
+                    let whole = format!("{label}: {effect}");
+                    (if whole.chars().count() <= LONGEST { whole } else { label }, target)
+                }
             };
         }
         Status::Exact => "exact".to_string(),

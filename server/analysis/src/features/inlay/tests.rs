@@ -153,7 +153,7 @@ fn claims_have_their_verdicts() {
     swing("symmetry s: x -> x + ε t\n", "symmetry s: x -> x + ε t ⟦up to d/dt(m x): Q = m (t ẋ - x)⟧");
     swing(
         "potential spring = 1/2 k x^2\nsymmetry s: x -> x + ε\n",
-        "symmetry s: x -> x + ε ⟦broken by spring → 1/2 k x^2⟧",
+        "symmetry s: x -> x + ε ⟦broken by spring: force -k x along x → 1/2 k x^2⟧",
     );
     swing(
         "potential spring = 1/2 k x^2\nbroken symmetry s: x -> x + ε\n",

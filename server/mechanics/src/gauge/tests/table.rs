@@ -211,6 +211,19 @@ fn what_has_no_closed_form() {
 }
 
 #[test]
+fn a_positive_argument_needs_no_bars() {
+    let mut w = world();
+    let mut facts = w.f.zero.assumptions().clone();
+    facts.assume(&mut w.f.arena, w.x, Relation::Greater);
+    w.f.zero.set_assumptions(facts);
+    let (over_x, over_y) = (w.along(w.x, w.x, -2), w.along(w.y, w.y, -2));
+    let v = w.sum(&[over_x, over_y]);
+    let model = w.f.model.clone();
+    let f = gauge_term(&mut w.f.cx(), &model, &vec![(v, Rational::ONE)]).unwrap().unwrap();
+    assert_eq!(w.shown(f), "log x + log(abs(y))");
+}
+
+#[test]
 fn where_it_is_multivalued() {
     let mut w = world();
     let model = w.f.model.clone();

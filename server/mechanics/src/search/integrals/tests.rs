@@ -488,3 +488,24 @@ fn the_search_ends_with_its_budget() {
     let scope = Scope { degree: 2, angles: Vec::new(), quadratic: true };
     assert_eq!(integrals(&mut f.cx(), &model, &scope, &[]), Err(leastwise_algebra::Stopped::TooLarge));
 }
+
+#[test]
+fn functions_of_parameters_are_constants() {
+    // A block on a wedge falls evenly in both coordinates: all follows from momenta and boosts.
+    let mut f = Fixture::new();
+    let [m, wedge, slope, g] = ["m", "M", "α", "g"].map(|p| f.parameter(p));
+    let ((x, a), (s, b)) = (f.coordinate("X"), f.coordinate("s"));
+    let (sin, cos) = (f.arena.call(Function::Sin, &[slope]), f.arena.call(Function::Cos, &[slope]));
+    let (across, down) = (f.arena.mul(cos, b), f.arena.mul(sin, b));
+    let across = f.arena.add(a, across);
+    let parts = [f.half_square(wedge, a), f.half_square(m, across), f.half_square(m, down)];
+    f.term(TermKind::Kinetic, "motion", &parts);
+    let u = f.arena.product(&[m, g, sin, s]);
+    f.term(TermKind::Lagrangian, "weight", &[u]);
+    let model = f.model.clone();
+    let scope = Scope { degree: 2, angles: Vec::new(), quadratic: true };
+    let found = crate::search::search(&mut f.cx(), &model, &scope, &[], &mut |_| ()).unwrap();
+    assert_eq!(found.incomplete, None);
+    assert!(found.items.iter().all(|i| i.origin != Origin::Quadratic), "{:?}", found.items.len());
+    let _ = x;
+}

@@ -81,6 +81,7 @@ fn coordinates_with_constraints() {
         ∂L/∂x = 0
         R_x = 2 λ_rod x
     Moved by `turn` (broken by `U`), `side` (exact symmetry).
+    L is even under x → −x.
     "#);
     insta::assert_snapshot!(within(ROD, "momentum($0z)"), @r#"
     `z`
@@ -89,6 +90,7 @@ fn coordinates_with_constraints() {
         m z̈ = 0
         p_z = m ż
         ∂L/∂z = 0
+    L is even under z → −z.
     "#);
     insta::assert_snapshot!(within(DISC, "coordinate $0ψ"), @r#"
     `ψ`
@@ -325,6 +327,7 @@ fn claims_that_fail() {
         η_x = 1
         p_x = ẋ
         dp_x/dt = 0
+    Its Poisson brackets with the other charges vanish.
     "#);
 }
 
@@ -375,6 +378,7 @@ fn charges_by_their_names() {
         η_y = x
         Q = m (x ẏ - y ẋ) + 1/2 B (x² + y²)
         dQ/dt = 0
+    Its Poisson brackets with the other charges vanish.
     "#);
     insta::assert_snapshot!(check("index i: 1..3\ncoordinate x[i]: length\nparameter m\nkinetic T = sum(i: 1/2 m x[i]'^2)\nsymmetry $0shift: x[i] -> x[i] + ε"), @r#"
     `shift`
@@ -395,6 +399,8 @@ fn charges_by_their_names() {
         F = M φ   (δL = dF/dt)
         dQ/dt = 0
     F changes when `φ` turns by 2π: the charge is not single-valued.
+    Poisson brackets that do not vanish:
+        {p_φ, delay} = M
     "#);
 }
 
@@ -409,6 +415,7 @@ fn claims_about_vectors() {
     `p[2]` is conserved (proved)
         p[2] = ẏ
         d/dt p[2] = 0
+    It comes from the symmetry y → y + ε.
     "#);
 }
 
@@ -426,6 +433,7 @@ fn systems() {
     Conserved:
         h   (energy)
         p_z = m ż   (z is cyclic)
+    Time reversal: yes.
     "#);
     insta::assert_snapshot!(within(DISC, "system $0disc"), @r#"
     `disc`
@@ -439,6 +447,7 @@ fn systems() {
         h   (energy)
         J ψ̇ + m R (ẋ - a t)   (charge of both)
         x - R ψ   (claimed as c)
+    Time reversal: yes.
     "#);
     insta::assert_snapshot!(within(ROW, "system $0row"), @r#"
     `row`
@@ -449,6 +458,7 @@ fn systems() {
         h = 1/2 sum(i in 1..10000: m[i] x[i]'²) + 1/2 k (sum(i in 1..9999: (x[i + 1] - x[i])²) + x[7]²)
         dh/dt = -c x[1]'²
     Nothing is known to be conserved.
+    Time reversal: holds for L, broken by drag.
     "#);
     insta::assert_snapshot!(check("system $0bead\ncoordinate θ: angle\nparameter m, R, g, Ω\nkinetic T = 1/2 m R^2 (θ'^2 + Ω^2 sin(θ)^2)\npotential U = -m g R cos θ"), @r#"
     `bead`
@@ -460,6 +470,7 @@ fn systems() {
         dh/dt = 0
     Conserved:
         h   (energy function)
+    Time reversal: yes.
     "#);
     insta::assert_snapshot!(check("system $0driven\ncoordinate x, y\nparameter k\nkinetic T = 1/2 x'^2\npotential U = 1/2 k x^2 cos t"), @r#"
     `driven`
@@ -470,6 +481,7 @@ fn systems() {
         h = 1/2 ẋ² + 1/2 k x² cos t
         dh/dt = -1/2 k x² sin t
     Nothing is known to be conserved.
+    Time reversal: yes.
     The mass matrix is singular: the kinetic terms do not determine all accelerations.
     "#);
 }
