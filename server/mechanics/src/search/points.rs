@@ -17,6 +17,9 @@ use crate::symmetry::{Generator, Status, variations};
 use crate::verdicts::{answer, answer_generator};
 use leastwise_algebra::{Arena, Expr, Function, Node, Rational, Stopped, Verdict};
 
+/// More coordinates than this are not searched: generators of degree 1 have too many coefficients.
+const MAX_COORDINATES: usize = 14;
+
 /// The point symmetries whose charges are constants, each proved; and why there may be others in the ansatz.
 pub(super) fn points(
     cx: &mut Context<'_>,
@@ -46,6 +49,13 @@ fn look(
     if model.coordinates.iter().any(|q| q.members.is_some()) {
         let why = "point symmetries were not looked for: a family is not written out";
         return Ok((Vec::new(), Some(why.into())));
+    }
+    if model.coordinates.is_empty() {
+        return Ok((Vec::new(), None));
+    }
+    if model.coordinates.len() > MAX_COORDINATES {
+        let why = format!("point symmetries were not looked for: there are more than {MAX_COORDINATES} coordinates");
+        return Ok((Vec::new(), Some(why)));
     }
     let (candidates, mut incomplete) = match Kinetic::new(cx, model)? {
         Ok(kinetic) => homothetic(cx, model, &kinetic, scope)?,
