@@ -3,6 +3,7 @@
 use super::positions::Positions;
 use super::worker::View;
 use super::{convert, found};
+use leastwise_analysis::features::hover::Block;
 use leastwise_analysis::features::inlay::{self, Inlay, InlayKind};
 use leastwise_analysis::features::{actions, navigation, outline, rename};
 use leastwise_analysis::report::Finding;
@@ -47,6 +48,7 @@ fn file_name(view: &View<'_>) -> String {
 pub fn hover(view: &mut View<'_>, derived: &Derived, position: lsp::Position) -> Result<Option<lsp::Hover>> {
     let offset = view.positions.offset(position);
     let Some(mut said) = view.session.hover(view.checked, derived, offset) else { return Ok(None) };
+    said.blocks.extend(said.quantity.take().map(Block::Prose));
     said.blocks.extend(found::hover(view, offset));
     let lines = view.shared.settings().hover_lines;
     let content = convert::hover(&said, view.shared.abilities().markdown_hover, lines, &file_name(view));

@@ -152,7 +152,9 @@ impl<'a> Walk<'a> {
         self.level += 1;
         let size = self.kind(f);
         self.level -= 1;
-        if let (Size::Number(form), true) = (&size, self.calls.is_empty()) {
+        // Numbers are what they are.
+        let literal = matches!(f.kind, FormulaKind::Number(_));
+        if let (Size::Number(form), true) = (&size, self.calls.is_empty() && !literal) {
             self.places.push((f.span, form.clone()));
         }
         size

@@ -3,14 +3,17 @@
 use super::writer::{Writer, written};
 use crate::features::place::item_at;
 
-/// Says what the formula around an offset is: its quantity and unit.
-pub(super) fn quantity(w: &mut Writer<'_, '_>, offset: usize) {
-    let Some(dimensions) = &w.checked.dimensions else { return };
-    let Some(item) = item_at(w.checked, offset) else { return };
-    let row = &w.checked.items[item];
-    let Some((span, form)) = dimensions.at(item, offset - row.range.start) else { return };
+/// What the formula around an offset is: its quantity and unit.
+pub(super) fn quantity(w: &Writer<'_, '_>, offset: usize) -> Option<String> {
+    let dimensions = w.checked.dimensions.as_ref()?;
+    let item = item_at(w.checked, offset)?;
+    let (span, form) = dimensions.at(item, offset.checked_sub(w.checked.items[item].range.start)?)?;
     let text = written(w.checked, item, span);
-    let hint = w.checked.symbol(&text).and_then(|s| s.quantity.as_deref());
-    let words = dimensions.words(form, hint);
-    w.prose(format!("`{text}` is {words}."));
+    let declared = w.checked.symbols.iter().find(|s| *s.name == *text);
+    // Its declaration says it already.
+    if declared.is_some_and(|s| s.quantity.is_some()) {
+        return None;
+    }
+    let words = dimensions.words(form, None);
+    Some(format!("`{text}` is {words}."))
 }
