@@ -54,6 +54,7 @@ pub(crate) fn assemble(arena: &mut Arena, epoch: u64, definitions: &Definitions,
         runs: out.runs(),
         system: out.system(),
         findings: findings(&reading),
+        dimensions: reading.dimensions.clone(),
         complete: !items.iter().any(|i| i.failed),
         items,
     };

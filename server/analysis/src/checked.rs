@@ -50,6 +50,8 @@ pub struct Contents {
     pub system: Option<System>,
     /// What was found, in the order of the file.
     pub findings: Vec<Finding>,
+    /// The dimensions of names and formulas, where the model speaks of quantities.
+    pub(crate) dimensions: Option<crate::dimensions::Dimensions>,
     /// Whether every item has its meaning; else verdicts hold for what is left of the model.
     pub complete: bool,
 }

@@ -57,6 +57,7 @@ codes! {
     UNKNOWN_QUANTITY = "unknown-quantity", "a quantity or unit that is not known";
     UNKNOWN_UNIT = "unknown-unit", "a unit that is not known";
     MISSING_UNIT = "missing-unit", "a plain number for a quantity that has a unit";
+    UNLIKE_QUANTITIES = "unlike-quantities", "quantities that are added, compared or asked for, and are not alike";
     UNIT_MISMATCH = "unit-mismatch", "a unit that does not belong to the quantity";
     HERTZ = "hertz", "an angular velocity in Hz, which counts turns";
     FAMILY_VALUES = "family-values", "not as many values as members";

@@ -7,6 +7,7 @@
 use crate::assemble;
 pub use crate::checked::*;
 use crate::codes;
+use crate::dimensions::{self, Dimensions};
 use crate::finding::LocalFinding;
 use crate::include::{self, Files, Inclusion, Source};
 use crate::lower::{Definition, Definitions, Lowered, Lowerer, Meaning, Motion, UNROLLED};
@@ -16,6 +17,7 @@ use crate::uses::uses;
 use leastwise_algebra::{Arena, Budget, Expr};
 use leastwise_grammar::tree::*;
 use leastwise_grammar::{CallableNames, RawItem, callable_names, parse_item, split};
+use leastwise_mechanics::lagrange;
 use std::collections::HashMap;
 use std::hash::{DefaultHasher, Hash, Hasher};
 use std::sync::Arc;
@@ -47,6 +49,7 @@ pub struct Session {
     ids: u64,
     parsed: HashMap<(Arc<str>, u64), (Arc<Parsed>, u64)>,
     definitions: Definitions,
+    sizes: crate::dimensions::Kept,
     lowered: HashMap<u64, (Arc<Lowered>, u64)>,
     /// Items parsed and lowered by the last check, for tests of incrementality.
     pub(crate) work: (usize, usize),
@@ -75,6 +78,8 @@ pub(crate) struct Reading {
     pub failed: Vec<bool>,
     /// Findings with their entries.
     pub findings: Vec<(usize, LocalFinding)>,
+    /// The dimensions of names and formulas, where the model speaks of quantities.
+    pub dimensions: Option<Dimensions>,
 }
 
 impl Session {
@@ -89,6 +94,7 @@ impl Session {
             ids: 0,
             parsed: HashMap::new(),
             definitions: HashMap::new(),
+            sizes: HashMap::new(),
             lowered: HashMap::new(),
             work: (0, 0),
             interrupt: Arc::default(),
@@ -129,6 +135,7 @@ impl Session {
         let mut budget = Budget::new(MODEL_NODES);
         self.resolve(&mut reading, &mut budget);
         self.lower(&mut reading, &mut budget);
+        self.measure(&mut reading);
         names::unused(&mut reading);
         let checked = assemble::assemble(&mut self.arena, self.epoch, &self.definitions, reading);
         self.forget();
@@ -204,7 +211,7 @@ impl Session {
             findings.push((starts[file] + k, finding));
         }
         let meanings = vec![None; entries.len()];
-        Reading { sources, included, entries, scope, meanings, failed, findings }
+        Reading { sources, included, entries, scope, meanings, failed, findings, dimensions: None }
     }
 
     fn parse(&mut self, item: &RawItem, callable: &CallableNames) -> Arc<Parsed> {
@@ -412,6 +419,23 @@ impl Session {
         lowered
     }
 
+    /// Infers and compares dimensions.
+    fn measure(&mut self, reading: &mut Reading) {
+        let key = |reading: &Reading, at: usize| {
+            let mut hasher = DefaultHasher::new();
+            fingerprint(&reading.scope, &reading.entries[at].parsed, &mut hasher);
+            hasher.finish()
+        };
+        let arena = &self.arena;
+        let on_velocities = |reading: &Reading, at: usize| match reading.meanings[at].as_deref().map(|l| &l.meaning) {
+            Some(Meaning::Force { pairs, .. }) => {
+                pairs.iter().any(|(on, _)| lagrange::depends_on_velocities(arena, *on))
+            }
+            _ => false,
+        };
+        reading.dimensions = dimensions::check(reading, &mut self.sizes, self.generation, &key, &on_velocities);
+    }
+
     /// Forgets what has not been used for a while.
     fn forget(&mut self) {
         if !self.generation.is_multiple_of(KEPT) {
@@ -420,6 +444,7 @@ impl Session {
         let oldest = self.generation.saturating_sub(KEPT);
         self.parsed.retain(|_, (_, used)| *used >= oldest);
         self.lowered.retain(|_, (_, used)| *used >= oldest);
+        self.sizes.retain(|_, (_, used)| *used >= oldest);
         self.definitions.retain(|_, d| d.generation >= oldest);
     }
 }

@@ -99,6 +99,7 @@ impl Session {
             memory: &mut desk.memory,
             prints: &mut desk.prints,
             budget: &mut budget,
+            dimensions: checked.dimensions.as_ref(),
         };
         let result = f(&mut maker);
         self.desk = Some(desk);

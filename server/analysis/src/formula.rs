@@ -54,9 +54,12 @@ impl Prints {
         let taken = if budget.left() == 0 { nodes + 1 } else { nodes - budget.left() };
         if taken > nodes && nodes < NODES {
             self.refused.insert(e, nodes);
-            return (Formula { text: layout.text(), plain: String::new(), latex: String::new() }, taken);
+            return (
+                Formula { text: layout.text(), plain: String::new(), latex: String::new(), measured: None },
+                taken,
+            );
         }
-        let f = Formula { text: layout.text(), plain: layout.plain(), latex: layout.latex() };
+        let f = Formula { text: layout.text(), plain: layout.plain(), latex: layout.latex(), measured: None };
         // A print that was cut short is not the one that is wanted next time.
         if !self.interrupt.load(Ordering::Relaxed) {
             self.known.insert(e, (f.clone(), taken));

@@ -6,6 +6,7 @@ pub mod checked;
 pub mod codes;
 pub mod database;
 mod derive;
+mod dimensions;
 pub mod features;
 mod finding;
 mod formula;

@@ -14,6 +14,17 @@ pub struct Formula {
     pub plain: String,
     /// LaTeX, without delimiters.
     pub latex: String,
+    /// What it is, where quantities are declared and it is known.
+    pub measured: Option<Measured>,
+}
+
+/// A quantity and a fitting unit.
+#[derive(Clone, PartialEq, Eq, Debug)]
+pub struct Measured {
+    /// The name of a quantity of this dimension, where there is one.
+    pub quantity: Option<String>,
+    /// A coherent unit: `N·m`; `1` for a number.
+    pub unit: String,
 }
 
 /// A second place that explains a finding.

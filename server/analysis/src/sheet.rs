@@ -2,6 +2,7 @@
 
 use crate::checked::Checked;
 use crate::derive::{Derived, total};
+use crate::dimensions::Dimensions;
 use crate::formula::Prints;
 use crate::insights::{Insights, insights};
 use crate::report::{
@@ -27,6 +28,8 @@ pub(crate) struct Maker<'a> {
     pub memory: &'a mut Memory,
     pub prints: &'a mut Prints,
     pub budget: &'a mut Budget,
+    /// The dimensions of the model's names, where it speaks of quantities.
+    pub dimensions: Option<&'a Dimensions>,
 }
 
 impl Maker<'_> {
@@ -35,7 +38,13 @@ impl Maker<'_> {
     }
 
     pub fn print(&mut self, e: Expr) -> Formula {
-        self.prints.formula(self.arena, e)
+        self.print_as(e, None)
+    }
+
+    /// The same of a quantity that has a name of its own among those of its dimension.
+    fn print_as(&mut self, e: Expr, hint: Option<&str>) -> Formula {
+        let measured = self.dimensions.and_then(|d| d.measured(self.arena, e, hint));
+        Formula { measured, ..self.prints.formula(self.arena, e) }
     }
 
     fn print_parts(&mut self, parts: &Parts) -> Formula {
@@ -236,11 +245,14 @@ impl Maker<'_> {
         let (ranges, rows) = aligned(cx.arena, q, &lists, cx.budget)?;
         for (k, range) in ranges.iter().enumerate() {
             let at = |i: usize| rows[i][k];
+            // What acts on an angle is a torque.
+            let angle = matches!(checked.quantity_of(q.symbol).as_deref(), Some("angle" | "twist"));
+            let act = angle.then_some("torque");
             let by_term = names
                 .iter()
                 .enumerate()
                 .filter(|(n, _)| at(3 + n) != Arena::ZERO)
-                .map(|(n, name)| (name.clone(), self.print(at(3 + n))))
+                .map(|(n, name)| (name.clone(), self.print_as(at(3 + n), act)))
                 .collect();
             let (name, members) = match (range, q.members) {
                 (Some((a, b)), Some(_)) if a == b => (format!("{}[{a}]", self.arena.name(q.symbol)), None),
@@ -265,9 +277,9 @@ impl Maker<'_> {
                 },
                 momentum_conserved: verdict.momentum.is_proved() && !reaction,
                 momentum: self.print(at(0)),
-                force: self.print(if cyclic { Arena::ZERO } else { at(1) }),
-                equation: self.print(at(2)),
-                reaction: reaction.then(|| self.print(at(3 + names.len()))),
+                force: self.print_as(if cyclic { Arena::ZERO } else { at(1) }, act),
+                equation: self.print_as(at(2), act),
+                reaction: reaction.then(|| self.print_as(at(3 + names.len()), act)),
                 by_term,
             });
         }

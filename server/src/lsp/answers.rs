@@ -3,6 +3,7 @@
 use super::positions::Positions;
 use super::worker::View;
 use super::{convert, found};
+use leastwise_analysis::features::hover::Block;
 use leastwise_analysis::features::inlay::{self, Inlay, InlayKind};
 use leastwise_analysis::features::{actions, navigation, outline, rename};
 use leastwise_analysis::report::Finding;
@@ -47,6 +48,7 @@ fn file_name(view: &View<'_>) -> String {
 pub fn hover(view: &mut View<'_>, derived: &Derived, position: lsp::Position) -> Result<Option<lsp::Hover>> {
     let offset = view.positions.offset(position);
     let Some(mut said) = view.session.hover(view.checked, derived, offset) else { return Ok(None) };
+    said.blocks.extend(said.quantity.take().map(Block::Prose));
     said.blocks.extend(found::hover(view, offset));
     let lines = view.shared.settings().hover_lines;
     let content = convert::hover(&said, view.shared.abilities().markdown_hover, lines, &file_name(view));
@@ -68,16 +70,17 @@ pub fn hints(view: &mut View<'_>, derived: &Derived, range: lsp::Range) -> Resul
         InlayKind::Claim => settings.claim_hints,
         InlayKind::Summary => settings.summary_hint,
         InlayKind::Search => settings.search_hint,
+        InlayKind::Quantity => settings.quantity_hints,
     };
     let resolves = view.shared.abilities().resolves_hints;
     let hint = |h: &Inlay| {
         lsp::InlayHint {
         position: view.positions.position(h.offset),
         label: lsp::InlayHintLabel::String(cut(&h.label, settings.hint_length)),
-        kind: None,
+        kind: (h.kind == InlayKind::Quantity).then_some(lsp::InlayHintKind::TYPE),
         text_edits: None,
         tooltip: None,
-        padding_left: Some(true),
+        padding_left: Some(h.kind != InlayKind::Quantity),
         padding_right: None,
         data: resolves.then(|| {
             let at = view.positions.position(h.offset);
@@ -94,6 +97,7 @@ fn number(kind: InlayKind) -> u64 {
         InlayKind::Claim => 1,
         InlayKind::Summary => 2,
         InlayKind::Search => 3,
+        InlayKind::Quantity => 4,
     }
 }
 

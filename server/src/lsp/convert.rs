@@ -306,7 +306,7 @@ mod tests {
             Block::Formulas(vec!["p_φ = m r² φ̇".into(), "F = 0".into()]),
             Block::Prose("azimuth".into()),
         ];
-        hover(&Hover { range: 0..1, blocks }, markdown, lines, "swing.least").value
+        hover(&Hover { range: 0..1, blocks, quantity: None }, markdown, lines, "swing.least").value
     }
 
     #[test]

@@ -11,6 +11,8 @@ pub struct Settings {
     pub claim_hints: bool,
     /// The hint behind the last term.
     pub summary_hint: bool,
+    /// Hints behind names without a declared quantity.
+    pub quantity_hints: bool,
     /// The hint on what a search found.
     pub search_hint: bool,
     /// The longest hint, in characters.
@@ -33,6 +35,7 @@ impl Default for Settings {
             momentum_hints: true,
             claim_hints: true,
             summary_hint: true,
+            quantity_hints: true,
             search_hint: true,
             hint_length: 60,
             hover_lines: 40,
@@ -91,6 +94,7 @@ impl Settings {
             "hints.momentum" => return switch(&mut self.momentum_hints),
             "hints.claims" => return switch(&mut self.claim_hints),
             "hints.summary" => return switch(&mut self.summary_hint),
+            "hints.quantities" => return switch(&mut self.quantity_hints),
             "hints.search" => return switch(&mut self.search_hint),
             "search.run" => return switch(&mut self.search_run),
             "diagnostics.readings" => return switch(&mut self.readings),

@@ -7,7 +7,7 @@ use leastwise_grammar::tree::Severity;
 
 /// A formula from its three spellings.
 pub fn formula(text: &str, plain: &str, latex: &str) -> Formula {
-    Formula { text: text.into(), plain: plain.into(), latex: latex.into() }
+    Formula { text: text.into(), plain: plain.into(), latex: latex.into(), measured: None }
 }
 
 fn alike(text: &str) -> Formula {

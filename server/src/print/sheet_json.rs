@@ -32,7 +32,12 @@ pub fn sheet(sheet: &Sheet, findings: &[Finding], lines: &Lines<'_>) -> Value {
 }
 
 fn formula(f: &Formula) -> Value {
-    json!({ "text": f.text, "plain": f.plain, "latex": f.latex })
+    let mut object = json!({ "text": f.text, "plain": f.plain, "latex": f.latex });
+    if let (Some(m), Some(object)) = (&f.measured, object.as_object_mut()) {
+        object.insert("quantity".into(), json!(m.quantity));
+        object.insert("unit".into(), json!(m.unit));
+    }
+    object
 }
 
 /// Formulas by name, in order.

@@ -10,7 +10,7 @@ mod items;
 mod members;
 mod motion;
 mod parts;
-mod products;
+pub(crate) mod products;
 mod runs;
 mod sums;
 mod transformations;

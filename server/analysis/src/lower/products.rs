@@ -9,13 +9,13 @@ use leastwise_grammar::tree::*;
 
 /// What stands before a factor.
 #[derive(Clone, Copy, PartialEq, Debug)]
-pub(super) enum Operator {
+pub(crate) enum Operator {
     Times(Times),
     Over,
 }
 
 /// The factors of a product from left to right, each with what stands before it.
-pub(super) fn factors(f: &Formula) -> Vec<(Operator, &Formula)> {
+pub(crate) fn factors(f: &Formula) -> Vec<(Operator, &Formula)> {
     let mut out = Vec::new();
     let mut at = f;
     loop {
@@ -37,7 +37,7 @@ pub(super) fn factors(f: &Formula) -> Vec<(Operator, &Formula)> {
 }
 
 /// The summands of a sum from left to right, each with whether it is subtracted. A long sum is a balanced tree.
-pub(super) fn summands(f: &Formula) -> Vec<(bool, &Formula)> {
+pub(crate) fn summands(f: &Formula) -> Vec<(bool, &Formula)> {
     let mut out = Vec::new();
     let mut stack = vec![(false, f)];
     while let Some((minus, f)) = stack.pop() {

@@ -1,5 +1,6 @@
 //! Rules about formulas.
 
+use crate::codes;
 use crate::fixture::check;
 
 /// The rest of a model around one formula.
@@ -209,7 +210,8 @@ potential A = k x cos Ω t
 potential B = k x cos α t + cos Ω sin α + cos(Ω t)
 ",
     );
-    let fix = &checked.findings[0].fixes[0];
+    let reading = checked.findings.iter().find(|f| f.code == codes::READ_FUNCTION_OF_PARAMETER).expect("a reading");
+    let fix = &reading.fixes[0];
     assert_eq!((fix.edits[0].1.as_str(), fix.edits[1].1.as_str()), ("(", ")"));
 }
 

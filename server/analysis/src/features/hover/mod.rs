@@ -7,6 +7,7 @@ mod charge;
 mod claim;
 mod coordinate;
 mod name;
+mod quantity;
 mod system;
 mod term;
 mod word;
@@ -29,6 +30,8 @@ pub struct Hover {
     pub range: Range<usize>,
     /// Paragraphs and formulas in order.
     pub blocks: Vec<Block>,
+    /// What the smallest formula at the place is: its quantity and unit. It comes last.
+    pub quantity: Option<String>,
 }
 
 /// A piece of a hover.
@@ -46,12 +49,13 @@ impl Session {
     pub fn hover(&mut self, checked: &Checked, derived: &Derived, offset: usize) -> Option<Hover> {
         let place = place_at(checked, offset).or_else(|| enclosing(checked, offset))?;
         let range = place.range.clone();
-        let blocks = self.with_maker(checked, |maker| {
+        let (blocks, quantity) = self.with_maker(checked, |maker| {
             let mut w = Writer::new(maker, checked, derived);
             describe(&mut w, &place);
-            w.blocks
+            let quantity = quantity::quantity(&w, offset);
+            (w.blocks, quantity)
         });
-        (!blocks.is_empty()).then_some(Hover { range, blocks })
+        (!blocks.is_empty()).then_some(Hover { range, blocks, quantity })
     }
 }
 

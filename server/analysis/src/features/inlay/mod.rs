@@ -6,6 +6,7 @@
 mod carry;
 mod claims;
 mod momenta;
+mod quantities;
 mod summary;
 
 pub use carry::carried;
@@ -45,6 +46,8 @@ pub enum InlayKind {
     Summary,
     /// What a search found, behind the last term.
     Search,
+    /// The unit of a name whose quantity is not declared.
+    Quantity,
 }
 
 impl Session {
@@ -60,6 +63,7 @@ impl Session {
             momenta::hints(&mut desk, derived);
             claims::hints(&mut desk, derived);
             summary::hint(&mut desk, derived);
+            quantities::hints(&mut desk);
             desk.out
         });
         out.sort_by_key(|h| h.offset);
