@@ -80,6 +80,8 @@ pub(crate) struct Reading {
     pub findings: Vec<(usize, LocalFinding)>,
     /// The dimensions of names and formulas, where the model speaks of quantities.
     pub dimensions: Option<Dimensions>,
+    /// All names, each after those that it needs.
+    pub order: Vec<usize>,
 }
 
 impl Session {
@@ -211,7 +213,7 @@ impl Session {
             findings.push((starts[file] + k, finding));
         }
         let meanings = vec![None; entries.len()];
-        Reading { sources, included, entries, scope, meanings, failed, findings, dimensions: None }
+        Reading { sources, included, entries, scope, meanings, failed, findings, dimensions: None, order: Vec::new() }
     }
 
     fn parse(&mut self, item: &RawItem, callable: &CallableNames) -> Arc<Parsed> {
@@ -233,6 +235,7 @@ impl Session {
     /// Ranges, fingerprints and values of all names, each after those that it needs.
     fn resolve(&mut self, reading: &mut Reading, budget: &mut Budget) {
         let order = reading.scope.order(&reading.entries);
+        reading.order = order.clone();
         let parsed: Vec<Option<Arc<Parsed>>> = reading.entries.iter().map(|e| Some(e.parsed.clone())).collect();
         for at in order {
             let decl = &reading.scope.decls[at];

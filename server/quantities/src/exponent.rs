@@ -79,6 +79,10 @@ impl Exponent {
 
     /// The product.
     pub fn times(self, other: Exponent) -> Option<Exponent> {
+        if self.den == 1 && other.den == 1 {
+            let num = self.num.checked_mul(other.num).filter(|n| *n != i32::MIN)?;
+            return Some(Exponent { num, den: 1 });
+        }
         Exponent::new(self.num as i64 * other.num as i64, self.den as i64 * other.den as i64)
     }
 

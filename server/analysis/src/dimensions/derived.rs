@@ -60,9 +60,7 @@ impl Walk<'_> {
         let d = match info.role {
             Role::Time => Some(self.dimensions.units.project(Dimension::of(Base::Time))),
             Role::Index => Some(Dimension::ONE),
-            Role::Coordinate | Role::Parameter | Role::Input | Role::Function => {
-                self.dimensions.names.get(&*info.name).and_then(|f| f.known())
-            }
+            Role::Coordinate | Role::Parameter | Role::Input | Role::Function => self.dimensions.of_name(&info.name),
             _ => None,
         };
         let time = self.dimensions.units.project(Dimension::of(Base::Time));

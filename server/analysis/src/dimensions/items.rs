@@ -76,7 +76,8 @@ pub(super) fn ask(
     }
     walk.places.sort_by_key(|(span, _)| (span.start, std::cmp::Reverse(span.end)));
     walk.places.dedup_by_key(|(span, _)| *span);
-    Asked { keys: walk.keys, wishes: walk.wishes, places: walk.places, shape: outline(&shape) }
+    let declared = declared(parsed);
+    Asked { keys: walk.keys, wishes: walk.wishes, places: walk.places, declared, shape: outline(&shape) }
 }
 
 /// The shape without its unknowns, which are the item's own.
@@ -174,12 +175,12 @@ impl Walk<'_> {
 }
 
 /// What the declarations of an item say: the name, what it is, where it says so.
-pub(super) fn declared(parsed: &Parsed) -> Vec<(Key, Dimension, Span)> {
+fn declared(parsed: &Parsed) -> Vec<(Arc<str>, Dimension, Span)> {
     let dimension = |unit: &UnitText| crate::quantities::dimension(unit).and_then(exact);
     let mut out = Vec::new();
     let mut say = |name: &Name, unit: Option<&UnitText>| {
         if let Some((unit, d)) = unit.and_then(|u| Some((u, dimension(u)?))) {
-            out.push((Key::Name(name.text.as_str().into(), 0), d, unit.span));
+            out.push((name.text.as_str().into(), d, unit.span));
         }
     };
     match &parsed.item.kind {
@@ -196,6 +197,14 @@ pub(super) fn declared(parsed: &Parsed) -> Vec<(Key, Dimension, Span)> {
         _ => {}
     }
     out
+}
+
+/// Whether an item may say what names are.
+pub(super) fn declares(kind: &ItemKind) -> bool {
+    matches!(
+        kind,
+        ItemKind::Coordinate { .. } | ItemKind::Input { .. } | ItemKind::Parameter(_) | ItemKind::Function { .. }
+    )
 }
 
 /// From exponents in sixtieths.

@@ -20,7 +20,7 @@ use crate::report::Measured;
 use crate::scope::{Parsed, SymbolKind};
 use leastwise_algebra::{Arena, Expr};
 use leastwise_grammar::tree::*;
-use leastwise_quantities::unify::{Demand, Form, Solution, Unknown, solve};
+use leastwise_quantities::unify::{Demand, Form, Unknown, solve};
 use leastwise_quantities::{Dimension, Exponent};
 use size::Size;
 use std::collections::HashMap;
@@ -109,7 +109,10 @@ pub(crate) struct Wish {
 pub(crate) struct Asked {
     pub keys: Vec<Key>,
     pub wishes: Vec<Wish>,
+    /// Sub-formulas, outer ones first.
     pub places: Vec<(Span, Form)>,
+    /// What its declarations say: a name, what it is, where it says so.
+    declared: Vec<(Arc<str>, Dimension, Span)>,
     /// Of a definition: the shape of its value.
     shape: Size,
 }
@@ -120,15 +123,24 @@ pub(crate) type Kept = HashMap<u64, (Arc<Asked>, u64)>;
 /// The dimensions of a model.
 #[derive(Clone, Default, Debug)]
 pub(crate) struct Dimensions {
-    /// Of each name: for a vector of its first component.
-    names: HashMap<Arc<str>, Form>,
-    /// Of each entry: its sub-formulas, outer ones first.
-    places: HashMap<usize, Vec<(Span, Form)>>,
-    /// The unknowns that are free, with their names.
-    free: HashMap<Unknown, Key>,
+    /// What each entry asks, with the numbers of its unknowns.
+    entries: Vec<Entry>,
+    /// The unknowns.
+    keys: Vec<(Option<usize>, Key)>,
+    numbers: HashMap<(Option<usize>, Key), Unknown>,
+    /// Each unknown in the free ones.
+    values: Vec<Form>,
     units: Units,
     /// The first entry of the model's own file.
     own: usize,
+}
+
+/// An entry in the system.
+#[derive(Clone, Debug)]
+struct Entry {
+    at: usize,
+    asked: Arc<Asked>,
+    numbers: Vec<Unknown>,
 }
 
 /// A demand with its reason and its item.
@@ -143,6 +155,7 @@ pub(super) struct System {
     keys: Vec<(Option<usize>, Key)>,
     demands: Vec<Demand>,
     reasons: Vec<Reason>,
+    entries: Vec<Entry>,
 }
 
 impl System {
@@ -170,18 +183,21 @@ pub(crate) fn check(
     fingerprint: &dyn Fn(&Reading, usize) -> u64,
     on_velocities: &dyn Fn(&Reading, usize) -> bool,
 ) -> Option<Dimensions> {
-    let units = Units::of(reading)?;
+    if Units::are_off(reading) {
+        return None;
+    }
     let sources: Vec<Arc<Parsed>> = reading.entries.iter().map(|e| e.parsed.clone()).collect();
     let mut shapes: HashMap<Arc<str>, Size> = HashMap::new();
     let mut asked: Vec<(usize, Arc<Asked>)> = Vec::new();
     // Definitions after those that they need, then all others.
-    let order = reading.scope.order(&reading.entries);
-    let definitions = order.iter().map(|&d| &reading.scope.decls[d]);
+    let definitions = reading.order.iter().map(|&d| &reading.scope.decls[d]);
     let definitions: Vec<usize> =
         definitions.filter(|d| d.kind == SymbolKind::Definition && !d.failed).filter_map(|d| d.entry).collect();
-    let others = (0..reading.entries.len())
-        .filter(|&k| reading.entries[k].file == 0 && !reading.failed[k])
-        .filter(|&k| !matches!(reading.entries[k].parsed.item.kind, ItemKind::Let { .. }));
+    let others = (0..reading.entries.len()).filter(|&k| {
+        let kind = &reading.entries[k].parsed.item.kind;
+        let needed = reading.entries[k].file == 0 && !reading.failed[k] || items::declares(kind);
+        needed && !matches!(kind, ItemKind::Let { .. })
+    });
     for at in definitions.into_iter().chain(others) {
         let key = fingerprint(reading, at);
         let known = kept.get_mut(&key).map(|(a, used)| {
@@ -201,22 +217,31 @@ pub(crate) fn check(
         }
         asked.push((at, result));
     }
+    if asked.iter().all(|(_, a)| a.declared.is_empty()) {
+        return None;
+    }
+    let units = Units::of(reading, &asked);
     // In the order of the file: what is asked later is blamed first.
     asked.sort_by_key(|(at, _)| *at);
-    let (system, places) = system(reading, &asked, &units);
+    let system = system(reading, asked, &units);
     let solution = solve(system.keys.len(), &system.demands);
-    told::tell(reading, &system, &solution, &places, &units);
+    if !solution.slips.is_empty() {
+        told::tell(reading, &system, &solution, &units);
+    }
     let own = reading.entries.iter().position(|e| e.file == 0).unwrap_or(0);
-    Some(Dimensions { own, ..collect(&system, &solution, places, units) })
+    let System { numbers, keys, entries, .. } = system;
+    Some(Dimensions { entries, keys, numbers, values: solution.values, units, own })
 }
 
 /// All demands in one numbering.
-fn system(
-    reading: &Reading,
-    asked: &[(usize, Arc<Asked>)],
-    units: &Units,
-) -> (System, HashMap<usize, Vec<(Span, Form)>>) {
-    let mut system = System { numbers: HashMap::new(), keys: Vec::new(), demands: Vec::new(), reasons: Vec::new() };
+fn system(reading: &Reading, asked: Vec<(usize, Arc<Asked>)>, units: &Units) -> System {
+    let mut system = System {
+        numbers: HashMap::new(),
+        keys: Vec::new(),
+        demands: Vec::new(),
+        reasons: Vec::new(),
+        entries: Vec::new(),
+    };
     // L comes first: it is blamed only where that spares more than one term.
     let lagrangian = system.number(0, &Key::Lagrangian);
     if let Some(gap) = Form::unknown(lagrangian).over(&units.project(energy()).into()) {
@@ -228,19 +253,15 @@ fn system(
             system.number(0, &Key::Name(decl.name.clone(), 0));
         }
     }
-    let mut places = HashMap::new();
-    let mut next = asked.iter().peekable();
-    for (at, entry) in reading.entries.iter().enumerate() {
-        for (key, dimension, span) in items::declared(&entry.parsed) {
-            let Key::Name(name, _) = &key else { continue };
-            let name = name.clone();
-            let own = reading.scope.get(&name).is_some_and(|d| d.entry == Some(at));
-            let number = system.number(at, &key);
-            if let Some(gap) = Form::unknown(number).over(&units.project(dimension).into()).filter(|_| own) {
-                system.ask(at, gap, false, Why::Declared { span, name });
+    for (at, asked) in asked {
+        for (name, dimension, span) in &asked.declared {
+            let own = reading.scope.get(name).is_some_and(|d| d.entry == Some(at));
+            let number = system.number(at, &Key::Name(name.clone(), 0));
+            if let Some(gap) = Form::unknown(number).over(&units.project(*dimension).into()).filter(|_| own) {
+                system.ask(at, gap, false, Why::Declared { span: *span, name: name.clone() });
             }
         }
-        if let ItemKind::Function { declared, formals, .. } = &entry.parsed.item.kind {
+        if let ItemKind::Function { declared, formals, .. } = &reading.entries[at].parsed.item.kind {
             let names: Vec<Arc<str>> = formals.iter().map(|f| f.text.as_str().into()).collect();
             if let Some(form) = items::of_time(&names) {
                 let name: Arc<str> = declared.name.text.as_str().into();
@@ -250,58 +271,44 @@ fn system(
                 }
             }
         }
-        let Some((_, asked)) = next.next_if(|(k, _)| *k == at) else { continue };
         let numbers: Vec<Unknown> = asked.keys.iter().map(|k| system.number(at, k)).collect();
         for wish in &asked.wishes {
             let gap = units.form(&wish.gap.renumbered(&numbers));
             system.ask(at, gap, wish.firm, wish.why.clone());
         }
-        let forms = asked.places.iter().map(|(span, f)| (*span, units.form(&f.renumbered(&numbers))));
-        places.insert(at, forms.collect());
+        system.entries.push(Entry { at, asked, numbers });
     }
-    (system, places)
+    system
 }
 
-fn collect(
-    system: &System,
-    solution: &Solution,
-    places: HashMap<usize, Vec<(Span, Form)>>,
-    units: Units,
-) -> Dimensions {
-    let mut names = HashMap::new();
-    for ((_, key), value) in system.keys.iter().zip(&solution.values) {
-        if let Key::Name(name, 0) = key {
-            names.insert(name.clone(), value.clone());
-        }
-    }
-    let known = |f: &Form| f.substituted(&solution.values).unwrap_or_else(|| f.clone());
-    let places = places.into_iter().map(|(at, list)| (at, list.iter().map(|(s, f)| (*s, known(f))).collect()));
-    let free = system.keys.iter().enumerate().map(|(k, (_, key))| (k, key.clone()));
-    Dimensions { names, places: places.collect(), free: free.collect(), units, own: 0 }
+/// The dimension of a sub-formula, with the values of the unknowns.
+fn place(entry: &Entry, form: &Form, values: &[Form], units: &Units) -> Option<Form> {
+    units.form(&form.renumbered(&entry.numbers)).substituted(values)
 }
 
 impl Dimensions {
     /// The dimension of a name, where it is known.
-    #[cfg(test)]
     pub fn of_name(&self, name: &str) -> Option<Dimension> {
-        self.names.get(name)?.known()
+        self.form_of_name(name)?.known()
     }
 
-    /// The dimension of a name, with what it depends on.
+    /// The dimension of a name, with what it depends on; of a vector that of its first component.
     pub fn form_of_name(&self, name: &str) -> Option<&Form> {
-        self.names.get(name)
+        self.values.get(*self.numbers.get(&(None, Key::Name(name.into(), 0)))?)
     }
 
     /// What an unknown is.
     pub fn key(&self, unknown: Unknown) -> Option<&Key> {
-        self.free.get(&unknown)
+        self.keys.get(unknown).map(|k| &k.1)
     }
 
     /// The smallest sub-formula of one of the model's own items around an offset in it, and its dimension.
-    pub fn at(&self, item: usize, offset: usize) -> Option<(Span, &Form)> {
-        let list = self.places.get(&(self.own + item))?;
-        let around = list.iter().filter(|(s, _)| s.range().contains(&offset) || s.end as usize == offset);
-        around.min_by_key(|(s, _)| s.end - s.start).map(|(s, f)| (*s, f))
+    pub fn at(&self, item: usize, offset: usize) -> Option<(Span, Form)> {
+        let entry = self.entries.iter().find(|e| e.at == self.own + item)?;
+        let around = entry.asked.places.iter();
+        let around = around.filter(|(s, _)| s.range().contains(&offset) || s.end as usize == offset);
+        let (span, form) = around.min_by_key(|(s, _)| s.end - s.start)?;
+        Some((*span, place(entry, form, &self.values, &self.units)?))
     }
 
     /// A dimension in words: `a stiffness (N/m)`; where it is not determined, what it depends on.

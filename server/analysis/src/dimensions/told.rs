@@ -1,15 +1,14 @@
 //! Conflicts of dimensions in words: at the smallest formula that is wrong, both sides named, where each comes from.
 
 use super::units::Units;
-use super::{Key, System, Why, report};
+use super::{Key, System, Why, place, report};
 use crate::codes;
 use crate::database::Reading;
 use crate::finding::{LocalFinding, Place};
 use crate::scope::SymbolKind;
 use leastwise_grammar::tree::*;
-use leastwise_quantities::unify::{Form, Slip, Solution};
+use leastwise_quantities::unify::{Slip, Solution};
 use leastwise_quantities::{Base, Dimension, Exponent, familiar, in_words};
-use std::collections::HashMap;
 
 /// Reasons that are shown beside a conflict.
 const SHOWN: usize = 4;
@@ -28,13 +27,11 @@ pub(super) fn words(dimension: Dimension, hint: Option<&str>) -> String {
     if name == unit { name } else { format!("{name} ({unit})") }
 }
 
-type Places = HashMap<usize, Vec<(Span, Form)>>;
-
 /// Adds one finding for each slip.
-pub(super) fn tell(reading: &mut Reading, system: &System, solution: &Solution, places: &Places, units: &Units) {
+pub(super) fn tell(reading: &mut Reading, system: &System, solution: &Solution, units: &Units) {
     let mut found = Vec::new();
     for slip in &solution.slips {
-        let teller = Teller { reading, system, solution, places, units };
+        let teller = Teller { reading, system, solution, units };
         if let Some(f) = teller.finding(slip) {
             found.push(f);
         }
@@ -48,16 +45,15 @@ struct Teller<'a> {
     reading: &'a Reading,
     system: &'a System,
     solution: &'a Solution,
-    places: &'a Places,
     units: &'a Units,
 }
 
 impl Teller<'_> {
     /// The dimension of a sub-formula, where it is known.
     fn at(&self, entry: usize, span: Span) -> Option<Dimension> {
-        let list = self.places.get(&entry)?;
-        let form = list.iter().find(|(s, _)| *s == span).map(|(_, f)| f)?;
-        form.substituted(&self.solution.values)?.known()
+        let entry = self.system.entries.iter().find(|e| e.at == entry)?;
+        let (_, form) = entry.asked.places.iter().find(|(s, _)| *s == span)?;
+        place(entry, form, &self.solution.values, self.units)?.known()
     }
 
     fn words(&self, dimension: Dimension, hint: Option<&str>) -> String {

@@ -1,9 +1,11 @@
 //! What a model's options make of dimensions: nothing, or dimensions modulo some that are set to one.
 
+use super::Asked;
 use crate::database::Reading;
 use leastwise_grammar::tree::*;
 use leastwise_quantities::unify::Form;
 use leastwise_quantities::{Dimension, Exponent};
+use std::sync::Arc;
 
 /// The dimensions that are set to one, in echelon form: each with the base quantity that it replaces.
 #[derive(Clone, PartialEq, Eq, Default, Debug)]
@@ -12,35 +14,26 @@ pub(crate) struct Units {
 }
 
 impl Units {
-    /// `None` where the model speaks of no quantities, or says that it has none.
-    pub fn of(reading: &Reading) -> Option<Units> {
+    /// Whether the model says that it has no quantities.
+    pub fn are_off(reading: &Reading) -> bool {
+        options(reading).any(|o| matches!(o, SystemOption::Dimensionless(_)))
+    }
+
+    /// What a model's options set to one.
+    pub fn of(reading: &Reading, asked: &[(usize, Arc<Asked>)]) -> Units {
         let mut units = Units::default();
-        let mut spoken = false;
-        for entry in &reading.entries {
-            spoken |= !super::items::declared(&entry.parsed).is_empty();
-            let ItemKind::System { options, .. } = &entry.parsed.item.kind else { continue };
-            if entry.file != 0 {
-                continue;
-            }
-            for option in options {
-                match option {
-                    SystemOption::Dimensionless(_) => return None,
-                    SystemOption::With(names) => {
-                        for name in names {
-                            units.set(reading, name);
-                        }
-                    }
-                }
+        for option in options(reading) {
+            if let SystemOption::With(names) = option {
+                names.iter().for_each(|name| units.set(asked, name));
             }
         }
-        spoken.then_some(units)
+        units
     }
 
     /// Sets a quantity to one: a declared parameter, or else a constant of nature by its usual symbol.
-    fn set(&mut self, reading: &Reading, name: &Name) {
-        let declared = reading.entries.iter().flat_map(|e| super::items::declared(&e.parsed));
-        let own = declared.into_iter().find(|(key, ..)| matches!(key, super::Key::Name(n, 0) if **n == *name.text));
-        let dimension = own.map(|(_, d, _)| d).or_else(|| constant(&name.text));
+    fn set(&mut self, asked: &[(usize, Arc<Asked>)], name: &Name) {
+        let own = asked.iter().flat_map(|(_, a)| &a.declared).find(|(n, ..)| **n == *name.text);
+        let dimension = own.map(|(_, d, _)| *d).or_else(|| constant(&name.text));
         let Some(d) = dimension.map(|d| self.project(d)) else { return };
         let Some(at) = (0..7).rev().find(|&k| !d.exponents()[k].is_zero()) else { return };
         // The earlier ones are freed from the new one's base quantity.
@@ -71,6 +64,15 @@ impl Units {
         let change = self.project(form.factor()).over(form.factor());
         change.and_then(|d| form.times(&d.into())).unwrap_or_else(|| form.clone())
     }
+}
+
+/// The options of the model's own `system` items.
+fn options(reading: &Reading) -> impl Iterator<Item = &SystemOption> {
+    let own = reading.entries.iter().filter(|e| e.file == 0);
+    own.flat_map(|e| match &e.parsed.item.kind {
+        ItemKind::System { options, .. } => options.as_slice(),
+        _ => &[],
+    })
 }
 
 /// The dimensions of the constants that are commonly set to one.

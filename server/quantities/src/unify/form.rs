@@ -56,7 +56,13 @@ impl Form {
             return Some(self.clone());
         }
         let unknowns = combine(&self.unknowns, &other.unknowns, exponent)?;
-        Some(Form { known: self.known.times(other.known.pow(exponent)?)?, unknowns })
+        let known = match other.known.is_one() {
+            true => self.known,
+            false if exponent == Exponent::ONE => self.known.times(other.known)?,
+            false if exponent == Exponent::whole(-1) => self.known.over(other.known)?,
+            false => self.known.times(other.known.pow(exponent)?)?,
+        };
+        Some(Form { known, unknowns })
     }
 
     /// The product.

@@ -14,6 +14,6 @@ pub(super) fn quantity(w: &Writer<'_, '_>, offset: usize) -> Option<String> {
     if declared.is_some_and(|s| s.quantity.is_some()) {
         return None;
     }
-    let words = dimensions.words(form, None);
+    let words = dimensions.words(&form, None);
     Some(format!("`{text}` is {words}."))
 }
