@@ -88,7 +88,7 @@ fn a_free_particle_in_space() {
             "y → 1: m ẏ",
             "z → 1: m ż",
             "x → -y, y → x: m (x ẏ - y ẋ)",
-            "x → -z, z → x: m (x ż - z ẋ)",
+            "x → z, z → -x: m (z ẋ - x ż)",
             "y → -z, z → y: m (y ż - z ẏ)",
             "t → 1: -1/2 m (ẋ² + ẏ² + ż²)",
             "x → t: m (t ẋ - x)",
@@ -127,7 +127,7 @@ fn a_planet_in_space() {
         2,
         &[
             "x → -y, y → x: m (x ẏ - y ẋ)",
-            "x → -z, z → x: m (x ż - z ẋ)",
+            "x → z, z → -x: m (z ẋ - x ż)",
             "y → -z, z → y: m (y ż - z ẏ)",
             "t → 1: k/√(x² + y² + z²) - 1/2 m (ẋ² + ẏ² + ż²)",
         ],
