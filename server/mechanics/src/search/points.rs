@@ -373,7 +373,7 @@ fn combined(cx: &mut Context<'_>, candidates: &[Candidate], c: &[Expr]) -> Resul
     let polynomial = out.iter().all(|&e| !has_angle(cx, e));
     // About the second of three axes from the third to the first: the right hand's rule.
     let axis: Vec<usize> = (0..n).filter(|&i| out[i + 1] != Arena::ZERO).map(|i| i % 3).collect();
-    let second = n % 3 == 0 && axis.contains(&0) && axis.contains(&2) && !axis.contains(&1);
+    let second = n.is_multiple_of(3) && axis.contains(&0) && axis.contains(&2) && !axis.contains(&1);
     let mut moved = out.iter().filter(|&&e| e != Arena::ZERO).copied();
     let telling = if polynomial && !second { moved.next_back() } else { moved.next() }.unwrap_or(Arena::ZERO);
     let telling = cx.arena.expand(telling, cx.budget)?;
