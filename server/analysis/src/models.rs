@@ -6,7 +6,7 @@ use crate::include::Files;
 use std::path::{Path, PathBuf};
 
 /// The files of a folder.
-struct Disk;
+pub(crate) struct Disk;
 
 impl Files for Disk {
     fn read(&self, from: &str, include: &str) -> Result<(String, String), String> {
@@ -16,7 +16,8 @@ impl Files for Disk {
     }
 }
 
-fn models(folder: &Path) -> Vec<PathBuf> {
+/// The models of a folder, by name.
+pub(crate) fn models(folder: &Path) -> Vec<PathBuf> {
     let Ok(entries) = std::fs::read_dir(folder) else { return Vec::new() };
     let mut paths: Vec<PathBuf> = entries.flatten().map(|e| e.path()).collect();
     paths.retain(|p| p.extension().is_some_and(|e| e == "least"));

@@ -3,20 +3,10 @@
 use crate::checked::Checked;
 use crate::codes;
 use crate::database::Session;
-use crate::include::Files;
+use crate::models::{Disk, models};
 use leastwise_grammar::tree::*;
 use std::ops::Range;
 use std::path::{Path, PathBuf};
-
-struct Disk;
-
-impl Files for Disk {
-    fn read(&self, from: &str, include: &str) -> Result<(String, String), String> {
-        let path = Path::new(from).parent().unwrap_or(Path::new("")).join(include);
-        let text = std::fs::read_to_string(&path).map_err(|e| e.to_string())?;
-        Ok((path.to_string_lossy().into_owned(), text))
-    }
-}
 
 /// An edit with the range, in the edited text, of the product that it is in.
 struct Slip {
@@ -84,12 +74,7 @@ fn sized(checked: &Checked, name: &str) -> bool {
 }
 
 fn folder(path: &str) -> Vec<PathBuf> {
-    let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join(path);
-    let Ok(entries) = std::fs::read_dir(folder) else { return Vec::new() };
-    let mut paths: Vec<PathBuf> = entries.flatten().map(|e| e.path()).collect();
-    paths.retain(|p| p.extension().is_some_and(|e| e == "least"));
-    paths.sort();
-    paths
+    models(&Path::new(env!("CARGO_MANIFEST_DIR")).join(path))
 }
 
 #[test]

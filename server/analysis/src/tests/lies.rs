@@ -5,33 +5,10 @@ use crate::amends::{follower, multiplied, operands, turned, without};
 use crate::checked::Checked;
 use crate::database::Session;
 use crate::features::rename::edited;
-use crate::include::Files;
+use crate::models::{Disk, models};
 use leastwise_algebra::{Rational, Verdict};
 use std::ops::Range;
 use std::path::{Path, PathBuf};
-
-struct Disk;
-
-impl Files for Disk {
-    fn read(&self, from: &str, include: &str) -> Result<(String, String), String> {
-        let path = Path::new(from).parent().unwrap_or(Path::new("")).join(include);
-        let text = std::fs::read_to_string(&path).map_err(|e| e.to_string())?;
-        Ok((path.to_string_lossy().into_owned(), text))
-    }
-}
-
-/// The models of these folders.
-fn models(folders: &[PathBuf]) -> Vec<PathBuf> {
-    let mut out = Vec::new();
-    for folder in folders {
-        let Ok(entries) = std::fs::read_dir(folder) else { continue };
-        let mut paths: Vec<PathBuf> = entries.flatten().map(|e| e.path()).collect();
-        paths.retain(|p| p.extension().is_some_and(|e| e == "least"));
-        paths.sort();
-        out.extend(paths);
-    }
-    out
-}
 
 /// The verdict on the claim with this name, in a text.
 fn verdict(session: &mut Session, path: &str, text: &str, name: &str) -> Option<Verdict> {
@@ -160,7 +137,7 @@ fn every_lie_is_refuted_and_nearly_all_are_mended() {
         ["grammar/examples", "grammar/tests/models", "tests/oracle/models"].into_iter().map(|f| root.join(f)).collect();
     folders.extend(std::env::var_os("LEASTWISE_SHARED").map(|s| Path::new(&s).join("cases")));
     let mut scores: [Score; 3] = Default::default();
-    for path in models(&folders) {
+    for path in folders.iter().flat_map(|f| models(f)) {
         // One session for each model: arenas are kept small.
         plant(&mut Session::new(), &path, &mut scores);
     }
