@@ -42,7 +42,7 @@ const MAX_PARAMETERS: usize = 10;
 /// So many alternatives are told.
 const MAX_NEAR: usize = 3;
 /// The determinant of the mass matrix is looked at for so many coordinates.
-const MAX_DENSE: usize = 24;
+pub const MAX_DENSE: usize = 24;
 /// Larger expressions have their coefficients not compared.
 const MAX_NODES: usize = 2000;
 
@@ -101,6 +101,13 @@ pub fn near(
     }
     out.truncate(MAX_NEAR);
     Ok(out)
+}
+
+impl Near {
+    /// Whether a condition changes one of these parameters.
+    pub fn changes(&self, parameters: &[Expr]) -> bool {
+        self.conditions.iter().any(|c| parameters.contains(&c.put().0))
+    }
 }
 
 /// Whether the assumptions leave room for a condition.
