@@ -5,7 +5,8 @@ use crate::derive::Derived;
 use crate::mends::line_end;
 use crate::report::{Finding, Fix};
 use crate::sheet::Maker;
-use leastwise_algebra::{Arena, Expr, Node};
+use leastwise_algebra::{Arena, Expr, Node, Rational};
+use leastwise_mechanics::amends::rate_on_motions;
 use leastwise_mechanics::context::{Context, Parts};
 use leastwise_mechanics::lagrange::{depends_on_velocities, force, questions, residual, signed_parts};
 use leastwise_mechanics::near::{Condition, MAX_DENSE, Near, near};
@@ -50,6 +51,18 @@ pub(crate) fn of_cyclic(maker: &mut Maker<'_>, checked: &Checked, derived: &Deri
         }
         Some(out)
     })
+}
+
+/// The same for a claimed constant that is none, where the accelerations are known in closed form.
+pub(crate) fn of_conserved(maker: &mut Maker<'_>, checked: &Checked, derived: &Derived, k: usize) -> Option<String> {
+    let model = checked.model();
+    let rows = derived.answers.as_ref().ok()?.rows.as_ref()?;
+    let wrong = derived.conserved[k].as_ref().is_ok_and(|c| c.verdict.is_ok_and(|v| v.is_refuted()));
+    if !wrong || !model.constraints.is_empty() || rows.len() > MAX_DENSE {
+        return None;
+    }
+    let claim: Parts = vec![(checked.conserved()[k].expr, Rational::ONE)];
+    told(maker, checked, derived, |cx| Some(vec![rate_on_motions(cx, model, rows, &claim).ok()??]))
 }
 
 /// The variations of the parts to blame.
@@ -137,6 +150,12 @@ pub(crate) fn symmetry(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
     }
 }
 
+/// Says it in the finding on a claimed constant.
+pub(crate) fn conserved(maker: &mut Maker<'_>, checked: &Checked, derived: &Derived, k: usize, f: &mut Finding) {
+    let said = of_conserved(maker, checked, derived, k);
+    tell(checked, said, &checked.conserved()[k].range, f);
+}
+
 /// Says it in the findings about coordinates that are claimed cyclic and are not.
 pub(crate) fn cyclic(maker: &mut Maker<'_>, checked: &Checked, derived: &Derived, out: &mut [Finding]) {
     for (i, range) in checked.cyclic_claims() {
@@ -171,6 +190,15 @@ mod tests {
         // The model is as it was.
         let later = session.check("model.least", &after, &NoFiles);
         assert_eq!(later.model(), checked.model());
+    }
+
+    #[test]
+    fn an_angular_momentum_is_conserved_on_equal_springs() {
+        check(
+            "coordinate x, y\nparameter m, k₁, k₂\nkinetic 1/2 m (x'^2 + y'^2)\npotential 1/2 (k₁ x^2 + k₂ y^2)\nconserved spin = m (x y' - y x')\n",
+            "the claim holds if k₁ = k₂",
+            "# holds if k₁ = k₂",
+        );
     }
 
     #[test]

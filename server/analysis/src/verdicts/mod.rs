@@ -73,6 +73,7 @@ pub(crate) fn findings(maker: &mut Maker<'_>, checked: &Checked, derived: &Deriv
                         format!("`{name}` is not conserved: its rate {} does not vanish on motions", one_line(&rate)),
                     );
                     crate::amends::mend(maker, checked, derived, k, &mut f);
+                    crate::near::conserved(maker, checked, derived, k, &mut f);
                     out.push(f);
                 }
                 Ok(Verdict::Undecided(reason)) => out.push(undecided(claim.range.clone(), name, &reason.to_string())),

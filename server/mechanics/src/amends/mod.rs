@@ -8,7 +8,7 @@
 mod offers;
 mod source;
 
-pub use source::{Source, momenta, source};
+pub use source::{Source, momenta, rate_on_motions, source};
 
 use crate::claims;
 use crate::context::{Context, Parts};

@@ -184,7 +184,7 @@ fn determinant(arena: &mut Arena, m: &[Vec<Expr>]) -> Expr {
 }
 
 /// The rate of a quantity with the accelerations put in; `None` where they have no short closed form.
-pub(super) fn rate_on_motions(
+pub fn rate_on_motions(
     cx: &mut Context<'_>,
     model: &Model,
     rows: &MassRows,
